@@ -1,0 +1,50 @@
+/** What the user says about what was measured. Metres; SI after the edge. */
+
+/** Columns a table may hold. `value.2`, `elevation.2` … follow the same pattern for further channels. */
+export const ROLES = [
+  "line",
+  "chainage",
+  "x",
+  "y",
+  "longitude",
+  "latitude",
+  "elevation",
+  "clearance",
+  "ground",
+  "time",
+  "value",
+] as const;
+
+export interface ChannelSettings {
+  /** `value`, `value.2` … */
+  readonly role: string;
+  /** Name in the catalogue of observables. */
+  readonly observable: string;
+  /** Unit of the readings and of a given noise; undefined: the delivery unit of the observable. */
+  readonly unit: string | undefined;
+  /** In that unit; `record`; undefined: `record` for lines, required for grids. */
+  readonly noise: number | "record" | undefined;
+}
+
+export interface AcquisitionSettings {
+  /** Role → name of the column, as asked by `--column`. */
+  readonly columns: ReadonlyMap<string, string>;
+  /** Constant heights of the sensor, m. */
+  readonly clearance: number | undefined;
+  readonly elevation: number | undefined;
+  /** Added to elevation or clearance, m (a slung sensor: negative). */
+  readonly sensorOffset: number;
+  readonly elevationDatum: string | undefined;
+  readonly groundDatum: string | undefined;
+  /** Height of the ground datum above the elevation datum, m: added to ground. */
+  readonly geoidOffset: number | undefined;
+  readonly crs: string | undefined;
+  readonly outCrs: string | undefined;
+  readonly split: "column" | "auto" | undefined;
+  /** The first is for `value`. */
+  readonly channels: readonly ChannelSettings[];
+  /** Grids: which way the lines run. */
+  readonly profiles: "rows" | "columns";
+  /** Only to look at: heights and the noise of a grid may be missing, which is then a doubt. */
+  readonly inspecting?: boolean;
+}

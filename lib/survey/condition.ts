@@ -1,0 +1,124 @@
+/** Heights above the boundary and one noise level: the line made ready for the operator. */
+import {InputError, ModelError} from "../errors.ts";
+import {doubt, type Notice, remark} from "../notice.ts";
+import type {BoundarySetting} from "./boundary.ts";
+import type {ConditionedLine} from "./conditioned.ts";
+import type {SurveyLine} from "./line.ts";
+import {recordNoise} from "./record-noise.ts";
+
+/**
+ * @param boundary undefined: the ground, where that is a boundary at all
+ * @throws {InputError} `boundary/…` when the heights at hand do not place the boundary, `noise/…`
+ * @throws {ModelError} `boundary/station-below` when a station lies on or below it
+ */
+export function condition(line: SurveyLine, boundary: BoundarySetting | undefined): ConditionedLine {
+  const [channel] = line.channels;
+  if (channel === undefined) throw new InputError("line/no-channel", `Line ${line.id} holds no readings.`);
+  const notices: Notice[] = [];
+  const placed = placeBoundary(line, boundary, notices);
+  placed.height.forEach((height, i) => {
+    if (!(height > 0))
+      throw new ModelError(
+        "boundary/station-below",
+        `The station in row ${line.stations.row[i]} of line ${line.id} lies ${height.toPrecision(4)} m above the boundary (${placed.words}); every station must lie above it. Lower the boundary with --boundary, or correct the heights.`,
+      );
+  });
+  let noise: number;
+  if (channel.noise === "record") {
+    const record = recordNoise(line.stations.chainage, channel.values);
+    noise = record.sigma;
+    if (!record.white)
+      notices.push(
+        doubt(
+          "noise/record-not-white",
+          "The noise was taken from the fourth differences of the record, and these are not those of white noise: signal leaks into them or the noise is correlated. Give --noise.",
+        ),
+      );
+  } else noise = channel.noise;
+  if (!(noise > 0))
+    throw new InputError(
+      "noise/not-positive",
+      `The noise of line ${line.id} is ${noise}; it is a standard deviation and must be above zero. Give --noise.`,
+    );
+  return {
+    line,
+    height: placed.height,
+    groundHeight: placed.groundHeight,
+    boundary: placed.words,
+    values: channel.values,
+    noise,
+    noiseFrom: channel.noise === "record" ? "record" : "given",
+    notices,
+  };
+}
+
+interface PlacedBoundary {
+  readonly height: Float64Array;
+  readonly groundHeight: Float64Array | undefined;
+  readonly words: string;
+}
+
+function placeBoundary(line: SurveyLine, setting: BoundarySetting | undefined, notices: Notice[]): PlacedBoundary {
+  const {elevation, clearance, ground} = line.stations;
+  const above = (level: number, words: string): PlacedBoundary => {
+    const ofGround = ground?.map((g) => g - level);
+    if (ofGround?.some((g) => g > 0))
+      notices.push(
+        remark(
+          "boundary/below-ground",
+          "The boundary lies below the ground in places: the result holds only if nothing between them is a source.",
+        ),
+      );
+    return {height: elevation!.map((z) => z - level), groundHeight: ofGround, words};
+  };
+  const flatGround = (depth: number): PlacedBoundary => {
+    notices.push(
+      doubt(
+        "boundary/ground-taken-as-flat",
+        `Only the clearance is known, so the ground under the line was taken as flat${depth > 0 ? `, with the boundary ${depth} m below it` : " and as the boundary"}. Give elevation and ground columns if it is not.`,
+      ),
+    );
+    return {
+      height: clearance!.map((c) => c + depth),
+      groundHeight: new Float64Array(clearance!.length).fill(depth),
+      words: depth > 0 ? `${depth} m below ground taken as flat` : "the ground, taken as flat",
+    };
+  };
+  const lowest = (values: Float64Array): number => values.reduce((least, value) => Math.min(least, value), Infinity);
+  const highest = (values: Float64Array): number => values.reduce((most, value) => Math.max(most, value), -Infinity);
+
+  if (setting?.kind === "elevation") {
+    if (elevation === undefined)
+      throw new InputError(
+        "boundary/no-elevation",
+        `--boundary ${setting.elevation} is an elevation, but line ${line.id} gives the clearance only. Give an elevation column or --elevation, or --boundary depth-D for a boundary D metres below ground.`,
+      );
+    return above(setting.elevation, `flat at elevation ${setting.elevation} m`);
+  }
+  if (setting?.kind === "depth") {
+    if (elevation !== undefined && ground !== undefined) {
+      const level = lowest(ground) - setting.depth;
+      return above(level, `flat at elevation ${level} m, ${setting.depth} m below the lowest ground`);
+    }
+    if (clearance !== undefined) return flatGround(setting.depth);
+    throw new InputError(
+      "boundary/no-ground",
+      `--boundary depth-${setting.depth} needs the ground, but line ${line.id} gives the sensor's elevation only. Give a ground column, a clearance, or --boundary Z as an elevation.`,
+    );
+  }
+  if (elevation !== undefined && ground !== undefined && clearance !== undefined) {
+    const relief = highest(ground) - lowest(ground);
+    const least = lowest(clearance);
+    if (!(relief <= 0.1 * least))
+      throw new InputError(
+        "boundary/ground-not-flat",
+        `The ground under line ${line.id} rises and falls by ${relief.toPrecision(3)} m, more than a tenth of the least clearance (${least.toPrecision(3)} m). Say where the boundary lies: --boundary Z or --boundary depth-D.`,
+      );
+    return above(lowest(ground), `flat at the lowest ground, elevation ${lowest(ground)} m`);
+  }
+  if (clearance !== undefined) return flatGround(0);
+  throw new InputError(
+    "boundary/not-given",
+    `Line ${line.id} gives the sensor's elevation but neither ground nor clearance. Say where the boundary lies: --boundary Z.`,
+  );
+}

@@ -1,0 +1,70 @@
+/** What is in a survey and what is doubtful, as plain data to be printed. SI; metres; degrees. */
+import type {ErrorCode} from "../errors.ts";
+import {type Notice, remark} from "../notice.ts";
+import {type LineFigures, lineFigures} from "./line-figures.ts";
+import {type Neighbours, neighbours} from "./neighbours.ts";
+import {NOT_CORRECTED, type Uncorrected} from "./not-corrected.ts";
+import type {Axis, GridFrame, RoleChoice, Survey} from "./survey.ts";
+import {type ThinnedLine, thinned} from "./thinned-line.ts";
+
+export interface Inspection {
+  readonly kind: Survey["kind"];
+  readonly files: readonly string[];
+  readonly choices: readonly RoleChoice[];
+  readonly axes: readonly Axis[];
+  readonly delivered: string | undefined;
+  readonly grid: GridFrame | undefined;
+  /** In the order of the files. */
+  readonly lines: readonly LineFigures[];
+  /** Lines that could not be made, and why. */
+  readonly failures: readonly {readonly id: string; readonly code: ErrorCode; readonly message: string}[];
+  /** Undefined for grids, whose rows are alike by construction. */
+  readonly neighbours: Neighbours | undefined;
+  /** Of the survey as a whole; those of a line are with the line. */
+  readonly notices: readonly Notice[];
+  /** Corrections that are not made, for the methods measured. */
+  readonly notCorrected: readonly Uncorrected[];
+}
+
+/** Lines kept for comparison, at 2,000 points each: 64 MB. */
+const MOST_COMPARED = 2000;
+
+/** One walk over the lines; memory holds figures of every line and thinned copies of at most 2,000. */
+export async function inspectSurvey(survey: Survey): Promise<Inspection> {
+  const azimuths = new Map(survey.axes.map(({group, azimuth}) => [group, azimuth]));
+  const lines: LineFigures[] = [];
+  const failures: Inspection["failures"][number][] = [];
+  const copies: ThinnedLine[] = [];
+  const methods = new Set<string>(["both"]);
+  const notices = [...survey.notices];
+  for await (const record of survey.lines()) {
+    if ("failure" in record) {
+      failures.push({id: record.id, code: record.failure.code, message: record.failure.message});
+      continue;
+    }
+    const {line} = record;
+    for (const {observable} of line.channels) methods.add(observable.source.method);
+    lines.push(lineFigures(line, azimuths.get(line.group), survey.kind));
+    if (survey.kind === "lines" && copies.length < MOST_COMPARED) copies.push(thinned(line));
+  }
+  if (survey.kind === "lines" && lines.length > copies.length)
+    notices.push(
+      remark(
+        "inspect/not-all-compared",
+        `Of ${lines.length} lines the first ${copies.length} are compared with each other.`,
+      ),
+    );
+  return {
+    kind: survey.kind,
+    files: survey.files,
+    choices: survey.choices,
+    axes: survey.axes,
+    delivered: survey.delivered,
+    grid: survey.grid,
+    lines,
+    failures,
+    neighbours: survey.kind === "lines" ? neighbours(copies) : undefined,
+    notices,
+    notCorrected: NOT_CORRECTED.filter(({method}) => methods.has(method)),
+  };
+}
