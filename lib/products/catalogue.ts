@@ -1,0 +1,93 @@
+/** Every file that a run writes, record and timing apart. A new product is one file and one line here. */
+import {gridRasters} from "./grid-rasters.ts";
+import {gridReportHtml} from "./grid-report-html.ts";
+import {levelsCsv} from "./levels-csv.ts";
+import {linesCsv, rowsCsv} from "./lines-csv.ts";
+import type {GridPlace, Opening, RunAbout} from "./opening.ts";
+import type {LineProduct, RowProduct} from "./product.ts";
+import {reportHtml} from "./report-html.ts";
+import {sourceCsv} from "./source-csv.ts";
+import {stripsCsv} from "./strips-csv.ts";
+import {tradeoffCsv} from "./tradeoff-csv.ts";
+
+export interface LineProductKind {
+  readonly file: string;
+  /** One sentence for help texts. */
+  readonly summary: string;
+  make(opening: Opening, about: RunAbout): Promise<LineProduct>;
+}
+
+export interface GridProductKind {
+  readonly file: string;
+  readonly summary: string;
+  make(opening: Opening, about: RunAbout, place: GridPlace): Promise<RowProduct>;
+}
+
+export const LINE_PRODUCTS: readonly LineProductKind[] = [
+  {
+    file: "source.csv",
+    summary: "the source on every panel, with averages and their intervals",
+    make: async ({openText}) => sourceCsv(await openText("source.csv")),
+  },
+  {
+    file: "levels.csv",
+    summary: "the field on every level, with intervals",
+    make: async ({openText}) => levelsCsv(await openText("levels.csv")),
+  },
+  {
+    file: "strips.csv",
+    summary: "mean and total of every strip in physical units, with intervals",
+    make: async ({openText}) => stripsCsv(await openText("strips.csv")),
+  },
+  {
+    file: "lines.csv",
+    summary: "the ledger: what became of every line, and why",
+    make: async ({openText}) => linesCsv(await openText("lines.csv")),
+  },
+  {
+    file: "tradeoff.csv",
+    summary: "misfit against norm over the multipliers",
+    make: async ({openText}) => tradeoffCsv(await openText("tradeoff.csv")),
+  },
+  {
+    file: "report.html",
+    summary: "one page to read and print",
+    make: async ({openText}, about) => reportHtml(await openText("report.html"), about),
+  },
+];
+
+export const GRID_PRODUCTS: readonly GridProductKind[] = [
+  {
+    file: "source_rowwise.tif, level_L_rowwise.tif",
+    summary: "source and levels with half-widths, row by row (columnwise: column by column)",
+    make: async (opening, _about, place) => gridRasters(opening, place),
+  },
+  {
+    file: "lines.csv",
+    summary: "the ledger: what became of every row, and why",
+    make: async ({openText}) => rowsCsv(await openText("lines.csv")),
+  },
+  {
+    file: "report.html",
+    summary: "one page to read and print",
+    make: async ({openText}, about) => gridReportHtml(await openText("report.html"), about),
+  },
+];
+
+/** Opens the files of a run over lines; `begin` none before all are open. */
+export async function lineProducts(opening: Opening, about: RunAbout): Promise<readonly LineProduct[]> {
+  const products: LineProduct[] = [];
+  for (const kind of LINE_PRODUCTS) products.push(await kind.make(opening, about));
+  return products;
+}
+
+/** Opens the files of a run over a grid; rasters are opened by name at the end, when their bytes are ready. */
+export async function gridProducts(
+  opening: Opening,
+  about: RunAbout,
+  place: GridPlace,
+): Promise<readonly RowProduct[]> {
+  const products: RowProduct[] = [];
+  for (const kind of GRID_PRODUCTS) products.push(await kind.make(opening, about, place));
+  return products;
+}

@@ -1,0 +1,125 @@
+/** lines.csv, the ledger: what became of every line, or of every row of a grid, and why. */
+import {csvCell, csvNumber} from "../formats/csv-text.ts";
+import type {BoundChoice} from "../inverse/nouns.ts";
+import type {Notice} from "../notice.ts";
+import {type Delivery, deliveryOf} from "../report/delivery.ts";
+import type {LineOutcome, LineStudy, RowOutcome, RowStudy} from "../study/outcome.ts";
+import {type CsvTable, csvTable} from "./csv-table.ts";
+import type {LineProduct, RowProduct, RunFrame, TextSink} from "./product.ts";
+
+/** The figures of one row of the ledger; SI. */
+interface LedgerFigures {
+  readonly stations: number;
+  readonly panels: number;
+  readonly modes: number;
+  readonly choice: BoundChoice;
+  readonly norm: number;
+  readonly misfit: number;
+  readonly misfitExpected: number;
+  readonly noise: number;
+  readonly resolution: number;
+  readonly degreesOfFreedom: number;
+  readonly notices: readonly Notice[];
+}
+
+const figuresOfLine = (study: LineStudy): LedgerFigures => ({
+  stations: study.line.stations.count,
+  panels: study.panels.count,
+  modes: study.estimate.modes,
+  choice: study.choice,
+  norm: study.estimate.norm,
+  misfit: study.estimate.misfit,
+  misfitExpected: study.conditioned.values.length,
+  noise: study.conditioned.noise,
+  resolution: study.resolution.length,
+  degreesOfFreedom: study.estimate.degreesOfFreedom,
+  notices: study.notices,
+});
+
+const figuresOfRow = (study: RowStudy): LedgerFigures => study;
+
+/** Why the multiplier is what it is, then every doubt. */
+const reasonOf = (figures: LedgerFigures): string =>
+  [
+    figures.choice.reason,
+    ...figures.notices.filter((notice) => notice.weight === "doubt").map((notice) => notice.message),
+  ].join("; ");
+
+/** Columns after `reason`, for a line without an answer. */
+const NO_FIGURES: readonly string[] = Array.from({length: 12}, () => "");
+
+function ledger(sink: TextSink) {
+  const table: CsvTable = csvTable(sink);
+  let delivery: Delivery;
+  return {
+    begin: async ({observable}: RunFrame): Promise<void> => {
+      delivery = deliveryOf(observable);
+      await table.row([
+        "line",
+        "status",
+        "reason",
+        "stations",
+        "panels",
+        "modes",
+        "multiplier",
+        "bound",
+        "norm",
+        "bound_active",
+        "misfit",
+        "misfit_expected",
+        `noise_${delivery.reading}`,
+        "resolution_m",
+        "degrees_of_freedom",
+      ]);
+    },
+    done: async (id: string, status: string, figures: LedgerFigures): Promise<void> => {
+      await table.row([
+        csvCell(id),
+        status,
+        csvCell(reasonOf(figures)),
+        csvNumber(figures.stations),
+        csvNumber(figures.panels),
+        csvNumber(figures.modes),
+        csvNumber(delivery.toMultiplier(figures.choice.multiplier)),
+        csvNumber(delivery.toNorm(figures.choice.bound)),
+        csvNumber(delivery.toNorm(figures.norm)),
+        String(figures.choice.active),
+        csvNumber(figures.misfit),
+        csvNumber(figures.misfitExpected),
+        csvNumber(delivery.toReading(figures.noise)),
+        csvNumber(figures.resolution),
+        csvNumber(figures.degreesOfFreedom),
+      ]);
+      await table.flush();
+    },
+    without: async (id: string, status: string, message: string): Promise<void> => {
+      await table.row([csvCell(id), status, csvCell(message), ...NO_FIGURES]);
+      await table.flush();
+    },
+    end: () => table.flush(),
+  };
+}
+
+export function linesCsv(sink: TextSink): LineProduct {
+  const rows = ledger(sink);
+  return {
+    begin: rows.begin,
+    line: (outcome: LineOutcome) =>
+      "study" in outcome
+        ? rows.done(outcome.id, outcome.status, figuresOfLine(outcome.study))
+        : rows.without(outcome.id, outcome.status, outcome.failure.message),
+    end: rows.end,
+  };
+}
+
+export function rowsCsv(sink: TextSink): RowProduct {
+  const rows = ledger(sink);
+  return {
+    begin: rows.begin,
+    row: (outcome: RowOutcome) =>
+      "study" in outcome
+        ? rows.done(outcome.id, outcome.status, figuresOfRow(outcome.study))
+        : rows.without(outcome.id, outcome.status, outcome.failure.message),
+    end: rows.end,
+  };
+}

@@ -1,0 +1,35 @@
+/**
+ * A product writes what a study holds; it computes nothing but units.
+ * Its bytes go to sinks that the caller opens, so that nothing here touches a disk.
+ */
+import type {LevelSetting} from "../continuation/level-profile.ts";
+import type {Observable} from "../potential/observable.ts";
+import type {LineOutcome, RowOutcome} from "../study/outcome.ts";
+import type {Survey} from "../survey/survey.ts";
+
+/** Receives the bytes of one file in order. */
+export interface TextSink {
+  write(text: string): Promise<void>;
+}
+
+/** What is known before the first line. */
+export interface RunFrame {
+  readonly survey: Survey;
+  readonly observable: Observable;
+  readonly levels: readonly LevelSetting[];
+  readonly confidence: number;
+}
+
+/** A product over survey lines. */
+export interface LineProduct {
+  begin(frame: RunFrame): Promise<void>;
+  line(outcome: LineOutcome): Promise<void>;
+  end(): Promise<void>;
+}
+
+/** A product over the rows or columns of a grid. */
+export interface RowProduct {
+  begin(frame: RunFrame): Promise<void>;
+  row(outcome: RowOutcome): Promise<void>;
+  end(): Promise<void>;
+}

@@ -1,0 +1,10 @@
+/** What the intervals of a page rest on, as paragraphs. */
+import type {IntervalBasis} from "../inverse/nouns.ts";
+import {messageText} from "./html.ts";
+import {INTERVAL_BASIS} from "./interval-basis.ts";
+
+export const basisParagraphs = (bases: ReadonlySet<IntervalBasis>): string =>
+  [...bases]
+    .sort()
+    .map((basis) => `<p><b>${INTERVAL_BASIS[basis].lead}</b> ${messageText(INTERVAL_BASIS[basis].text)}</p>`)
+    .join("");

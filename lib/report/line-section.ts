@@ -1,0 +1,87 @@
+/** All about one line: strips, doubts, the figure, why this multiplier, what the intervals rest on. */
+import type {LineStudy} from "../study/outcome.ts";
+import {deliveryOf} from "./delivery.ts";
+import {LEVELS_SHOWN, profileFigure} from "./figures/profile.ts";
+import {tradeoffFigure} from "./figures/tradeoff.ts";
+import {messageText, nameText} from "./html.ts";
+import {INTERVAL_BASIS} from "./interval-basis.ts";
+import {stateText} from "./line-table.ts";
+import {counted, countText, figureText, fixedText, metreText} from "./number-text.ts";
+import {definitionList} from "./settings-text.ts";
+import {stripRows, stripTable} from "./strip-table.ts";
+
+/** @param index of the line in the survey, from 0 */
+export function lineSection(study: LineStudy, status: "done" | "doubtful", index: number): string {
+  const {line, conditioned, confidence} = study;
+  const delivery = deliveryOf(study.observable);
+  const doubts = study.notices.filter((notice) => notice.weight === "doubt");
+  const remarks = study.notices.filter((notice) => notice.weight === "remark");
+  const items = [...doubts, ...remarks].map(
+    (notice) => `<li class="${notice.weight}">${messageText(notice.message)}</li>`,
+  );
+  const omitted =
+    line.omitted > 0 ? ` ${counted(line.omitted, "row")} of the file left out for want of a reading or a height.` : "";
+  return [
+    `<section class="line" id="line-${index + 1}"><h2>Line ${nameText(line.id)} ${stateText(status)}</h2>`,
+    `<p>${counted(line.stations.count, "station")}, sensor ${rangeText(conditioned.height)} m above the boundary (${messageText(conditioned.boundary)}).${omitted}</p>`,
+    items.length > 0 ? `<ul class="plain">${items.join("")}</ul>` : "",
+    stripTable(stripRows(study), delivery, confidence, false),
+    `<figure>${profileFigure(study)}<figcaption>${caption(study)}</figcaption></figure>`,
+    `<div class="pair"><figure>${tradeoffFigure(study)}</figure>${grounds(study)}</div>`,
+    "</section>\n",
+  ].join("");
+}
+
+function caption(study: LineStudy): string {
+  const parts = [
+    `Features narrower than ${metreText(study.resolution.length)} m are not in the data; do not read them into the thin line.`,
+  ];
+  const {chainage} = study.line.stations;
+  const [from, to] = [least(chainage), greatest(chainage)];
+  if (study.panels.from[0]! < from || study.panels.to[study.panels.count - 1]! > to)
+    parts.push("Grey flanks: support with no station above; there the interval may run beyond the frame.");
+  if (study.strips.length > 0) parts.push("Shaded spans: strips asked about.");
+  if (study.levels.length > LEVELS_SHOWN)
+    parts.push(`${counted(study.levels.length - LEVELS_SHOWN, "further level")} in levels.csv.`);
+  return parts.join(" ");
+}
+
+function grounds(study: LineStudy): string {
+  const {choice, estimate, conditioned, observable, resolution} = study;
+  const delivery = deliveryOf(observable);
+  const basis = INTERVAL_BASIS[choice.basis];
+  const readings = conditioned.values.length;
+  return `<div>${definitionList([
+    ["Multiplier", figureText(delivery.toMultiplier(choice.multiplier))],
+    ["Chosen by", `${nameText(choice.rule)}: ${messageText(choice.reason)}`],
+    [
+      "Misfit",
+      `${figureText(estimate.misfit)} for ${counted(readings, "reading")}, ${fixedText(estimate.misfit / readings, 2)} each`,
+    ],
+    [
+      "Noise",
+      `${figureText(delivery.toReading(conditioned.noise))} ${delivery.reading}, ${conditioned.noiseFrom === "given" ? "as given" : "from the record"}`,
+    ],
+    ["Degrees of freedom", `${figureText(estimate.degreesOfFreedom)} used of ${countText(readings)}`],
+    ["Resolution", `${metreText(resolution.length)} m`],
+    ["Norm of the source", `${figureText(delivery.toNorm(estimate.norm))} ${delivery.field}·√m`],
+    [
+      "Bound",
+      `${figureText(delivery.toNorm(choice.bound))} ${delivery.field}·√m, ${boundWords(choice)}`,
+    ],
+  ])}<p class="small"><b>${basis.lead}</b> ${messageText(basis.text)}</p></div>`;
+}
+
+const boundWords = ({basis, active}: LineStudy["choice"]): string => {
+  if (basis === "assumed-bound") return "assumed for the intervals, since none was given";
+  return active ? "holds the estimate back" : "does not hold the estimate back";
+};
+
+const least = (values: Float64Array): number => values.reduce((a, b) => Math.min(a, b), Number.POSITIVE_INFINITY);
+const greatest = (values: Float64Array): number => values.reduce((a, b) => Math.max(a, b), Number.NEGATIVE_INFINITY);
+
+function rangeText(values: Float64Array): string {
+  const a = metreText(least(values));
+  const b = metreText(greatest(values));
+  return a === b ? a : `${a} to ${b}`;
+}

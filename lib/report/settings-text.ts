@@ -1,0 +1,71 @@
+/** The settings in force in short, for the head of a page; record.json holds them all. */
+import type {Settings} from "../study/settings.ts";
+import type {Survey} from "../survey/survey.ts";
+import type {Delivery} from "./delivery.ts";
+import {messageText, nameText} from "./html.ts";
+import {levelWords} from "./level-words.ts";
+import {exactText, metreText, percentText} from "./number-text.ts";
+
+const DEGREES = {
+  "-1": "none",
+  "0": "a constant, estimated with the source",
+  "1": "a straight line, estimated with the source",
+  "2": "a parabola, estimated with the source",
+  "3": "a cubic, estimated with the source",
+} as const;
+
+/** Pairs of a definition list; markup, escaped. */
+export function settingsPairs(
+  settings: Settings,
+  survey: Survey,
+  delivery: Delivery,
+): readonly (readonly [string, string])[] {
+  const {acquisition, model, wanted} = settings;
+  const pairs: [string, string][] = [["Files", survey.files.map(nameText).join(", ")]];
+  const [channel] = acquisition.channels;
+  if (channel !== undefined) {
+    const unit = nameText(channel.unit ?? delivery.reading);
+    const noise =
+      channel.noise === "record" || channel.noise === undefined
+        ? "noise from the fourth differences of the record"
+        : `noise ${exactText(channel.noise)} ${unit} given`;
+    pairs.push(["Readings", `${nameText(channel.observable)}, in ${unit}; ${noise}`]);
+  }
+  if (survey.delivered !== undefined) pairs.push(["Coordinates", nameText(survey.delivered)]);
+  pairs.push(["Chainage", survey.axes.map(axisText).join("; ")]);
+  if (model.boundary !== undefined)
+    pairs.push([
+      "Boundary",
+      model.boundary.kind === "elevation"
+        ? `flat, at elevation ${metreText(model.boundary.elevation)} m`
+        : `flat, ${metreText(model.boundary.depth)} m below the lowest ground under the line`,
+    ]);
+  pairs.push([
+    "Support",
+    model.support.length === 0
+      ? "the line and five median heights on either side"
+      : model.support
+          .map(
+            ({from, to, group}) =>
+              `${group === undefined ? "" : `${nameText(group)}: `}${metreText(from)} to ${metreText(to)} m`,
+          )
+          .join("; "),
+  ]);
+  pairs.push(["Bound", nameText(settings.bound.text)]);
+  pairs.push(["Regional", DEGREES[`${model.regional}`]]);
+  pairs.push(["Levels", wanted.levels.map(levelWords).join("; ")]);
+  pairs.push(["Intervals", percentText(wanted.confidence)]);
+  pairs.push([
+    "Done before",
+    settings.processing === undefined ? "nothing was stated" : messageText(settings.processing),
+  ]);
+  return pairs;
+}
+
+const axisText = ({group, azimuth, lines}: Survey["axes"][number]): string =>
+  azimuth === undefined
+    ? `${nameText(group)}: as given, ${lines} lines`
+    : `${nameText(group)}: along azimuth ${azimuth.toFixed(1)}°, ${lines} lines`;
+
+export const definitionList = (pairs: readonly (readonly [string, string])[]): string =>
+  `<dl>${pairs.map(([term, text]) => `<dt>${term}</dt><dd>${text}</dd>`).join("")}</dl>`;
