@@ -1,0 +1,81 @@
+/** What the inverse problem hands on. SI units (f in m/s² or T), lengths in m; multipliers belong to SI f. */
+import type {Notice} from "../notice.ts";
+
+/** Misfit and norm over a range of multipliers, multiplier increasing. */
+export interface TradeoffCurve {
+  readonly multiplier: Float64Array;
+  /** Σ (residual/σ)². */
+  readonly misfit: Float64Array;
+  /** ‖f‖, SI·√m. */
+  readonly norm: Float64Array;
+  readonly degreesOfFreedom: Float64Array;
+}
+
+export type IntervalBasis = "given-bound" | "assumed-bound";
+
+/** The Lagrange multiplier and why. */
+export interface BoundChoice {
+  readonly rule: string;
+  readonly multiplier: number;
+  /** M that the intervals take, SI·√m: given by the user, or assumed from the estimate. */
+  readonly bound: number;
+  readonly basis: IntervalBasis;
+  /** Whether ‖f‖ = M holds the estimate back. */
+  readonly active: boolean;
+  /** In words, for ledger, report and record. */
+  readonly reason: string;
+  readonly notices: readonly Notice[];
+}
+
+/** The source and what it explains. */
+export interface SourceEstimate {
+  /** f on the panels, SI. */
+  readonly density: Float64Array;
+  /** Field of the source at the stations, SI. */
+  readonly field: Float64Array;
+  /** Regional at the stations, SI. */
+  readonly regional: Float64Array;
+  /** Readings less field less regional, SI. */
+  readonly residual: Float64Array;
+  readonly misfit: number;
+  readonly norm: number;
+  readonly degreesOfFreedom: number;
+  /** Modes kept by the eigen-decomposition. */
+  readonly modes: number;
+}
+
+/** Averages of f with intervals, one entry a panel; SI. */
+export interface PanelAverages {
+  readonly value: Float64Array;
+  readonly lower: Float64Array;
+  readonly upper: Float64Array;
+  /** Length averaged over, m. */
+  readonly averagedOver: Float64Array;
+}
+
+/** A strip that the client names, on the chainage of its group. */
+export interface Strip {
+  readonly name: string;
+  readonly from: number;
+  readonly to: number;
+  /** Only lines of this group; undefined: every line. */
+  readonly group: string | undefined;
+}
+
+/** Mean of f over a strip (zero outside the support) with its interval; SI. */
+export interface StripEstimate {
+  readonly strip: Strip;
+  readonly mean: number;
+  readonly lower: number;
+  readonly upper: number;
+  /** The mean of the one source on the panels. */
+  readonly plainMean: number;
+}
+
+/** The resolution of the estimate. */
+export interface Resolution {
+  /** Median over the stations above the support, m. */
+  readonly length: number;
+  /** 1/R(x, x) at each panel centre, R the averaging kernel, m. */
+  readonly local: Float64Array;
+}

@@ -1,0 +1,20 @@
+/** A rule chooses the Lagrange multiplier from what the solver knows. */
+import type {Solver} from "../../solvers/solver.ts";
+import type {BoundChoice} from "../nouns.ts";
+
+export interface RuleQuestion {
+  readonly solver: Solver;
+  /** Length of the support, m: turns a root-mean-square into a norm. */
+  readonly supportLength: number;
+  /** Lines pooled in the solver, one multiplier for all: its misfit is their sum, its squared norm too. */
+  readonly lines: number;
+  /** The largest norm of a single line at a multiplier, SI·√m. */
+  largestNorm(multiplier: number): number;
+}
+
+export interface BoundRule {
+  readonly name: string;
+  /** As the user wrote it, for the record: `rms:0.5`, `discrepancy`. */
+  readonly text: string;
+  choose(question: RuleQuestion): BoundChoice;
+}

@@ -1,0 +1,92 @@
+/** The regional polynomial as an orthonormal basis at the stations; it is projected out, not removed beforehand. */
+
+/** `degree + 1` orthonormal rows of length `count`, row-major; no rows for degree −1. */
+export interface RegionalBasis {
+  readonly terms: number;
+  readonly count: number;
+  readonly rows: Float64Array;
+}
+
+/**
+ * Legendre polynomials on the span of the stations, orthonormalised by Gram–Schmidt done twice
+ * (Giraud et al., "twice is enough", Numer. Math. 101 (2005) 87, from memory). A term that the stations cannot
+ * tell from the lower ones is left out.
+ *
+ * @param x chainage of the stations, m
+ * @param degree −1 for none
+ */
+export function regionalBasis(x: Float64Array, degree: number): RegionalBasis {
+  const count = x.length;
+  const rows: Float64Array[] = [];
+  let low = Infinity;
+  let high = -Infinity;
+  for (const chainage of x) {
+    low = Math.min(low, chainage);
+    high = Math.max(high, chainage);
+  }
+  const half = 0.5 * (high - low) || 1;
+  for (let term = 0; term <= degree; ++term) {
+    const row = x.map((chainage) => legendre(term, (chainage - 0.5 * (low + high)) / half));
+    const before = length(row);
+    for (let pass = 0; pass < 2; ++pass)
+      for (const earlier of rows) {
+        let dot = 0;
+        for (let i = 0; i < count; ++i) dot += row[i] * earlier[i];
+        for (let i = 0; i < count; ++i) row[i] -= dot * earlier[i];
+      }
+    const after = length(row);
+    // 1e-10 of its own length: far above rounding (ε√n), far below any real polynomial on distinct stations.
+    if (!(after > 1e-10 * before)) continue;
+    for (let i = 0; i < count; ++i) row[i] /= after;
+    rows.push(row);
+  }
+  const flat = new Float64Array(rows.length * count);
+  rows.forEach((row, k) => {
+    flat.set(row, k * count);
+  });
+  return {terms: rows.length, count, rows: flat};
+}
+
+/** Takes the regional out of a vector over the stations. */
+export function projectOutInPlace(vector: Float64Array, basis: RegionalBasis): Float64Array {
+  for (let k = 0; k < basis.terms; ++k) {
+    const row = k * basis.count;
+    let dot = 0;
+    for (let i = 0; i < basis.count; ++i) dot += basis.rows[row + i] * vector[i];
+    for (let i = 0; i < basis.count; ++i) vector[i] -= dot * basis.rows[row + i];
+  }
+  return vector;
+}
+
+/** Takes the regional out of every column of a count × columns matrix. */
+export function projectOutOfColumnsInPlace(matrix: Float64Array, columns: number, basis: RegionalBasis): Float64Array {
+  const dots = new Float64Array(columns);
+  for (let k = 0; k < basis.terms; ++k) {
+    dots.fill(0);
+    for (let i = 0; i < basis.count; ++i) {
+      const r = basis.rows[k * basis.count + i];
+      const row = i * columns;
+      for (let j = 0; j < columns; ++j) dots[j] += r * matrix[row + j];
+    }
+    for (let i = 0; i < basis.count; ++i) {
+      const r = basis.rows[k * basis.count + i];
+      const row = i * columns;
+      for (let j = 0; j < columns; ++j) matrix[row + j] -= r * dots[j];
+    }
+  }
+  return matrix;
+}
+
+function legendre(degree: number, t: number): number {
+  if (degree === 0) return 1;
+  let before = 1;
+  let value = t;
+  for (let k = 1; k < degree; ++k) [before, value] = [value, ((2 * k + 1) * t * value - k * before) / (k + 1)];
+  return value;
+}
+
+function length(vector: Float64Array): number {
+  let sum = 0;
+  for (const entry of vector) sum += entry * entry;
+  return Math.sqrt(sum);
+}

@@ -1,0 +1,18 @@
+/** Every observable, by name. Help texts, option parsing and the report read this list. */
+import {InputError} from "../errors.ts";
+import {fieldVertical} from "./field-vertical.ts";
+import {gravity} from "./gravity.ts";
+import type {Observable} from "./observable.ts";
+
+export const OBSERVABLES: readonly Observable[] = [gravity, fieldVertical];
+
+/** @throws {InputError} `observable/unknown` */
+export function observableNamed(name: string): Observable {
+  const found = OBSERVABLES.find((candidate) => candidate.name === name);
+  if (found === undefined)
+    throw new InputError(
+      "observable/unknown",
+      `"${name}" is not an observable known here. Give one of ${OBSERVABLES.map((candidate) => candidate.name).join(", ")}.`,
+    );
+  return found;
+}

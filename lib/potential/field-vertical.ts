@@ -1,0 +1,11 @@
+/** The downward component of the anomalous magnetic field: Re F, positive down. */
+import type {Observable} from "./observable.ts";
+import {MAGNETIC_LAYER} from "./source-law.ts";
+
+export const fieldVertical = {
+  name: "field-vertical",
+  dimension: "field",
+  source: MAGNETIC_LAYER,
+  summary: "downward component of the anomalous magnetic field, positive down",
+  anomalyLimit: {value: 5e-6, missing: "the removal of the reference field and of the daily variation"},
+} as const satisfies Observable;

@@ -1,0 +1,11 @@
+/** The downward attraction of the sources: Re F, positive down. */
+import type {Observable} from "./observable.ts";
+import {GRAVITY_LAYER} from "./source-law.ts";
+
+export const gravity = {
+  name: "gravity",
+  dimension: "gravity",
+  source: GRAVITY_LAYER,
+  summary: "downward component of the anomalous attraction, positive down",
+  anomalyLimit: {value: 1e-2, missing: "the normal gravity of the ellipsoid and the free-air or Bouguer reduction"},
+} as const satisfies Observable;

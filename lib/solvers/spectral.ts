@@ -1,0 +1,99 @@
+/**
+ * The solver by eigen-decomposition: with B = Σ √λ_k u_k v_kᵀ and c_k = u_kᵀ d,
+ *
+ *   f_α = Σ √λ_k c_k/(λ_k + α) v_k,   N² = Σ λ_k c_k²/(λ_k + α)²,   E = Σ (α c_k/(λ_k + α))² + ‖d⊥‖².
+ *
+ * Source: Miller, SIAM J. Math. Anal. 1 (1970) 52; Groetsch, The Theory of Tikhonov Regularization (1984) (both from memory).
+ */
+import type {WhitenedSystem} from "../operators/whitened.ts";
+import {combineRight, modesAndCoefficients} from "../spectral/singular-system.ts";
+import type {Solver} from "./solver.ts";
+
+/** @param taken terms of the regional that were projected out of the data */
+export function spectralSolver(system: WhitenedSystem, taken: number): Solver {
+  const {modes, coefficients} = modesAndCoefficients(system.matrix, system.rows, system.columns, system.data);
+  const energies = coefficients.map((c) => c * c);
+  const outside = energyOutside(system.data, energies);
+  const {rootWidth} = system;
+  /** The same readings with `noise` times the standard deviation: λ and c² shrink by its square. */
+  const withNoise = (noise: number): Solver => {
+    const shrink = 1 / (noise * noise);
+    const eigenvalues = modes.eigenvalues.map((lambda) => lambda * shrink);
+    const shrunk = energies.map((energy) => energy * shrink);
+    return {
+      ...modalSums(eigenvalues, shrunk, outside * shrink),
+      data: system.rows,
+      unknowns: modes.columns,
+      modes: modes.count,
+      evidence: evidenceOf(eigenvalues, shrunk, outside * shrink, system.rows - taken),
+      estimate(multiplier) {
+        const weights = coefficients.map(
+          (c, k) => (Math.sqrt(eigenvalues[k]) * c) / noise / (eigenvalues[k] + multiplier),
+        );
+        const density = combineRight(modes, weights);
+        for (let j = 0; j < density.length; ++j) density[j] /= rootWidth[j];
+        return density;
+      },
+      withNoise: (factor) => withNoise(noise * factor),
+    };
+  };
+  return withNoise(1);
+}
+
+/** ‖d⊥‖²: what of the data lies outside the modes. */
+export function energyOutside(data: Float64Array, energies: Float64Array): number {
+  let outside = 0;
+  for (const value of data) outside += value * value;
+  for (const energy of energies) outside -= energy;
+  return Math.max(outside, 0);
+}
+
+/** What depends on the modes by their eigenvalues and energies c_k² alone. */
+export function modalSums(
+  eigenvalues: Float64Array,
+  energies: Float64Array,
+  outside: number,
+): Pick<Solver, "largest" | "least" | "misfit" | "norm" | "normSlope" | "degreesOfFreedom"> {
+  const sum = (term: (lambda: number, energy: number) => number): number => {
+    let total = 0;
+    for (let k = eigenvalues.length - 1; k >= 0; --k) total += term(eigenvalues[k], energies[k]);
+    return total;
+  };
+  const norm = (multiplier: number): number =>
+    multiplier === Infinity ? 0 : Math.sqrt(sum((lambda, energy) => (lambda * energy) / (lambda + multiplier) ** 2));
+  return {
+    largest: eigenvalues[0] ?? 0,
+    least: eigenvalues.at(-1) ?? 0,
+    norm,
+    misfit: (multiplier) =>
+      outside +
+      (multiplier === Infinity
+        ? sum((_, energy) => energy)
+        : sum((lambda, energy) => energy * (multiplier / (lambda + multiplier)) ** 2)),
+    normSlope: (multiplier) =>
+      -sum((lambda, energy) => (lambda * energy) / (lambda + multiplier) ** 3) / norm(multiplier),
+    degreesOfFreedom: (multiplier) => sum((lambda) => lambda / (lambda + multiplier)),
+  };
+}
+
+/**
+ * The readings' own word on their noise: if f were white with some strength, how likely are they at this ratio of
+ * noise to strength, and what noise goes with it?
+ * Source: generalised maximum likelihood, Wahba, Ann. Stat. 13 (1985) 1378 (from memory).
+ */
+const evidenceOf =
+  (
+    eigenvalues: Float64Array,
+    energies: Float64Array,
+    outside: number,
+    freedom: number,
+  ): NonNullable<Solver["evidence"]> =>
+  (multiplier) => {
+    let quadratic = outside;
+    let logDeterminant = 0;
+    for (let k = 0; k < eigenvalues.length; ++k) {
+      quadratic += (energies[k] * multiplier) / (eigenvalues[k] + multiplier);
+      logDeterminant += Math.log1p(eigenvalues[k] / multiplier);
+    }
+    return {against: Math.log(quadratic / freedom) + logDeterminant / freedom, noise: Math.sqrt(quadratic / freedom)};
+  };

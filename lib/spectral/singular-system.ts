@@ -1,0 +1,125 @@
+/**
+ * The singular system of a tall or wide matrix B by eigen-decomposition of the smaller of BᵀB and BBᵀ:
+ * B = Σ_k √λ_k u_k v_kᵀ.
+ *
+ * Squaring costs nothing here: multipliers below `USABLE` of the largest eigenvalue are never asked for, since
+ * they would trust the readings beyond six digits.
+ */
+import {
+  crossProductInto,
+  matVecInto,
+  multiplyInto,
+  multiplyTransposedInto,
+  transposedMatVecInto,
+} from "../numeric/matmul.ts";
+import {symmetricEigen} from "../numeric/symmetric-eigen.ts";
+
+/** Unknown side of the singular system, and the data side where it was asked for. */
+export interface Modes {
+  readonly rows: number;
+  readonly columns: number;
+  /** Modes kept, λ_k > floor. */
+  readonly count: number;
+  /** λ_k = squared singular values, decreasing. */
+  readonly eigenvalues: Float64Array;
+  /** count × columns: v_k, unit vectors over the unknowns; row-major. */
+  readonly right: Float64Array;
+}
+
+export interface SingularSystem extends Modes {
+  /** count × rows: u_k, unit vectors over the data; row-major. */
+  readonly left: Float64Array;
+}
+
+/** Eigenvalues below this share of the largest are rounding: n ε with n up to a few hundred, and headroom. */
+export const USABLE = 1e-13;
+
+/** Eigenpairs of the smaller Gram matrix above the floor. */
+interface Half {
+  readonly count: number;
+  readonly eigenvalues: Float64Array;
+  readonly vectors: Float64Array;
+}
+
+function smallerHalf(matrix: Float64Array, rows: number, columns: number, floor: number): Half {
+  const tall = rows >= columns;
+  const size = tall ? columns : rows;
+  const gram = new Float64Array(size * size);
+  if (tall) crossProductInto(gram, matrix, rows, columns);
+  else multiplyTransposedInto(gram, matrix, matrix, rows, columns, rows);
+  const {values, vectors} = symmetricEigen(gram, size);
+  const least = Math.max(floor, USABLE * Math.max(values[0] ?? 0, 0));
+  let count = 0;
+  while (count < size && values[count] > least) ++count;
+  return {count, eigenvalues: values.slice(0, count), vectors: vectors.subarray(0, count * size)};
+}
+
+const overRoots = (vectors: Float64Array, length: number, eigenvalues: Float64Array): Float64Array => {
+  for (let k = 0; k < eigenvalues.length; ++k) {
+    const scale = 1 / Math.sqrt(eigenvalues[k]);
+    for (let i = 0; i < length; ++i) vectors[k * length + i] *= scale;
+  }
+  return vectors;
+};
+
+const leftFrom = (half: Half, matrix: Float64Array, rows: number, columns: number): Float64Array =>
+  overRoots(
+    multiplyTransposedInto(new Float64Array(half.count * rows), half.vectors, matrix, half.count, columns, rows),
+    rows,
+    half.eigenvalues,
+  );
+
+const rightFrom = (half: Half, matrix: Float64Array, rows: number, columns: number): Float64Array =>
+  overRoots(
+    multiplyInto(new Float64Array(half.count * columns), half.vectors, matrix, half.count, rows, columns),
+    columns,
+    half.eigenvalues,
+  );
+
+/**
+ * @param matrix rows × columns, row-major
+ * @param floor modes with λ ≤ floor are left out; at least `USABLE`·λ_0
+ */
+export function singularSystem(matrix: Float64Array, rows: number, columns: number, floor = 0): SingularSystem {
+  const half = smallerHalf(matrix, rows, columns, floor);
+  const tall = rows >= columns;
+  return {
+    rows,
+    columns,
+    count: half.count,
+    eigenvalues: half.eigenvalues,
+    left: tall ? leftFrom(half, matrix, rows, columns) : half.vectors,
+    right: tall ? half.vectors : rightFrom(half, matrix, rows, columns),
+  };
+}
+
+/**
+ * The modes and one data vector's coefficients c_k = u_kᵀ d; for a tall matrix without ever forming u_k, since
+ * c_k = v_kᵀ Bᵀ d / √λ_k.
+ */
+export function modesAndCoefficients(
+  matrix: Float64Array,
+  rows: number,
+  columns: number,
+  data: Float64Array,
+): {readonly modes: Modes; readonly coefficients: Float64Array} {
+  const half = smallerHalf(matrix, rows, columns, 0);
+  const {count, eigenvalues, vectors} = half;
+  const coefficients = new Float64Array(count);
+  if (rows < columns) {
+    matVecInto(coefficients, vectors, data, count, rows);
+    return {modes: {rows, columns, count, eigenvalues, right: rightFrom(half, matrix, rows, columns)}, coefficients};
+  }
+  const back = transposedMatVecInto(new Float64Array(columns), matrix, data, rows, columns);
+  matVecInto(coefficients, vectors, back, count, columns);
+  for (let k = 0; k < count; ++k) coefficients[k] /= Math.sqrt(eigenvalues[k]);
+  return {modes: {rows, columns, count, eigenvalues, right: vectors}, coefficients};
+}
+
+/** u_kᵀ d for every mode. */
+export const dataCoefficients = (system: SingularSystem, data: Float64Array): Float64Array =>
+  matVecInto(new Float64Array(system.count), system.left, data, system.count, system.rows);
+
+/** Σ_k g_k v_k. */
+export const combineRight = (system: Modes, weights: Float64Array): Float64Array =>
+  transposedMatVecInto(new Float64Array(system.columns), system.right, weights, system.count, system.columns);

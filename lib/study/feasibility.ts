@@ -1,0 +1,72 @@
+/**
+ * Can any source on this support, within this bound, explain the readings? If not: how far the noise, the bound or
+ * the support must move, and which is cheapest.
+ */
+import {ModelError} from "../errors.ts";
+import {misfitLimit, misfitTarget} from "../inverse/misfit-range.ts";
+import {multiplierForMisfit} from "../inverse/multiplier-for.ts";
+import type {BoundChoice} from "../inverse/nouns.ts";
+import {doubt, type Notice} from "../notice.ts";
+import type {Solver} from "../solvers/solver.ts";
+
+interface Relief {
+  readonly words: string;
+  /** By how much it moves, relative. */
+  readonly cost: number;
+}
+
+/** Three digits, rounded up: who follows the advice must arrive. */
+function enough(value: number): string {
+  const unit = 10 ** (Math.floor(Math.log10(value)) - 2);
+  return String(Number((Math.ceil(value / unit) * unit).toPrecision(3)));
+}
+
+/**
+ * @param wider misfit within the same bound on a support wider by so many metres either side
+ * @returns a doubt while the misfit is above the target; nothing when it is not
+ * @throws {ModelError} `bound/infeasible`, `support/misses-sources` beyond six standard deviations
+ */
+export function feasibility(
+  solver: Solver,
+  choice: BoundChoice,
+  wider: () => {readonly metres: number; readonly share: number; readonly misfit: number},
+): Notice[] {
+  // A rule may leave more than it must; a given bound leaves what it leaves.
+  const bounded = choice.basis === "given-bound";
+  const misfit = solver.misfit(bounded ? choice.multiplier : 0);
+  const target = misfitTarget(solver.data);
+  if (misfit <= target * (1 + 1e-9)) return [];
+  const beyond = misfit > misfitLimit(solver.data);
+  const reliefs: Relief[] = [];
+  const factor = Math.sqrt(misfit / target);
+  reliefs.push({words: `the noise ${enough(factor)} times larger`, cost: factor - 1});
+  const best = solver.misfit(0);
+  const freed = multiplierForMisfit(solver, target);
+  if (bounded && freed !== undefined && freed !== Infinity) {
+    const growth = solver.norm(freed) / choice.bound;
+    reliefs.push({words: `the bound ${enough(growth)} times larger`, cost: growth - 1});
+  }
+  if (beyond) {
+    const attempt = wider();
+    if (attempt.misfit <= target)
+      reliefs.push({words: `the support ${enough(attempt.metres)} m wider on either side`, cost: attempt.share});
+  }
+  reliefs.sort((a, b) => a.cost - b.cost);
+  const found = `The misfit is ${misfit.toPrecision(4)} for ${solver.data} readings; noise alone gives at most ${target.toPrecision(4)}.`;
+  const cure = `Cheapest cure: ${reliefs[0].words}${
+    reliefs.length > 1
+      ? `; else ${reliefs
+          .slice(1)
+          .map(({words}) => words)
+          .join(", or ")}`
+      : ""
+  }.`;
+  if (bounded && best <= misfitLimit(solver.data)) {
+    const message = `No source within the bound explains the readings. ${found} ${cure}`;
+    if (beyond) throw new ModelError("bound/infeasible", message);
+    return [doubt("bound/tight", message)];
+  }
+  const message = `No source on this support explains the readings, however strong: the support misses sources, the noise is given too small, or the ground is not two-dimensional. ${found} ${cure}`;
+  if (beyond) throw new ModelError("support/misses-sources", message);
+  return [doubt("support/fits-poorly", message)];
+}

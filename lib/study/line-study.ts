@@ -1,0 +1,157 @@
+/** The walk of one line from readings to answers: the table of contents of the program. */
+import {continueField} from "../continuation/levels.ts";
+import type {Support} from "../geometry/interval.ts";
+import {totalLength} from "../geometry/interval.ts";
+import {apparentNoise, chanceRatio} from "../inverse/apparent-noise.ts";
+import {averagesOn, resolutionOf} from "../inverse/averages.ts";
+import {estimateSource} from "../inverse/estimate.ts";
+import {intervalSolver} from "../inverse/intervals.ts";
+import {multiplierForNorm} from "../inverse/multiplier-for.ts";
+import {stripEstimate} from "../inverse/strip-estimate.ts";
+import {tradeoffCurve} from "../inverse/tradeoff.ts";
+import {NOT_WHITE, whiteness} from "../inverse/whiteness.ts";
+import {doubt, type Notice} from "../notice.ts";
+import {continuumOf} from "../operators/continuum.ts";
+import {forwardOperator} from "../operators/forward.ts";
+import {regionalBasis} from "../operators/regional.ts";
+import {whiten, whitenData} from "../operators/whitened.ts";
+import type {Solver} from "../solvers/solver.ts";
+import {spectralSolver} from "../solvers/spectral.ts";
+import {condition} from "../survey/condition.ts";
+import type {ConditionedLine} from "../survey/conditioned.ts";
+import type {SurveyLine} from "../survey/line.ts";
+import {feasibility} from "./feasibility.ts";
+import type {LineStudy} from "./outcome.ts";
+import type {Settings} from "./settings.ts";
+import {panelsOfLine, supportOfLine} from "./support-of-line.ts";
+
+/**
+ * @throws {ReportableError} when the line cannot be answered: its heights, noise, support or bound are at fault, or no
+ *   source explains it
+ */
+export function studyLine(line: SurveyLine, settings: Settings): LineStudy {
+  const {model, wanted} = settings;
+  const first = condition(line, model.boundary);
+  const support = supportOfLine(first, model);
+  const panels = panelsOfLine(first, support, model);
+  const operator = forwardOperator(line.stations.chainage, first.height, panels);
+  const regional = regionalBasis(line.stations.chainage, model.regional);
+  const {conditioned, solver} = settleNoise(
+    first,
+    spectralSolver(whiten(operator, first.values, first.noise, regional), regional.terms),
+  );
+  const curve = tradeoffCurve(solver);
+  const choice = settings.bound.choose({
+    solver,
+    supportLength: totalLength(support),
+    lines: 1,
+    largestNorm: solver.norm,
+  });
+  const feasible = feasibility(solver, choice, () =>
+    widerMisfit(conditioned, support, settings, choice.basis === "given-bound" ? choice.bound : undefined),
+  );
+  const estimate = estimateSource(solver, choice, operator, regional, conditioned.values);
+
+  const continuum = continuumOf(line.stations.chainage, conditioned.height, support, conditioned.noise);
+  const sorted = regionalBasis(continuum.x, model.regional);
+  const readings = Float64Array.from(continuum.order, (i) => conditioned.values[i]);
+  const intervals = intervalSolver(
+    continuum,
+    sorted,
+    whitenData(readings, conditioned.noise, sorted),
+    choice.bound,
+    wanted.confidence,
+  );
+  const resolution = resolutionOf(intervals, panels, choice.multiplier, line.stations.chainage);
+  return {
+    line,
+    observable: line.channels[0].observable,
+    conditioned,
+    panels,
+    curve,
+    choice,
+    estimate,
+    resolution,
+    averages: averagesOn(intervals, panels, resolution, support),
+    levels: wanted.levels.map((level) =>
+      continueField(level, conditioned, panels, estimate.density, intervals, resolution, support),
+    ),
+    strips: wanted.strips
+      .filter(({group}) => group === undefined || group === line.group)
+      .map((strip) => stripEstimate(intervals, panels, estimate.density, strip, support)),
+    confidence: wanted.confidence,
+    notices: [
+      ...line.notices,
+      ...conditioned.notices,
+      ...choice.notices,
+      ...feasible,
+      ...doubtsOfResidual(Float64Array.from(continuum.order, (i) => estimate.residual[i])),
+      ...doubtsOfStrips(settings, line, support),
+    ],
+  };
+}
+
+/**
+ * A noise taken from the record is raised where the readings show, by what no source explains, that their fourth
+ * differences miss part of it.
+ */
+function settleNoise(conditioned: ConditionedLine, solver: Solver): {conditioned: ConditionedLine; solver: Solver} {
+  if (conditioned.noiseFrom !== "record") return {conditioned, solver};
+  const apparent = apparentNoise(solver);
+  if (apparent === undefined || !(apparent.ratio > chanceRatio(solver.data))) return {conditioned, solver};
+  const notice = doubt(
+    "noise/raised",
+    `The fourth differences of the record give a noise that no source explains the rest by: it was raised ${apparent.ratio.toPrecision(3)} times. The noise is stronger in longer waves than white noise, or the ground is not two-dimensional. Give --noise if you know better.`,
+  );
+  return {
+    conditioned: {
+      ...conditioned,
+      noise: conditioned.noise * apparent.ratio,
+      notices: [...conditioned.notices, notice],
+    },
+    solver: solver.withNoise(apparent.ratio),
+  };
+}
+
+/** Misfit within the bound on a support five median heights wider either side, for the message of `feasibility`. */
+function widerMisfit(conditioned: ConditionedLine, support: Support, settings: Settings, bound: number | undefined) {
+  const heights = Float64Array.from(conditioned.height).sort();
+  const metres = 5 * heights[heights.length >> 1];
+  const wide = support.map(({from, to}) => ({from: from - metres, to: to + metres}));
+  const joined = wide.reduce<{from: number; to: number}[]>((parts, next) => {
+    const last = parts.at(-1);
+    if (last !== undefined && next.from <= last.to) parts[parts.length - 1] = {from: last.from, to: next.to};
+    else parts.push(next);
+    return parts;
+  }, []);
+  const {chainage} = conditioned.line.stations;
+  const panels = panelsOfLine(conditioned, joined, settings.model);
+  const operator = forwardOperator(chainage, conditioned.height, panels);
+  const basis = regionalBasis(chainage, settings.model.regional);
+  const solver = spectralSolver(whiten(operator, conditioned.values, conditioned.noise, basis), basis.terms);
+  const multiplier = bound === undefined ? 0 : multiplierForNorm(solver, bound);
+  return {metres, share: totalLength(joined) / totalLength(support) - 1, misfit: solver.misfit(multiplier)};
+}
+
+function doubtsOfResidual(residual: Float64Array): Notice[] {
+  const {excess, lagOne} = whiteness(residual);
+  if (!(excess > NOT_WHITE)) return [];
+  return [
+    doubt(
+      "residual/not-white",
+      `The residuals are not white noise (neighbours correlate by ${lagOne.toFixed(2)}): either the readings' noise is correlated, or part of the anomaly is taken for noise. Intervals that count on white noise are too narrow by then; try a smaller or larger --noise, or a wider --support.`,
+    ),
+  ];
+}
+
+function doubtsOfStrips(settings: Settings, line: SurveyLine, support: Support): Notice[] {
+  return settings.wanted.strips
+    .filter(({group}) => group === undefined || group === line.group)
+    .filter(({from, to}) => !support.some((part) => part.from < to && part.to > from))
+    .map((strip) =>
+      doubt(
+        "strip/off-support",
+        `Strip ${strip.name} (${strip.from}:${strip.to}) lies off the support, where the source is zero by assumption. Widen --support if the strip can hold sources.`,
+      ),
+    );
+}

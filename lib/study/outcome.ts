@@ -1,0 +1,70 @@
+/** What became of a line: its study, or why there is none. */
+import type {LevelProfile, LevelSetting} from "../continuation/level-profile.ts";
+import type {ReportableError} from "../errors.ts";
+import type {
+  BoundChoice,
+  PanelAverages,
+  Resolution,
+  SourceEstimate,
+  StripEstimate,
+  TradeoffCurve,
+} from "../inverse/nouns.ts";
+import type {Notice} from "../notice.ts";
+import type {Panels} from "../operators/panels.ts";
+import type {Observable} from "../potential/observable.ts";
+import type {ConditionedLine} from "../survey/conditioned.ts";
+import type {SurveyLine} from "../survey/line.ts";
+
+export interface LineStudy {
+  readonly line: SurveyLine;
+  readonly observable: Observable;
+  readonly conditioned: ConditionedLine;
+  readonly panels: Panels;
+  readonly curve: TradeoffCurve;
+  readonly choice: BoundChoice;
+  readonly estimate: SourceEstimate;
+  readonly resolution: Resolution;
+  readonly averages: PanelAverages;
+  readonly levels: readonly LevelProfile[];
+  readonly strips: readonly StripEstimate[];
+  readonly confidence: number;
+  /** Every doubt and remark of the line, acquisition to answer. */
+  readonly notices: readonly Notice[];
+}
+
+export type LineOutcome =
+  | {readonly status: "done" | "doubtful"; readonly id: string; readonly study: LineStudy}
+  | {readonly status: "skipped" | "failed"; readonly id: string; readonly failure: ReportableError};
+
+/** One raster of answers along one row (or column): NaN where the grid holds no reading. */
+export interface RowBand {
+  readonly value: Float64Array;
+  readonly halfWidth: Float64Array;
+}
+
+/** One row (or column) of a grid, answered at every pixel that holds a reading; SI. */
+export interface RowStudy {
+  readonly source: RowBand;
+  readonly levels: readonly {readonly setting: LevelSetting; readonly band: RowBand}[];
+  /** For the ledger. */
+  readonly stations: number;
+  readonly panels: number;
+  readonly modes: number;
+  readonly choice: BoundChoice;
+  readonly norm: number;
+  readonly misfit: number;
+  readonly misfitExpected: number;
+  readonly noise: number;
+  readonly resolution: number;
+  readonly degreesOfFreedom: number;
+  readonly notices: readonly Notice[];
+}
+
+export type RowOutcome =
+  | {readonly status: "done" | "doubtful"; readonly id: string; readonly index: number; readonly study: RowStudy}
+  | {
+      readonly status: "skipped" | "failed";
+      readonly id: string;
+      readonly index: number;
+      readonly failure: ReportableError;
+    };

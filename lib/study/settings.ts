@@ -1,0 +1,44 @@
+/**
+ * Every setting of a run: one noun a stage, unit, default and why. SI and metres;
+ * the edge that reads options and job files converts.
+ */
+import type {AcquisitionSettings} from "../acquisition/settings.ts";
+import type {LevelSetting} from "../continuation/level-profile.ts";
+import type {Interval} from "../geometry/interval.ts";
+import type {Strip} from "../inverse/nouns.ts";
+import type {BoundRule} from "../inverse/rules/rule.ts";
+import type {BoundarySetting} from "../survey/boundary.ts";
+
+export interface SupportSetting extends Interval {
+  /** Only lines of this group; undefined: every line. */
+  readonly group: string | undefined;
+}
+
+export interface ModelSettings {
+  /** Undefined: the ground under a sensor known by clearance only, with a doubt; else it must be given. */
+  readonly boundary: BoundarySetting | undefined;
+  /** Empty: the line and an apron of five median heights either side, since a source that far out adds a few per cent of its strength at most. */
+  readonly support: readonly SupportSetting[];
+  /** m; undefined: a quarter of the least height, see `panelsOn`. */
+  readonly panel: number | undefined;
+  /** Degree of the polynomial estimated together with the source, −1 for none; default 1: anomalies keep a level and a slope of unknown origin. */
+  readonly regional: -1 | 0 | 1 | 2 | 3;
+}
+
+export interface WantedSettings {
+  /** Default: level 0. */
+  readonly levels: readonly LevelSetting[];
+  readonly strips: readonly Strip[];
+  /** Coverage of every interval; default 0.95. */
+  readonly confidence: number;
+}
+
+export interface Settings {
+  readonly acquisition: AcquisitionSettings;
+  readonly model: ModelSettings;
+  /** Default: discrepancy. */
+  readonly bound: BoundRule;
+  readonly wanted: WantedSettings;
+  /** What was already done to the data, carried into record and report. */
+  readonly processing: string | undefined;
+}

@@ -1,0 +1,57 @@
+/** A survey as a stream of line studies: one line in memory at a time. */
+import {InputError, ReportableError} from "../errors.ts";
+import type {Survey} from "../survey/survey.ts";
+import {studyLine} from "./line-study.ts";
+import type {LineOutcome} from "./outcome.ts";
+import type {Settings} from "./settings.ts";
+
+/**
+ * Outcomes in the order of the files; a line that cannot be answered is an outcome too.
+ * @throws {InputError} `support/needs-group`, before the first line
+ */
+export async function* studySurvey(survey: Survey, settings: Settings): AsyncGenerator<LineOutcome> {
+  checkGroups(survey, settings);
+  for await (const record of survey.lines()) {
+    if ("failure" in record) yield {status: "failed", id: record.id, failure: record.failure};
+    else {
+      const {id} = record.line;
+      try {
+        const study = studyLine(record.line, settings);
+        const doubtful = study.notices.some(({weight}) => weight === "doubt");
+        yield {status: doubtful ? "doubtful" : "done", id, study};
+      } catch (error) {
+        if (!(error instanceof ReportableError)) throw error;
+        yield {status: "failed", id, failure: error};
+      }
+    }
+  }
+}
+
+/** Chainage A:B means something on one axis only. */
+export function checkGroups(survey: Survey, settings: Settings): void {
+  const groups = survey.axes.map(({group}) => group);
+  const named = [
+    ...settings.model.support.map(({group, from, to}) => ({
+      group,
+      words: `--support ${from}:${to}`,
+      example: `--support ${groups[0]}/${from}:${to}`,
+    })),
+    ...settings.wanted.strips.map(({group, name, from, to}) => ({
+      group,
+      words: `--strip ${name}=${from}:${to}`,
+      example: `--strip ${name}=${groups[0]}/${from}:${to}`,
+    })),
+  ];
+  for (const {group, words, example} of named) {
+    if (group === undefined && groups.length > 1)
+      throw new InputError(
+        "support/needs-group",
+        `The lines run in ${groups.length} directions (${groups.join(", ")}), each with an axis of its own, so ${words} is ambiguous. Say which group it belongs to, for example ${example}; groundward inspect lists the groups.`,
+      );
+    if (group !== undefined && !groups.includes(group))
+      throw new InputError(
+        "support/unknown-group",
+        `${words} names group ${group}, but the lines form ${groups.length > 1 ? "the groups" : "the group"} ${groups.join(", ")}. Correct the group; groundward inspect lists them.`,
+      );
+  }
+}
