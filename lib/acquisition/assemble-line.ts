@@ -68,6 +68,7 @@ export function assembleLine(
           noise: channel.noise,
         };
       }),
+      file: run.file,
       direction: chainage[count - 1]! < chainage[0]! ? -1 : 1,
       omitted: run.omitted,
       locate: locator(placing, course, stations),

@@ -254,6 +254,7 @@ async function* gridLines(
       stations: {count, row, chainage, offset: new Float64Array(count).fill(frame.offset(line)), x, y, ...heights},
       channels: [{role: channel.role, observable: channel.observable, values, noise: channel.noise}],
       direction: chainage[count - 1]! < chainage[0]! ? -1 : 1,
+      file: raster.name,
       omitted: pixels - count,
       locate: (at) => {
         const pixel = frame.first === 0 ? at / frame.step : frame.first - at / frame.step;

@@ -42,6 +42,7 @@ export function supportOfLine(conditioned: ConditionedLine, settings: ModelSetti
     throw new InputError(
       "support/disjoint",
       `The support ${support.map(({from, to}) => `${from}:${to}`).join(", ")} does not meet line ${line.id}, which runs from chainage ${span.from.toFixed(1)} to ${span.to.toFixed(1)} m. Give a support under the line, in the same chainage (groundward inspect prints it).`,
+      {place: {file: line.file}},
     );
   return support;
 }

@@ -21,6 +21,7 @@ export function condition(line: SurveyLine, boundary: BoundarySetting | undefine
       throw new ModelError(
         "boundary/station-below",
         `The station in row ${line.stations.row[i]} of line ${line.id} lies ${height.toPrecision(4)} m above the boundary (${placed.words}); every station must lie above it. Lower the boundary with --boundary, or correct the heights.`,
+        {place: {file: line.file, row: line.stations.row[i]}},
       );
   });
   let noise: number;

@@ -35,6 +35,8 @@ export interface Channel {
 
 export interface SurveyLine {
   readonly id: string;
+  /** Name of the file it comes from, for messages. */
+  readonly file: string;
   /** Name of the group of lines that share an axis: G1, G2 … */
   readonly group: string;
   readonly stations: Stations;

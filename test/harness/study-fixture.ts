@@ -150,6 +150,7 @@ export function lineStudy(options: FixtureOptions = {}): LineStudy {
       ground,
     },
     channels: [{role: "value", observable, values, noise}],
+    file: "invented.csv",
     direction: reversed ? -1 : 1,
     omitted: 0,
     locate: placed ? locate : undefined,

@@ -45,6 +45,7 @@ export function syntheticLine({
       ground: undefined,
     },
     channels: [{role: "value", observable, values, noise}],
+    file: "made-up.csv",
     direction: 1,
     omitted: 0,
     locate: undefined,

@@ -1,0 +1,41 @@
+/** `inspect` on files: opened as far as a look needs, walked once, and told. */
+
+import {inspectSurvey} from "../lib/survey/inspection.ts";
+import {NOT_CORRECTED} from "../lib/survey/not-corrected.ts";
+import {doubtCollector, doubtText} from "./doubts.ts";
+import {withInputs} from "./inputs.ts";
+import {inspectionJson} from "./inspection-json.ts";
+import {inspectionText} from "./inspection-text.ts";
+import {messagesTo} from "./messages.ts";
+import type {Host} from "./nouns.ts";
+import {openForInspection} from "./open-for-inspection.ts";
+import {type Asked, isOn} from "./options/entry.ts";
+import {acquisitionFrom} from "./options/measured.ts";
+import {surveyNotes} from "./survey-notes.ts";
+
+/** @returns the exit status: 0, 5 when some lines could not be read, 2 when none could */
+export async function inspectRun(paths: readonly string[], asked: Asked, host: Host): Promise<number> {
+  const form = {json: isOn(asked, "json"), quiet: isOn(asked, "quiet")};
+  const messages = messagesTo(host, form);
+  const settings = acquisitionFrom(asked);
+  return withInputs(host, paths, async (files) => {
+    const {survey, filledIn, known} = await openForInspection(files, settings);
+    const inspected = await inspectSurvey(survey);
+    const inspection = known.observable ? inspected : {...inspected, notCorrected: NOT_CORRECTED};
+    const {lines, failures, notices} = inspection;
+    const doubts = doubtCollector();
+    doubts.add(notices);
+    for (const line of lines) doubts.add(line.notices, line.id);
+    if (form.json)
+      host.out.write(`${JSON.stringify({filledIn, ...inspectionJson(inspection, known)}, undefined, 2)}\n`);
+    else {
+      for (const note of [...surveyNotes(survey), ...filledIn]) messages.note(note);
+      host.out.write(inspectionText(inspection, known));
+      for (const {id, code, message} of failures) messages.doubt(`line ${id} cannot be used · ${message} [${code}]`);
+      for (const kind of doubts.summary())
+        if (kind.weight === "doubt") messages.doubt(doubtText(kind));
+        else messages.note(doubtText(kind));
+    }
+    return failures.length === 0 ? 0 : lines.length > 0 ? 5 : 2;
+  });
+}

@@ -1,0 +1,64 @@
+/** Errors for people and, with `--json`, for scripts; and what is said while the work goes on. */
+import {type Place, ReportableError} from "../lib/errors.ts";
+import type {Host} from "./nouns.ts";
+import {paragraph} from "./paragraph.ts";
+import {printable} from "./printable.ts";
+
+/** A message from a file of wild content is cut here. */
+const LONGEST = 1500;
+const WIDEST = 100;
+
+/** `file:row:column`, as far as they are known. */
+const placeText = (place: Place): string =>
+  printable([place.file, place.row, place.column].filter((part) => part !== undefined).join(":"), 200);
+
+export interface Messages {
+  /** Choices and remarks, for people only. */
+  note(text: string): void;
+  /** A doubt; for people only, since with `--json` it stands in the result. */
+  doubt(text: string): void;
+  /** @param subject what failed, when it is not the whole run */
+  error(error: ReportableError, subject?: string): void;
+  /** Anything that is thrown and not reportable. */
+  defect(error: unknown): void;
+}
+
+export function messagesTo(host: Host, form: {readonly json: boolean; readonly quiet: boolean}): Messages {
+  const width = Math.max(40, Math.min(host.err.columns, WIDEST));
+  const say = (first: string, text: string): void => host.err.write(paragraph(first, printable(text, LONGEST), width));
+  const object = (fields: Readonly<Record<string, unknown>>): void => host.err.write(`${JSON.stringify(fields)}\n`);
+  return {
+    note: (text) => {
+      if (!form.json && !form.quiet) say("", text);
+    },
+    doubt: (text) => {
+      if (!form.json && !form.quiet) say("doubt: ", text);
+    },
+    error: ({code, message, place}, subject) => {
+      if (form.json)
+        object({
+          code,
+          message: printable(message, LONGEST),
+          file: place?.file,
+          row: place?.row,
+          column: place?.column,
+          line: subject,
+        });
+      else
+        say(
+          "error: ",
+          `${place === undefined ? "" : `${placeText(place)} · `}${subject === undefined ? "" : `line ${printable(subject, 60)} · `}${message} [${code}]`,
+        );
+    },
+    defect: (error) => {
+      const stack = error instanceof Error ? (error.stack ?? error.message) : String(error);
+      const message =
+        "This is a defect of Groundward, not a fault of your data. Please report it with the lines below.";
+      if (form.json) object({code: "program/defect", message, stack});
+      else host.err.write(`defect: ${message}\n${stack}\n`);
+    },
+  };
+}
+
+/** Exit status of an error that ended the run. */
+export const statusOf = (error: unknown): number => (error instanceof ReportableError ? error.exitStatus : 1);

@@ -1,0 +1,91 @@
+/** The commands, and what becomes of an error that ends one: the exit status. */
+import {Command, CommanderError} from "commander";
+import {nearestName} from "../lib/acquisition/nearest-name.ts";
+import {InputError, ReportableError} from "../lib/errors.ts";
+import {continueCommand} from "./commands/continue.ts";
+import {inspectCommand} from "./commands/inspect.ts";
+import {spectrumCommand} from "./commands/spectrum.ts";
+import {messagesTo, statusOf} from "./messages.ts";
+import type {Host} from "./nouns.ts";
+import {printable} from "./printable.ts";
+
+const DESCRIPTION =
+  "Carries gravity and magnetic survey lines down to the boundary of their sources and to any level above it, with a bound on the sources and an interval on every answer.";
+
+/** Settings every command shares; its texts go to the host and its errors are thrown. */
+function command(name: string, host: Host): Command {
+  return new Command(name)
+    .exitOverride()
+    .showSuggestionAfterError(false)
+    .helpOption("-h, --help", "show this help")
+    .configureOutput({
+      writeOut: (text) => host.out.write(text),
+      writeErr: (text) => host.err.write(text),
+      outputError: () => undefined,
+      getOutHelpWidth: () => Math.min(host.out.columns, 100),
+      getErrHelpWidth: () => Math.min(host.err.columns, 100),
+      getOutHasColors: () => host.colour,
+      getErrHasColors: () => false,
+    });
+}
+
+/** What the command-line library found wrong, in the form of every other error. */
+function asInputError(error: CommanderError, program: Command): InputError {
+  const found = error.message.replace(/^error: /, "").split("\n")[0]!;
+  const word = /'([^']*)'/s.exec(error.message)?.[1] ?? "";
+  const current = program.commands.find((candidate) => candidate.name() === program.args[0]) ?? program;
+  switch (error.code) {
+    case "commander.unknownOption": {
+      const known = current.options.map((option) => option.long!);
+      return new InputError(
+        "option/unknown",
+        `${printable(word, 60)} is no option here. Nearest is ${nearestName(word.split("=")[0]!, [...known, "--help"])}; groundward ${current === program ? "" : `${current.name()} `}--help lists all.`,
+      );
+    }
+    case "commander.unknownCommand":
+      return new InputError(
+        "command/unknown",
+        `"${printable(word, 60)}" is no command. Nearest is ${nearestName(
+          word,
+          program.commands.map((candidate) => candidate.name()),
+        )}; groundward --help lists all.`,
+      );
+    default:
+      return new InputError(
+        "option/refused",
+        `${printable(found, 300)}. See groundward ${current === program ? "" : `${current.name()} `}--help.`,
+      );
+  }
+}
+
+/** Runs the command line of `host`; @returns the exit status */
+export async function groundward(host: Host): Promise<number> {
+  const form = {json: host.arguments.includes("--json"), quiet: host.arguments.includes("--quiet")};
+  const messages = messagesTo(host, form);
+  let status = 0;
+  const finish = (result: number): void => {
+    status = result;
+  };
+  const program = command("groundward", host)
+    .description(DESCRIPTION)
+    .version(host.version, "--version", "print the version")
+    .helpCommand("help [command]", "show the help of a command")
+    // An option after a command belongs to it: a value such as -400:400 is never taken for one of the program's own.
+    .enablePositionalOptions();
+  for (const add of [inspectCommand, continueCommand, spectrumCommand])
+    program.addCommand(add((name) => command(name, host), host, finish));
+  try {
+    if (host.arguments.length === 0) {
+      host.err.write(program.helpInformation());
+      return 2;
+    }
+    await program.parseAsync([...host.arguments], {from: "user"});
+    return status;
+  } catch (error) {
+    if (error instanceof CommanderError && error.exitCode === 0) return 0;
+    const reported = error instanceof CommanderError ? asInputError(error, program) : error;
+    if (reported instanceof ReportableError) messages.error(reported);
+    else messages.defect(reported);
+    return statusOf(reported);
+  }
+}

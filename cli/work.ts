@@ -1,0 +1,55 @@
+/** What a run over lines and a run over a grid do differently: outcomes, products, and what is printed. */
+import type {ByteSource} from "../lib/formats/byte-source.ts";
+import {openRaster} from "../lib/formats/geotiff-read.ts";
+import {GRID_PRODUCTS, gridProducts, LINE_PRODUCTS, lineProducts} from "../lib/products/catalogue.ts";
+import type {RunFrame} from "../lib/products/product.ts";
+import {studyGrid} from "../lib/study/grid-study.ts";
+import type {LineOutcome, RowOutcome} from "../lib/study/outcome.ts";
+import {studySurvey} from "../lib/study/survey-study.ts";
+import type {Survey} from "../lib/survey/survey.ts";
+import {gridResult} from "./grid-result.ts";
+import {lineResult, type RunResult} from "./line-result.ts";
+import {observableOf, type Run} from "./run.ts";
+
+export interface Work<Outcome> {
+  readonly outcomes: AsyncIterable<Outcome>;
+  readonly products: readonly {
+    begin(frame: RunFrame): Promise<void>;
+    take(outcome: Outcome): Promise<void>;
+    end(): Promise<void>;
+  }[];
+  readonly result: RunResult<Outcome>;
+}
+
+export async function lineWork({host, settings, survey, folder}: Run): Promise<Work<LineOutcome>> {
+  const products = await lineProducts(folder, {version: host.version, settings});
+  return {
+    outcomes: studySurvey(survey, settings),
+    products: products.map((product) => ({
+      begin: (frame) => product.begin(frame),
+      take: (outcome) => product.line(outcome),
+      end: () => product.end(),
+    })),
+    result: lineResult(observableOf(settings), settings.wanted.confidence),
+  };
+}
+
+/** @param file the grid, which says where the answers lie */
+export async function gridWork({host, settings, survey, folder}: Run, file: ByteSource): Promise<Work<RowOutcome>> {
+  const products = await gridProducts(folder, {version: host.version, settings}, await openRaster(file));
+  return {
+    outcomes: studyGrid(survey, settings),
+    products: products.map((product) => ({
+      begin: (frame) => product.begin(frame),
+      take: (outcome) => product.row(outcome),
+      end: () => product.end(),
+    })),
+    result: gridResult(observableOf(settings)),
+  };
+}
+
+/** Whether a run over this survey writes a file of that name. */
+export function writesOf({kind}: Survey): (name: string) => boolean {
+  const names = (kind === "grid" ? GRID_PRODUCTS : LINE_PRODUCTS).map(({file}) => file);
+  return (name) => names.includes(name) || (kind === "grid" && /^(source|level_.*)_(row|column)wise\.tif$/.test(name));
+}

@@ -1,0 +1,203 @@
+/** The main job on files, in this process: what is written, printed and returned. */
+import {createHash} from "node:crypto";
+import {readFileSync, writeFileSync} from "node:fs";
+import {join} from "node:path";
+import {describe, expect, test} from "vitest";
+import {parsedCsv} from "../harness/text-sink.ts";
+import {contents, fileWith, gridBytes, run, surveyText, temporaryFolder} from "./harness.ts";
+
+const LINE_FILES = [
+  "levels.csv",
+  "lines.csv",
+  "record.json",
+  "report.html",
+  "source.csv",
+  "strips.csv",
+  "timing.json",
+  "tradeoff.csv",
+];
+const SETTINGS = ["--observable", "gravity", "--noise", "0.02", "--bound", "rms:0.5", "--strip", "dyke=200:260"];
+const flat = (text: string): string => text.replaceAll(/\s+/g, " ");
+const table = (out: string, name: string) => parsedCsv(readFileSync(join(out, name), "utf8"));
+
+describe("continue over lines", () => {
+  test("writes every file, prints a table, and closes with grounds and cautions", async () => {
+    const out = join(temporaryFolder(), "out");
+    const survey = fileWith("lines.csv", surveyText(["L1", "L2"]));
+    const result = await run(["continue", survey, ...SETTINGS, "--level", "0", "--level", "10", "--out", out]);
+    expect(result.status).toBe(0);
+    expect(contents(out)).toEqual(LINE_FILES);
+    expect(result.out).toMatch(/^line +status +stations +noise mGal .*\n-+ .*\nL1 +\w+ +60 +0\.0200 /);
+    expect(result.out).toMatch(/^L2 +dyke +\d/m);
+    for (const line of result.out.split("\n")) expect(line.length).toBeLessThanOrEqual(100);
+    const err = flat(result.err);
+    expect(err).toMatch(/Columns: .*value from "gravity" \(recognised\)/);
+    expect(err).toMatch(/2 of 2 lines: L2/);
+    expect(err).toMatch(/doubt: 2 lines \(L1, L2\).*\[boundary\/ground-taken-as-flat\]/);
+    expect(err).toMatch(/Given bound\./);
+    expect(err).toMatch(/not clearance to dig, drill or enter/);
+    expect(table(out, "levels.csv")).toHaveLength(2 * 60 * 2);
+    expect(table(out, "strips.csv").map(({line, strip}) => `${line} ${strip}`)).toEqual(["L1 dyke", "L2 dyke"]);
+    // The strip's own 0.6 mGal lies in its interval: 0.6e-5 / (2πG) kg/m².
+    const truth = 0.6e-5 / (2 * Math.PI * 6.6743e-11);
+    for (const strip of table(out, "strips.csv")) {
+      expect(Number(strip["lower_kg/m2"])).toBeLessThan(truth);
+      expect(Number(strip["upper_kg/m2"])).toBeGreaterThan(truth);
+    }
+  });
+
+  test("the record digests every file as it stands, and holds no path, clock or option of printing", async () => {
+    const out = join(temporaryFolder(), "out");
+    const survey = fileWith("lines.csv", surveyText());
+    await run(["continue", survey, ...SETTINGS, "--out", out, "--quiet"]);
+    const text = readFileSync(join(out, "record.json"), "utf8");
+    const record = JSON.parse(text);
+    const sha256 = (path: string) => createHash("sha256").update(readFileSync(path)).digest("hex");
+    expect(record.inputs).toEqual([{file: "lines.csv", bytes: surveyText().length, sha256: sha256(survey)}]);
+    expect(record.outputs.map(({file}: {file: string}) => file).sort()).toEqual(
+      LINE_FILES.filter((name) => name !== "record.json" && name !== "timing.json"),
+    );
+    for (const output of record.outputs) expect(output.sha256).toBe(sha256(join(out, output.file)));
+    expect(text).not.toContain(survey.slice(0, survey.lastIndexOf("/")));
+    expect(text).not.toMatch(/quiet|20\d\d-\d\d-\d\dT/);
+  });
+
+  test("the same run twice, anywhere and at any time, gives the same bytes, timing apart", async () => {
+    const [one, two] = [temporaryFolder(), temporaryFolder()];
+    await run(["continue", fileWith("lines.csv", surveyText()), ...SETTINGS, "--out", one]);
+    const later = {now: () => 1e12};
+    await run(["continue", fileWith("lines.csv", surveyText()), ...SETTINGS, "--out", two, "--json"], later);
+    for (const name of LINE_FILES.filter((file) => file !== "timing.json"))
+      expect(readFileSync(join(two, name)).equals(readFileSync(join(one, name)))).toBe(true);
+    expect(JSON.parse(readFileSync(join(two, "timing.json"), "utf8")).started).toBe("2001-09-09T01:46:40.000Z");
+  });
+
+  test("--json puts one object on standard output and nothing on standard error", async () => {
+    const out = temporaryFolder();
+    const args = ["continue", fileWith("lines.csv", surveyText()), ...SETTINGS, "--out", out, "--json"];
+    const result = await run(args);
+    expect({status: result.status, err: result.err}).toEqual({status: 0, err: ""});
+    const object = JSON.parse(result.out);
+    expect(object.files.sort()).toEqual(LINE_FILES);
+    const [strip] = table(out, "strips.csv");
+    // Files carry 12 significant digits.
+    expect(Number(object.strips[0]["mean_kg/m2"].toPrecision(12))).toBe(Number(strip!["mean_kg/m2"]));
+    expect(object.lines[0]).toMatchObject({line: "L1", stations: 60, noise_mGal: expect.closeTo(0.02, 12)});
+    expect(object.doubts.map(({code}: {code: string}) => code)).toContain("boundary/ground-taken-as-flat");
+    expect(object.intervals[0].basis).toBe("given-bound");
+    expect(object.cautions.join(" ")).toMatch(/not clearance to dig/);
+  });
+
+  test("--quiet leaves the table and nothing else", async () => {
+    const args = ["continue", fileWith("lines.csv", surveyText()), ...SETTINGS, "--out", temporaryFolder(), "--quiet"];
+    const result = await run(args);
+    expect(result.err).toBe("");
+    expect(result.out).toMatch(/^line /);
+  });
+
+  test("on a terminal the progress line is cleared before anything else is said", async () => {
+    const args = ["continue", fileWith("lines.csv", surveyText()), ...SETTINGS, "--out", temporaryFolder()];
+    const result = await run(args, {}, true);
+    expect(result.err).toContain("\r\u001b[2K1 of 1 lines · L1\r\u001b[2Kdoubt:");
+    expect(result.out).not.toContain("\u001b");
+  });
+
+  test("several lines, one failing: status 5, the others answered, the ledger and standard error say why", async () => {
+    const out = temporaryFolder();
+    // L2 flies at the boundary.
+    const text = surveyText(["L1", "L2", "L3"]).replace("L2,100,30,", "L2,100,0,");
+    const result = await run(["continue", fileWith("lines.csv", text), ...SETTINGS, "--out", out]);
+    expect(result.status).toBe(5);
+    const ledger = table(out, "lines.csv");
+    expect(ledger.map(({line, status}) => [line, status === "failed"])).toEqual([
+      ["L1", false],
+      ["L2", true],
+      ["L3", false],
+    ]);
+    expect(ledger[1]!["reason"]).toMatch(/boundary/);
+    expect(flat(result.err)).toMatch(/error: line L2 · .*\[boundary\/station-below\]/);
+    expect(contents(out)).toEqual(LINE_FILES);
+  });
+
+  test("all failing alike: their own status, and no folder", async () => {
+    const out = join(temporaryFolder(), "out");
+    const survey = fileWith("lines.csv", surveyText(["L1", "L2"]));
+    const result = await run(["continue", survey, ...SETTINGS, "--boundary", "5", "--elevation", "3", "--out", out]);
+    expect(result.status).toBe(3);
+    expect(result.out).toBe("");
+    expect(contents(out)).toEqual([]);
+  });
+
+  test("another run in the folder is refused with status 2 before any work, unless --replace", async () => {
+    const out = temporaryFolder();
+    const survey = fileWith("lines.csv", surveyText());
+    const go = (...more: string[]) => run(["continue", survey, ...SETTINGS, "--out", out, ...more]);
+    expect((await go()).status).toBe(0);
+    const before = readFileSync(join(out, "source.csv"), "utf8");
+    const refused = await go("--regional", "0");
+    expect(refused.status).toBe(2);
+    expect(flat(refused.err)).toMatch(/The folder holds another run \(regional was "1" and is "0"\)\. Give --replace/);
+    expect(readFileSync(join(out, "source.csv"), "utf8")).toBe(before);
+    expect((await go("--regional", "0", "--replace")).status).toBe(0);
+    expect(readFileSync(join(out, "source.csv"), "utf8")).not.toBe(before);
+    writeFileSync(survey, `${surveyText()}L1,600,30,0.1\n`);
+    expect(flat((await go("--regional", "0")).err)).toMatch(/\[out\/other-run\]/);
+  });
+});
+
+describe("continue over a grid", () => {
+  const GRID = ["--observable", "field-vertical", "--clearance", "60", "--noise", "1", "--bound", "discrepancy"];
+
+  test("writes rasters, ledger and report; prints the rows taken together and the caution of rows", async () => {
+    const out = temporaryFolder();
+    const result = await run([
+      "continue",
+      fileWith("grid.tif", gridBytes()),
+      ...GRID,
+      "--level",
+      "0",
+      "--level",
+      "20",
+      "--out",
+      out,
+    ]);
+    expect(result.err).not.toMatch(/error/);
+    expect(result.status).toBe(0);
+    expect(contents(out)).toEqual([
+      ..."level_0_rowwise.tif level_20_rowwise.tif lines.csv record.json report.html source_rowwise.tif timing.json".split(
+        " ",
+      ),
+    ]);
+    expect(result.out).toMatch(/^pixels with a reading +120$/m);
+    expect(flat(result.err)).toMatch(/not a three-dimensional continuation/);
+    expect(table(out, "lines.csv")).toHaveLength(5);
+  });
+
+  test("columns on request", async () => {
+    const out = temporaryFolder();
+    const args = [
+      "continue",
+      fileWith("grid.tif", gridBytes(12, 16)),
+      ...GRID,
+      "--profiles",
+      "columns",
+      "--out",
+      out,
+      "--json",
+    ];
+    const result = await run(args);
+    expect(result.err).toBe("");
+    expect(JSON.parse(result.out)).toMatchObject({pixels: 192, noise_nT: expect.closeTo(1, 12)});
+    expect(contents(out)).toContain("source_columnwise.tif");
+    expect(table(out, "lines.csv")).toHaveLength(12);
+  });
+
+  test("a raster of someone else is refused before the work", async () => {
+    const out = temporaryFolder();
+    writeFileSync(join(out, "source_rowwise.tif"), "mine");
+    const result = await run(["continue", fileWith("grid.tif", gridBytes()), ...GRID, "--out", out]);
+    expect(result.status).toBe(2);
+    expect(result.err).toMatch(/out\/foreign-file/);
+    expect(contents(out)).toEqual(["source_rowwise.tif"]);
+  });
+});

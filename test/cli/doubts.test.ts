@@ -1,0 +1,73 @@
+import {expect, test} from "vitest";
+import {doubtCollector, doubtText} from "../../cli/doubts.ts";
+import {nodeHost} from "../../cli/host.ts";
+import {progressOf} from "../../cli/progress.ts";
+import {doubt, remark} from "../../lib/notice.ts";
+
+test("doubts of many lines are told once a kind, doubts before remarks", () => {
+  const doubts = doubtCollector();
+  doubts.add([doubt("survey/crooked", "The axis is doubtful.")]);
+  for (let i = 1; i <= 27; ++i)
+    doubts.add(
+      [
+        remark("bound/not-active", "wide"),
+        doubt("noise/from-record", `noise of ${i}`),
+        doubt("noise/from-record", "again"),
+      ],
+      `L${i}`,
+    );
+  doubts.add([doubt("line/bent", "The line bends.")], "L3");
+  const summary = doubts.summary();
+  expect(summary.map(({code, count}) => [code, count])).toEqual([
+    ["survey/crooked", 0],
+    ["noise/from-record", 27],
+    ["line/bent", 1],
+    ["bound/not-active", 27],
+  ]);
+  expect(summary.map((kind) => doubtText(kind))).toEqual([
+    "The axis is doubtful. [survey/crooked]",
+    "27 lines (L1, L2, L3, L4 and 23 more) · as on L1: noise of 1 [noise/from-record]",
+    "line L3 · The line bends. [line/bent]",
+    "27 lines (L1, L2, L3, L4 and 23 more) · as on L1: wide [bound/not-active]",
+  ]);
+  expect(doubtText(summary[3]!, "row")).toMatch(/^27 rows \(/);
+});
+
+function progressText(total: number, isTerminal: boolean, silent = false): string {
+  let text = "";
+  let time = 0;
+  const err = {
+    isTerminal,
+    columns: 80,
+    write: (more: string) => {
+      text += more;
+    },
+  };
+  const host = nodeHost({
+    err,
+    now: () => {
+      time += 40;
+      return time;
+    },
+  });
+  const progress = progressOf(host, total, "lines", silent);
+  for (let i = 1; i <= total; ++i) progress.step(`L${i}`);
+  progress.end();
+  return text;
+}
+
+test("progress in a pipe is a few lines, however many there are", () => {
+  expect(progressText(2, false)).toBe("1 of 2 lines: L1\n2 of 2 lines: L2\n");
+  expect(progressText(1000, false)).toBe(
+    "250 of 1000 lines\n500 of 1000 lines\n750 of 1000 lines\n1000 of 1000 lines\n",
+  );
+  expect(progressText(1000, false, true)).toBe("");
+});
+
+test("progress on a terminal is one line that is cleared at the end", () => {
+  const text = progressText(20, true);
+  expect(text).not.toContain("\n");
+  expect(text.startsWith("\r\u001b[2K1 of 20 lines · L1")).toBe(true);
+  expect(text.endsWith("\r\u001b[2K")).toBe(true);
+  expect(text.split("\r").length - 1).toBeLessThan(20);
+});

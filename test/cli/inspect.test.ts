@@ -1,0 +1,107 @@
+/** A look at files: what is told with much known, and with little. */
+import {describe, expect, test} from "vitest";
+import {fileWith, gridBytes, run, surveyText} from "./harness.ts";
+
+const flat = (text: string): string => text.replaceAll(/\s+/g, " ");
+
+describe("inspect", () => {
+  test("prints tables of the lines, agreement of neighbours and what is not corrected, within 100 columns", async () => {
+    const survey = fileWith("lines.csv", surveyText(["L1", "L2"]));
+    const {status, out, err} = await run(["inspect", survey, "--observable", "gravity"]);
+    expect(status).toBe(0);
+    expect(out).toMatch(/^L1 +G1 +60 +0 +0 +590 +10\.0 +0 /m);
+    expect(out).toMatch(/readings mGal +noise mGal/);
+    expect(out).toMatch(/^L1 +30 +0\.33 /m);
+    expect(out).toMatch(/^L1 +L2 +0 +0 +590 +0\.\d\d? /m);
+    expect(flat(out)).toMatch(/terrain: The attraction of hills/);
+    // Magnetic corrections do not concern gravity.
+    expect(flat(out)).not.toMatch(/reference field:/);
+    for (const line of out.split("\n")) expect(line.length).toBeLessThanOrEqual(100);
+    expect(flat(err)).toMatch(/Columns: .*value from "gravity" \(recognised\)/);
+  });
+
+  test("needs no observable and no height: says so, and shows no unit and no height that nobody gave", async () => {
+    const survey = fileWith("lines.csv", surveyText().replace("clearance", "weather"));
+    const {status, out, err} = await run(["inspect", survey]);
+    expect(status).toBe(0);
+    expect(flat(err)).toMatch(/No --observable was given: readings stand in the unit of the file/);
+    expect(flat(err)).toMatch(
+      /No height of the sensor is known: heights are left out\. Give --clearance H or --elevation Z/,
+    );
+    expect(out).not.toMatch(/mGal {2}|nT|(clearance|elevation) m/);
+    expect(flat(out)).toMatch(/reference field: .*terrain: /);
+    const object = JSON.parse((await run(["inspect", survey, "--json"])).out);
+    expect(object.filledIn).toHaveLength(2);
+    expect(object.lines[0].heights).toEqual([]);
+    expect(object.lines[0].channels[0]).not.toHaveProperty("unit");
+  });
+
+  test("takes the observable that the file's own names speak of", async () => {
+    const magnetic = surveyText().replace("gravity", "anomaly_nT");
+    const {out} = await run(["inspect", fileWith("lines.csv", magnetic), "--json"]);
+    // Read as gravity it would carry the doubt that the column is named as if in nT.
+    expect(JSON.parse(out).notices.map(({code}: {code: string}) => code)).not.toContain("column/unit");
+  });
+
+  test("--json holds readings in the unit it names, and lengths in metres", async () => {
+    const survey = fileWith("lines.csv", surveyText(["L1", "L2"]));
+    const {status, out, err} = await run(["inspect", survey, "--observable", "gravity", "--unit", "uGal", "--json"]);
+    expect({status, err}).toEqual({status: 0, err: ""});
+    const {lines, kind, notCorrected, neighbours} = JSON.parse(out);
+    expect(kind).toBe("lines");
+    expect(lines).toHaveLength(2);
+    const values = surveyText(["L1"])
+      .trimEnd()
+      .split("\n")
+      .slice(1)
+      .map((row) => Number(row.split(",")[3]));
+    // Taken as µGal, shown in mGal.
+    expect(lines[0].channels[0]).toMatchObject({unit: "mGal", observable: "gravity"});
+    expect(lines[0].channels[0].readings.greatest).toBeCloseTo(Math.max(...values) / 1000, 9);
+    expect(lines[0].spacing.median).toBe(10);
+    expect(neighbours.pairs).toHaveLength(1);
+    expect(notCorrected.length).toBeGreaterThan(3);
+  });
+
+  test("the noise it finds is that of the data: 0.02 mGal, white", async () => {
+    const {out} = await run([
+      "inspect",
+      fileWith("lines.csv", surveyText(["L1"], 2000)),
+      "--observable",
+      "gravity",
+      "--json",
+    ]);
+    const {noise} = JSON.parse(out).lines[0].channels[0];
+    // Median of 2,000 fourth differences, correlated over 5: standard error about 2.5 %; four of them.
+    expect(Math.abs(noise.sigma / 0.02 - 1)).toBeLessThan(0.1);
+    expect(noise.white).toBe(true);
+  });
+
+  test("a grid: its first rows, no noise of the record, no neighbours", async () => {
+    const {status, out, err} = await run(["inspect", fileWith("grid.tif", gridBytes(24, 30))]);
+    expect(status).toBe(0);
+    expect(flat(err)).toMatch(/Grid of 24 × 30 pixels/);
+    expect(out).toMatch(/^The first 12 of 30 lines; --json gives all\.$/m);
+    expect(out).toMatch(/not known$/m);
+    expect(JSON.parse((await run(["inspect", fileWith("grid.tif", gridBytes()), "--json"])).out).lines).toHaveLength(5);
+  });
+
+  test("a bad file is refused as it is by continue", async () => {
+    const {status, out, err} = await run(["inspect", fileWith("a.csv", `${surveyText()}L1,700,30,bad\n`)]);
+    expect({status, out}).toEqual({status: 2, out: ""});
+    expect(flat(err)).toMatch(/a\.csv:62:gravity · .*"bad"/);
+  });
+
+  test("when no observable fits, the refusal is that of the one that came furthest", async () => {
+    const total = surveyText().replaceAll(/[-\d.]+\n/g, "46000\n");
+    const {status, err} = await run(["inspect", fileWith("a.csv", total)]);
+    expect(status).toBe(2);
+    expect(err).toMatch(/value\/not-an-anomaly/);
+  });
+
+  test("an option of continue that means nothing here is unknown", async () => {
+    const {status, err} = await run(["inspect", "a.csv", "--support", "0:1"]);
+    expect(status).toBe(2);
+    expect(err).toMatch(/--support is no option here/);
+  });
+});
