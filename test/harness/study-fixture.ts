@@ -154,6 +154,7 @@ export function lineStudy(options: FixtureOptions = {}): LineStudy {
     direction: reversed ? -1 : 1,
     omitted: 0,
     locate: placed ? locate : undefined,
+    track: undefined,
     notices: [],
   };
   const panels = panelsOn([{from: support[0], to: support[1]}], 1.5);

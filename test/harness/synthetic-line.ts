@@ -1,5 +1,6 @@
 /** Survey lines made up for tests: chainage only, one clearance. */
 import type {LevelSetting} from "../../lib/continuation/level-profile.ts";
+import type {Strip} from "../../lib/inverse/nouns.ts";
 import {discrepancy} from "../../lib/inverse/rules/discrepancy.ts";
 import {normalDeviates, seededRandom} from "../../lib/numeric/random.ts";
 import {gravity} from "../../lib/potential/gravity.ts";
@@ -49,6 +50,7 @@ export function syntheticLine({
     direction: 1,
     omitted: 0,
     locate: undefined,
+    track: undefined,
     notices: [],
   };
 }
@@ -65,7 +67,7 @@ export interface PlainSettings {
   readonly regional?: Settings["model"]["regional"];
   readonly bound?: Settings["bound"];
   readonly levels?: readonly LevelSetting[];
-  readonly strips?: Settings["wanted"]["strips"];
+  readonly strips?: readonly Strip[];
   readonly confidence?: number;
 }
 
