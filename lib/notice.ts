@@ -8,8 +8,9 @@ export interface Notice {
   /** The line it belongs to; absent for the survey as a whole. */
   readonly line?: string;
   readonly place?: Place;
-  /** Only a doubt lowers a line from `done` to `doubtful`; a remark does not. */
   readonly weight: "doubt" | "remark";
+  /** True of every line measured like this one, so that it singles none out. */
+  readonly everywhere?: boolean;
 }
 
 export const doubt = (code: ErrorCode, message: string, place?: Place): Notice =>
@@ -17,3 +18,15 @@ export const doubt = (code: ErrorCode, message: string, place?: Place): Notice =
 
 export const remark = (code: ErrorCode, message: string, place?: Place): Notice =>
   place === undefined ? {code, message, weight: "remark"} : {code, message, weight: "remark", place};
+
+/** A doubt about every line alike, from how the survey was measured. */
+export const standingDoubt = (code: ErrorCode, message: string): Notice => ({
+  code,
+  message,
+  weight: "doubt",
+  everywhere: true,
+});
+
+/** Whether a line is `doubtful` rather than `done`: a doubt that is its own. */
+export const isDoubtful = (notices: readonly Notice[]): boolean =>
+  notices.some(({weight, everywhere}) => weight === "doubt" && everywhere !== true);

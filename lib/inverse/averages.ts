@@ -20,32 +20,34 @@ export function resolutionOf(
   stations: Float64Array,
 ): Resolution {
   const local = panels.centre.map((x) => 1 / solver.resolvingPower(densityAt(x), multiplier));
-  const above = Float64Array.from(
-    [...stations].flatMap((x) => {
-      const panel = panelAt(panels, x);
-      return panel === undefined ? [] : [local[panel]];
-    }),
-  ).sort();
+  const above = Float64Array.from([...stations].flatMap((x) => localAt(panels, local, x)?.length ?? [])).sort();
   const lengths = above.length > 0 ? above : Float64Array.from(local).sort();
   return {length: lengths[lengths.length >> 1], local};
 }
 
-/** The panel that holds chainage x; undefined off the support. */
-export function panelAt(panels: Panels, x: number): number | undefined {
+/** Resolution at x, between panel centres as their weighted geometric mean so that no panel shows in it, and its part of the support; undefined off the support. */
+function localAt(panels: Panels, local: Float64Array, x: number): {length: number; part: Interval} | undefined {
   for (const {interval, first, count} of panels.components) {
     if (x < interval.from || x > interval.to) continue;
-    return first + Math.min(count - 1, Math.floor((x - interval.from) / panels.width[first]));
+    const place = Math.min(Math.max((x - panels.centre[first]) / panels.width[first], 0), count - 1);
+    const left = first + Math.min(Math.floor(place), Math.max(count - 2, 0));
+    const right = Math.min(left + 1, first + count - 1);
+    const share = place - (left - first);
+    // Off the line it grows like an exponential; and not 0·∞ where nothing is resolved.
+    const length =
+      share === 0 ? local[left] : share === 1 ? local[right] : local[left] ** (1 - share) * local[right] ** share;
+    return {length, part: interval};
   }
   return undefined;
 }
 
 /** The stretch that an average at x is taken over: the resolution there, at least that of the line, inside the part of the support that holds x. */
 export function stretchAt(panels: Panels, resolution: Resolution, x: number): Interval | undefined {
-  const panel = panelAt(panels, x);
-  if (panel === undefined) return undefined;
-  const {interval} = panels.components.find(({first, count}) => panel >= first && panel < first + count)!;
-  const length = Math.min(Math.max(resolution.length, resolution.local[panel]), lengthOf(interval));
-  const from = Math.min(Math.max(x - 0.5 * length, interval.from), interval.to - length);
+  const found = localAt(panels, resolution.local, x);
+  if (found === undefined) return undefined;
+  const {part} = found;
+  const length = Math.min(Math.max(resolution.length, found.length), lengthOf(part));
+  const from = Math.min(Math.max(x - 0.5 * length, part.from), part.to - length);
   return {from, to: from + length};
 }
 

@@ -26,7 +26,7 @@ import {nodeMatrix, nodesFor, responseNormSquared} from "../operators/continuum.
 import type {Functional} from "../operators/functional.ts";
 import {meanOver} from "../operators/functional.ts";
 import {projectOutInPlace, projectOutOfColumnsInPlace, type RegionalBasis} from "../operators/regional.ts";
-import {type SingularSystem, singularSystem} from "../spectral/singular-system.ts";
+import {type DataModes, dataModes} from "../spectral/singular-system.ts";
 import {regionalReader} from "./regional-reader.ts";
 
 /** Lines with no more stations than this, or no more nodes than the next, are one window. Heuristics, for speed alone. */
@@ -62,7 +62,7 @@ export interface IntervalSolver {
 interface Window {
   readonly first: number;
   readonly last: number;
-  readonly modes: SingularSystem;
+  readonly modes: DataModes;
   /** u_kᵀ d. */
   readonly data: Float64Array;
   /** u_kᵀ R, u_kᵀ W and u_kᵀ G W, modes × terms; zero terms where the regional was projected out before. */
@@ -103,7 +103,7 @@ export function intervalSolver(
     const matrix = nodeMatrix(continuum, nodes, first, last);
     const rows = last - first;
     if (whole) projectOutOfColumnsInPlace(matrix, nodes.count, basis);
-    const modes = singularSystem(matrix, rows, nodes.count, floor);
+    const modes = dataModes(matrix, rows, nodes.count, floor);
     const terms = reader === undefined ? 0 : basis.terms;
     const onModes = (vectors: Float64Array): Float64Array => {
       const part = new Float64Array(terms * rows);
@@ -288,7 +288,7 @@ function halfWidth(deviation: number, bias: number, confidence: number): number 
   return foldedNormalQuantile(bias / deviation, confidence) * deviation;
 }
 
-/** ln a with the shortest interval, to 5 % in a: the width is flat there, its own error second order in that. */
+/** ln a with the shortest interval, to half a per cent in a: the width is flat there, its own error second order in that. */
 function shortest(width: (logA: number) => number, bound: number): number {
   const unit = -2 * Math.log(bound);
   return minimise(width, unit + Math.log(A_RANGE[0]), unit + Math.log(A_RANGE[1]), 5e-3).x;

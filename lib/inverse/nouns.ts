@@ -1,4 +1,5 @@
 /** What the inverse problem hands on. SI units (f in m/s² or T), lengths in m; multipliers belong to SI f. */
+import type {Support} from "../geometry/interval.ts";
 import type {Notice} from "../notice.ts";
 
 /** Misfit and norm over a range of multipliers, multiplier increasing. */
@@ -60,7 +61,12 @@ export interface Strip {
   readonly to: number;
   /** Only lines of this group; undefined: every line. */
   readonly group: string | undefined;
+  /** Where a polygon of the map made it: its parts on this line, from the first at `from` to the last at `to`. */
+  readonly parts?: Support;
 }
+
+/** The stretches of a strip. */
+export const partsOf = ({parts, from, to}: Strip): Support => parts ?? [{from, to}];
 
 /** Mean of f over a strip (zero outside the support) with its interval; SI. */
 export interface StripEstimate {

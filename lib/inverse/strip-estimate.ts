@@ -1,9 +1,9 @@
 /** Mean of f over a strip, from the interval estimate and from the one source. */
-import {clip, type Support} from "../geometry/interval.ts";
+import {clip, type Support, totalLength} from "../geometry/interval.ts";
 import {meanOver} from "../operators/functional.ts";
 import type {Panels} from "../operators/panels.ts";
 import type {IntervalSolver} from "./intervals.ts";
-import type {Strip, StripEstimate} from "./nouns.ts";
+import {partsOf, type Strip, type StripEstimate} from "./nouns.ts";
 
 export function stripEstimate(
   solver: IntervalSolver,
@@ -12,16 +12,17 @@ export function stripEstimate(
   strip: Strip,
   support: Support,
 ): StripEstimate {
-  const {value, halfWidth} = solver.interval(meanOver(strip, support));
+  const stretches = partsOf(strip);
+  const {value, halfWidth} = solver.interval(meanOver(strip, support, stretches));
   let integral = 0;
   for (let j = 0; j < panels.count; ++j)
-    for (const part of clip(strip, [{from: panels.from[j], to: panels.to[j]}]))
+    for (const part of clip({from: panels.from[j], to: panels.to[j]}, stretches))
       integral += density[j] * (part.to - part.from);
   return {
     strip,
     mean: value,
     lower: value - halfWidth,
     upper: value + halfWidth,
-    plainMean: integral / (strip.to - strip.from),
+    plainMean: integral / totalLength(stretches),
   };
 }

@@ -28,5 +28,16 @@ export function whiteness(residual: Float64Array, lags = 5): {readonly excess: n
   return {excess: (statistic - lags) / Math.sqrt(2 * lags), lagOne};
 }
 
-/** Beyond this many standard deviations the residuals are called not white: about 1 line in 1,000 by chance (χ²₅ tail). */
-export const NOT_WHITE = 5;
+/** Beyond this many standard deviations residuals are called not white: about 1 line in 1,000 by chance (χ²₅ tail). */
+const BY_CHANCE = 5;
+
+/**
+ * The excess beyond which residuals are called not white. A rule that stops at a misfit above the number of readings
+ * leaves that share of the residual's power unexplained on purpose, and it may all be of one wavelength.
+ *
+ * @param misfit Σ(residual/σ)²
+ */
+export function notWhite(readings: number, misfit: number, lags = 5): number {
+  const left = Math.max(0, 1 - readings / misfit);
+  return BY_CHANCE + (lags * readings * left * left) / Math.sqrt(2 * lags);
+}

@@ -2,7 +2,7 @@
  * Numbers asked of f: a mean over stretches of the boundary, or the field at a point above it. Each knows its own
  * norm in L²(S) and, exactly, what every reading has in common with it.
  */
-import {clip, type Interval, type Support} from "../geometry/interval.ts";
+import {clip, type Interval, type Support, totalLength} from "../geometry/interval.ts";
 import {gramEntry, supportLogarithm} from "../potential/gram.ts";
 import {harmonicMeasure, poissonKernel} from "../potential/poisson.ts";
 import type {Continuum} from "./continuum.ts";
@@ -19,10 +19,13 @@ export interface Functional {
   respondInto(target: Float64Array, continuum: Continuum, first: number, last: number): Float64Array;
 }
 
-/** Mean of f over `interval`; outside the support f is zero, and counts as zero. */
-export function meanOver(interval: Interval, support: Support): Functional {
-  const parts = clip(interval, support);
-  const length = interval.to - interval.from;
+/**
+ * Mean of f over `interval`; outside the support f is zero, and counts as zero.
+ * @param stretches where the mean is over parts of the interval only: these
+ */
+export function meanOver(interval: Interval, support: Support, stretches: Support = [interval]): Functional {
+  const parts = stretches.flatMap((stretch) => clip(stretch, support));
+  const length = totalLength(stretches);
   const inside = parts.reduce((sum, part) => sum + part.to - part.from, 0);
   return {
     from: interval.from,

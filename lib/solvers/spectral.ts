@@ -6,12 +6,12 @@
  * Source: Miller, SIAM J. Math. Anal. 1 (1970) 52; Groetsch, The Theory of Tikhonov Regularization (1984) (both from memory).
  */
 import type {WhitenedSystem} from "../operators/whitened.ts";
-import {combineRight, modesAndCoefficients} from "../spectral/singular-system.ts";
+import {combineRight, modesAndCoefficients, USABLE} from "../spectral/singular-system.ts";
 import type {Solver} from "./solver.ts";
 
 /** @param taken terms of the regional that were projected out of the data */
 export function spectralSolver(system: WhitenedSystem, taken: number): Solver {
-  const {modes, coefficients} = modesAndCoefficients(system.matrix, system.rows, system.columns, system.data);
+  const {modes, coefficients, rest} = modesAndCoefficients(system.matrix, system.rows, system.columns, system.data);
   const energies = coefficients.map((c) => c * c);
   const outside = energyOutside(system.data, energies);
   const {rootWidth} = system;
@@ -31,6 +31,10 @@ export function spectralSolver(system: WhitenedSystem, taken: number): Solver {
           (c, k) => (Math.sqrt(eigenvalues[k]) * c) / noise / (eigenvalues[k] + multiplier),
         );
         const density = combineRight(modes, weights);
+        // Modes below the floor add Bᵀd⊥/α while α is above it; below, they would be rounding.
+        const floor = USABLE * eigenvalues[0];
+        if (multiplier > 10 * floor)
+          for (let j = 0; j < rest.length; ++j) density[j] += (rest[j] * shrink) / multiplier;
         for (let j = 0; j < density.length; ++j) density[j] /= rootWidth[j];
         return density;
       },
@@ -79,21 +83,24 @@ export function modalSums(
 /**
  * The readings' own word on their noise: if f were white with some strength, how likely are they at this ratio of
  * noise to strength, and what noise goes with it?
+ * @param freedom readings less terms of the regional
+ * @param repeats how many lines share each mode, where lines are pooled
  * Source: generalised maximum likelihood, Wahba, Ann. Stat. 13 (1985) 1378 (from memory).
  */
-const evidenceOf =
+export const evidenceOf =
   (
     eigenvalues: Float64Array,
     energies: Float64Array,
     outside: number,
     freedom: number,
+    repeats?: Float64Array,
   ): NonNullable<Solver["evidence"]> =>
   (multiplier) => {
     let quadratic = outside;
     let logDeterminant = 0;
     for (let k = 0; k < eigenvalues.length; ++k) {
       quadratic += (energies[k] * multiplier) / (eigenvalues[k] + multiplier);
-      logDeterminant += Math.log1p(eigenvalues[k] / multiplier);
+      logDeterminant += (repeats?.[k] ?? 1) * Math.log1p(eigenvalues[k] / multiplier);
     }
     return {against: Math.log(quadratic / freedom) + logDeterminant / freedom, noise: Math.sqrt(quadratic / freedom)};
   };

@@ -14,7 +14,7 @@ import {
 } from "../numeric/matmul.ts";
 import {symmetricEigen} from "../numeric/symmetric-eigen.ts";
 
-/** Unknown side of the singular system, and the data side where it was asked for. */
+/** Unknown side of the singular system. */
 export interface Modes {
   readonly rows: number;
   readonly columns: number;
@@ -26,10 +26,18 @@ export interface Modes {
   readonly right: Float64Array;
 }
 
-export interface SingularSystem extends Modes {
+/** Data side. */
+export interface DataModes {
+  readonly rows: number;
+  /** Modes kept, λ_k > floor. */
+  readonly count: number;
+  /** λ_k = squared singular values, decreasing. */
+  readonly eigenvalues: Float64Array;
   /** count × rows: u_k, unit vectors over the data; row-major. */
   readonly left: Float64Array;
 }
+
+export interface SingularSystem extends Modes, DataModes {}
 
 /** Eigenvalues below this share of the largest are rounding: n ε with n up to a few hundred, and headroom. */
 export const USABLE = 1e-13;
@@ -46,12 +54,27 @@ function smallerHalf(matrix: Float64Array, rows: number, columns: number, floor:
   const size = tall ? columns : rows;
   const gram = new Float64Array(size * size);
   if (tall) crossProductInto(gram, matrix, rows, columns);
-  else multiplyTransposedInto(gram, matrix, matrix, rows, columns, rows);
+  else lowerProductInto(gram, matrix, rows, columns);
   const {values, vectors} = symmetricEigen(gram, size);
   const least = Math.max(floor, USABLE * Math.max(values[0] ?? 0, 0));
   let count = 0;
   while (count < size && values[count] > least) ++count;
   return {count, eigenvalues: values.slice(0, count), vectors: vectors.subarray(0, count * size)};
+}
+
+/** Rows of BBᵀ formed at a time; a heuristic. */
+const STRIP = 64;
+
+/** The lower triangle of BBᵀ, which is all that the eigen-decomposition reads; what stands above is not set. */
+function lowerProductInto(target: Float64Array, matrix: Float64Array, rows: number, columns: number): Float64Array {
+  const strip = new Float64Array(STRIP * rows);
+  for (let first = 0; first < rows; first += STRIP) {
+    const last = Math.min(rows, first + STRIP);
+    multiplyTransposedInto(strip, matrix.subarray(first * columns), matrix, last - first, columns, last);
+    for (let i = first; i < last; ++i)
+      target.set(strip.subarray((i - first) * last, (i - first) * last + i + 1), i * rows);
+  }
+  return target;
 }
 
 const overRoots = (vectors: Float64Array, length: number, eigenvalues: Float64Array): Float64Array => {
@@ -93,31 +116,44 @@ export function singularSystem(matrix: Float64Array, rows: number, columns: numb
   };
 }
 
+/** The data side alone, where nothing is asked of the unknowns. Arguments as `singularSystem`. */
+export function dataModes(matrix: Float64Array, rows: number, columns: number, floor = 0): DataModes {
+  const half = smallerHalf(matrix, rows, columns, floor);
+  const left = rows >= columns ? leftFrom(half, matrix, rows, columns) : half.vectors;
+  return {rows, count: half.count, eigenvalues: half.eigenvalues, left};
+}
+
 /**
  * The modes and one data vector's coefficients c_k = u_kᵀ d; for a tall matrix without ever forming u_k, since
  * c_k = v_kᵀ Bᵀ d / √λ_k.
+ *
+ * @returns also `rest`, what of Bᵀd lies outside the modes kept
  */
 export function modesAndCoefficients(
   matrix: Float64Array,
   rows: number,
   columns: number,
   data: Float64Array,
-): {readonly modes: Modes; readonly coefficients: Float64Array} {
+): {readonly modes: Modes; readonly coefficients: Float64Array; readonly rest: Float64Array} {
   const half = smallerHalf(matrix, rows, columns, 0);
   const {count, eigenvalues, vectors} = half;
+  const tall = rows >= columns;
   const coefficients = new Float64Array(count);
-  if (rows < columns) {
-    matVecInto(coefficients, vectors, data, count, rows);
-    return {modes: {rows, columns, count, eigenvalues, right: rightFrom(half, matrix, rows, columns)}, coefficients};
-  }
   const back = transposedMatVecInto(new Float64Array(columns), matrix, data, rows, columns);
-  matVecInto(coefficients, vectors, back, count, columns);
-  for (let k = 0; k < count; ++k) coefficients[k] /= Math.sqrt(eigenvalues[k]);
-  return {modes: {rows, columns, count, eigenvalues, right: vectors}, coefficients};
+  if (tall) {
+    matVecInto(coefficients, vectors, back, count, columns);
+    for (let k = 0; k < count; ++k) coefficients[k] /= Math.sqrt(eigenvalues[k]);
+  } else matVecInto(coefficients, vectors, data, count, rows);
+  const modes = {rows, columns, count, eigenvalues, right: tall ? vectors : rightFrom(half, matrix, rows, columns)};
+  const seen = combineRight(
+    modes,
+    coefficients.map((c, k) => c * Math.sqrt(eigenvalues[k])),
+  );
+  return {modes, coefficients, rest: back.map((value, j) => value - seen[j])};
 }
 
 /** u_kᵀ d for every mode. */
-export const dataCoefficients = (system: SingularSystem, data: Float64Array): Float64Array =>
+export const dataCoefficients = (system: DataModes, data: Float64Array): Float64Array =>
   matVecInto(new Float64Array(system.count), system.left, data, system.count, system.rows);
 
 /** Σ_k g_k v_k. */

@@ -40,16 +40,17 @@ export const discrepancy: BoundRule = {
           "The noise alone explains the readings, so the estimate is zero. Its intervals say how strong a source could hide. If an anomaly is plain to see, --noise is too large.",
         ),
       );
-    } else if (apparent !== undefined && apparent.ratio > chanceRatio(solver.data) && apparent.multiplier > found) {
-      // To fit as well as this noise asks, the estimate would have to follow noise.
+    } else if (apparent !== undefined && apparent.multiplier > found) {
+      // Closer than this the estimate would follow noise: a noise given 10 % too small already asks for that.
       multiplier = apparent.multiplier;
-      reason = `the most likely multiplier, since the readings contradict the noise: they look ${apparent.ratio.toPrecision(3)} times as noisy, and fitting them closer would follow the noise`;
-      notices.push(
-        doubt(
-          "noise/contradicted",
-          `The noise seems to be ${apparent.ratio.toPrecision(3)} times what was given: no source on this support explains the readings so closely without following their noise, so they were left with a misfit of ${solver.misfit(multiplier).toPrecision(4)} for ${solver.data} readings. The intervals rest on the noise given, and are too narrow if it is larger. Give a larger --noise.`,
-        ),
-      );
+      reason = `the most likely multiplier: to reach the misfit ${target.toPrecision(4)} that the noise asks for, the estimate would follow noise (the readings look ${apparent.ratio.toPrecision(3)} times as noisy)`;
+      if (apparent.ratio > chanceRatio(solver.data))
+        notices.push(
+          doubt(
+            "noise/contradicted",
+            `The noise seems to be ${apparent.ratio.toPrecision(3)} times what was given: no source on this support explains the readings so closely without following their noise, so they were left with a misfit of ${solver.misfit(multiplier).toPrecision(4)} for ${solver.data} readings. The intervals rest on the noise given, and are too narrow if it is larger. Give a larger --noise.`,
+          ),
+        );
     } else {
       multiplier = found;
       reason = `largest multiplier whose misfit the noise explains: ${target.toPrecision(4)} = N + 2√(2N) for N = ${solver.data}`;
