@@ -8,8 +8,10 @@ import {conclude} from "./conclusion.ts";
 import {digestOf, withInputs} from "./inputs.ts";
 import {messagesTo} from "./messages.ts";
 import type {Host} from "./nouns.ts";
-import {type Asked, isOn, oneOf} from "./options/entry.ts";
+import {isOn, oneOf} from "./options/entry.ts";
 import {settingsFrom} from "./options/settings.ts";
+import {readMaps} from "./read-maps.ts";
+import {type Request, settled, surveyOf} from "./request.ts";
 import {type Counts, noOutcome, type Run} from "./run.ts";
 import {openRunFolder} from "./run-folder.ts";
 import {surveyNotes} from "./survey-notes.ts";
@@ -19,10 +21,12 @@ import {gridWork, lineWork, type Work, writesOf} from "./work.ts";
  * @returns the exit status
  * @throws {ReportableError} when the run as a whole could not be done; the folder is left as it was
  */
-export async function continueRun(paths: readonly string[], asked: Asked, host: Host): Promise<number> {
-  const form = {json: isOn(asked, "json"), quiet: isOn(asked, "quiet")};
+export async function continueRun(request: Request, host: Host): Promise<number> {
+  const {asked, job, form} = request;
   const messages = messagesTo(host, form);
-  const settings = settingsFrom(asked);
+  const paths = surveyOf(request, "continue");
+  const {maps, digests} = await readMaps(host, asked);
+  const settings = settled(request, (options) => settingsFrom(options, maps));
   const out = oneOf(asked, "out");
   if (out === undefined)
     throw new InputError(
@@ -34,6 +38,8 @@ export async function continueRun(paths: readonly string[], asked: Asked, host: 
     const survey = await openSurvey(files, settings.acquisition);
     const inputs: FileDigest[] = [];
     for (const file of files) inputs.push(await digestOf(file));
+    inputs.push(...digests);
+    if (job !== undefined) inputs.push(job.digest);
     for (const note of surveyNotes(survey)) messages.note(note);
     const read = host.now();
     const record = (outputs: readonly FileDigest[], outcomes: Counts): string =>
@@ -41,7 +47,7 @@ export async function continueRun(paths: readonly string[], asked: Asked, host: 
     const folder = await openRunFolder(host, out, {
       identity: JSON.parse(record([], noOutcome())),
       replace: isOn(asked, "replace"),
-      writes: writesOf(survey),
+      writes: writesOf(survey, settings),
     });
     const run: Run = {host, settings, survey, folder, messages, form};
     const finish = async <Outcome extends LineOutcome | RowOutcome>(work: Work<Outcome>): Promise<number> => {

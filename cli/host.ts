@@ -8,7 +8,7 @@ import {createHash} from "node:crypto";
 import {existsSync, readFileSync, rmSync, writeSync} from "node:fs";
 import {type FileHandle, mkdir, mkdtemp, open, readdir, readFile, rename, rm, rmdir, writeFile} from "node:fs/promises";
 import {hostname, tmpdir} from "node:os";
-import {basename, dirname, join, resolve} from "node:path";
+import {basename, dirname, isAbsolute, join, resolve} from "node:path";
 import {fileURLToPath} from "node:url";
 import {InputError} from "../lib/errors.ts";
 import type {Host, InputFile, OutputFile, OutputFolder, Scratch, Terminal} from "./nouns.ts";
@@ -262,6 +262,7 @@ export function nodeHost(
     dateText: (milliseconds) => new Date(milliseconds).toISOString(),
     breathe: () => new Promise((done) => setImmediate(done)),
     openInput,
+    beside: (file, path) => (isAbsolute(path) ? path : join(dirname(file), path)),
     openOutput: (path) => openOutput(path, interruption),
     openScratch: () => openScratch(interruption),
     ...replaced,

@@ -2,6 +2,7 @@
 import {createHash} from "node:crypto";
 import type {ByteSource} from "../lib/formats/byte-source.ts";
 import type {FileDigest} from "../lib/products/record.ts";
+import {openWithCompanions} from "./companions.ts";
 import type {Host, InputFile} from "./nouns.ts";
 
 const BLOCK = 1 << 20;
@@ -13,6 +14,7 @@ const withoutFolders = (path: string): string => path.split(/[\\/]/).at(-1)!;
  *
  * A file goes by its name without folders, since that name gets into doubts, report and record, and these
  * must not depend on where the file stood; two files of one name keep the paths that tell them apart.
+ * Files that belong to one that is named are opened with it.
  * @throws {InputError} `host/…`
  */
 export async function withInputs<T>(
@@ -22,10 +24,10 @@ export async function withInputs<T>(
 ): Promise<T> {
   const opened: InputFile[] = [];
   try {
-    for (const path of paths) opened.push(await host.openInput(path));
-    const names = paths.map(withoutFolders);
+    for (const path of paths) await openWithCompanions(host, path, opened);
+    const names = opened.map(({name}) => withoutFolders(name));
     const unique = new Set(names).size === names.length;
-    return await use(opened.map(({size, read}, i) => ({name: unique ? names[i]! : paths[i]!, size, read})));
+    return await use(opened.map(({name, size, read}, i) => ({name: unique ? names[i]! : name, size, read})));
   } finally {
     for (const file of opened) await file.close();
   }

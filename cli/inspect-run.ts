@@ -9,16 +9,18 @@ import {inspectionText} from "./inspection-text.ts";
 import {messagesTo} from "./messages.ts";
 import type {Host} from "./nouns.ts";
 import {openForInspection} from "./open-for-inspection.ts";
-import {type Asked, isOn} from "./options/entry.ts";
 import {acquisitionFrom} from "./options/measured.ts";
+import {readMaps} from "./read-maps.ts";
+import {type Request, settled, surveyOf} from "./request.ts";
 import {surveyNotes} from "./survey-notes.ts";
 
 /** @returns the exit status: 0, 5 when some lines could not be read, 2 when none could */
-export async function inspectRun(paths: readonly string[], asked: Asked, host: Host): Promise<number> {
-  const form = {json: isOn(asked, "json"), quiet: isOn(asked, "quiet")};
+export async function inspectRun(request: Request, host: Host): Promise<number> {
+  const {form} = request;
   const messages = messagesTo(host, form);
-  const settings = acquisitionFrom(asked);
-  return withInputs(host, paths, async (files) => {
+  const {maps} = await readMaps(host, request.asked);
+  const settings = settled(request, (options) => acquisitionFrom(options, maps));
+  return withInputs(host, surveyOf(request, "inspect"), async (files) => {
     const {survey, filledIn, known} = await openForInspection(files, settings);
     const inspected = await inspectSurvey(survey);
     const inspection = known.observable ? inspected : {...inspected, notCorrected: NOT_CORRECTED};

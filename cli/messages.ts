@@ -60,5 +60,12 @@ export function messagesTo(host: Host, form: {readonly json: boolean; readonly q
   };
 }
 
-/** Exit status of an error that ended the run. */
-export const statusOf = (error: unknown): number => (error instanceof ReportableError ? error.exitStatus : 1);
+/** Tells whatever ended the run; @returns its exit status */
+export function report(messages: Messages, error: unknown): number {
+  if (error instanceof ReportableError) {
+    messages.error(error);
+    return error.exitStatus;
+  }
+  messages.defect(error);
+  return 1;
+}

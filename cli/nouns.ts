@@ -49,6 +49,8 @@ export interface Host {
   /** Lets signals and other events in between two pieces of work. */
   breathe(): Promise<void>;
   openInput(path: string): Promise<InputFile>;
+  /** `path` as it reads in the folder of `file`; one that starts at the root stays. */
+  beside(file: string, path: string): string;
   openOutput(path: string): Promise<OutputFolder>;
   openScratch(): Promise<Scratch>;
 }

@@ -7,6 +7,7 @@ import type {AcquisitionSettings} from "../lib/acquisition/settings.ts";
 import {InputError} from "../lib/errors.ts";
 import type {ByteSource} from "../lib/formats/byte-source.ts";
 import {OBSERVABLES} from "../lib/potential/catalogue.ts";
+import {DELIVERY_UNIT, UNITS} from "../lib/quantities.ts";
 import type {Survey} from "../lib/survey/survey.ts";
 
 export interface Opened {
@@ -39,7 +40,7 @@ export async function openForInspection(files: ByteSource[], settings: Acquisiti
       const channels = [{role: "value", observable: name, unit: undefined, noise: ANY_NOISE}];
       const opened = await withHeight(files, {...settings, channels});
       const known = {...opened.known, observable: false};
-      found.push({...opened, known, filledIn: [NO_OBSERVABLE, ...opened.filledIn]});
+      found.push({...opened, known, filledIn: [noObservable(opened.survey), ...opened.filledIn]});
     } catch (error) {
       if (!(error instanceof InputError)) throw error;
       refusals.push(error);
@@ -51,8 +52,11 @@ export async function openForInspection(files: ByteSource[], settings: Acquisiti
   throw refusals.find(({code}) => !code.startsWith("column/")) ?? refusals[0]!;
 }
 
-const NO_OBSERVABLE =
-  "No --observable was given: readings stand in the unit of the file, and corrections of every method are listed.";
+function noObservable({choices}: Survey): string {
+  const defined = UNITS.find(({symbol}) => choices.some(({role, unit}) => role === "value" && unit === symbol));
+  const unit = defined === undefined ? "the unit of the file" : DELIVERY_UNIT[defined.dimension].symbol;
+  return `No --observable was given: readings stand in ${unit}, and corrections of every method are listed.`;
+}
 
 /** Raised where the file itself names another unit than the observable has. */
 const UNIT_DOUBTS: ReadonlySet<string> = new Set(["column/unit", "grid/unit"]);

@@ -1,11 +1,12 @@
 /** The commands, and what becomes of an error that ends one: the exit status. */
 import {Command, CommanderError} from "commander";
 import {nearestName} from "../lib/acquisition/nearest-name.ts";
-import {InputError, ReportableError} from "../lib/errors.ts";
+import {InputError} from "../lib/errors.ts";
 import {continueCommand} from "./commands/continue.ts";
 import {inspectCommand} from "./commands/inspect.ts";
+import {schemaCommand} from "./commands/schema.ts";
 import {spectrumCommand} from "./commands/spectrum.ts";
-import {messagesTo, statusOf} from "./messages.ts";
+import {messagesTo, report} from "./messages.ts";
 import type {Host} from "./nouns.ts";
 import {printable} from "./printable.ts";
 
@@ -72,7 +73,7 @@ export async function groundward(host: Host): Promise<number> {
     .helpCommand("help [command]", "show the help of a command")
     // An option after a command belongs to it: a value such as -400:400 is never taken for one of the program's own.
     .enablePositionalOptions();
-  for (const add of [inspectCommand, continueCommand, spectrumCommand])
+  for (const add of [inspectCommand, continueCommand, spectrumCommand, schemaCommand])
     program.addCommand(add((name) => command(name, host), host, finish));
   try {
     if (host.arguments.length === 0) {
@@ -83,9 +84,6 @@ export async function groundward(host: Host): Promise<number> {
     return status;
   } catch (error) {
     if (error instanceof CommanderError && error.exitCode === 0) return 0;
-    const reported = error instanceof CommanderError ? asInputError(error, program) : error;
-    if (reported instanceof ReportableError) messages.error(reported);
-    else messages.defect(reported);
-    return statusOf(reported);
+    return report(messages, error instanceof CommanderError ? asInputError(error, program) : error);
   }
 }

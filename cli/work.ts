@@ -1,10 +1,12 @@
 /** What a run over lines and a run over a grid do differently: outcomes, products, and what is printed. */
+import {InputError} from "../lib/errors.ts";
 import type {ByteSource} from "../lib/formats/byte-source.ts";
 import {openRaster} from "../lib/formats/geotiff-read.ts";
-import {GRID_PRODUCTS, gridProducts, LINE_PRODUCTS, lineProducts} from "../lib/products/catalogue.ts";
+import {GRID_PRODUCTS, gridProducts, lineProductKinds, lineProducts} from "../lib/products/catalogue.ts";
 import type {RunFrame} from "../lib/products/product.ts";
 import {studyGrid} from "../lib/study/grid-study.ts";
 import type {LineOutcome, RowOutcome} from "../lib/study/outcome.ts";
+import type {Settings} from "../lib/study/settings.ts";
 import {studySurvey} from "../lib/study/survey-study.ts";
 import type {Survey} from "../lib/survey/survey.ts";
 import {gridResult} from "./grid-result.ts";
@@ -36,6 +38,12 @@ export async function lineWork({host, settings, survey, folder}: Run): Promise<W
 
 /** @param file the grid, which says where the answers lie */
 export async function gridWork({host, settings, survey, folder}: Run, file: ByteSource): Promise<Work<RowOutcome>> {
+  const [also] = settings.wanted.also ?? [];
+  if (also !== undefined)
+    throw new InputError(
+      "option/lines-only",
+      `--also ${also} writes tables of lines, but the survey is a grid, whose levels are rasters. Leave it out.`,
+    );
   const products = await gridProducts(folder, {version: host.version, settings}, await openRaster(file));
   return {
     outcomes: studyGrid(survey, settings),
@@ -49,7 +57,8 @@ export async function gridWork({host, settings, survey, folder}: Run, file: Byte
 }
 
 /** Whether a run over this survey writes a file of that name. */
-export function writesOf({kind}: Survey): (name: string) => boolean {
-  const names = (kind === "grid" ? GRID_PRODUCTS : LINE_PRODUCTS).map(({file}) => file);
+export function writesOf({kind}: Survey, settings: Settings): (name: string) => boolean {
+  const kinds = kind === "grid" ? GRID_PRODUCTS : lineProductKinds(settings);
+  const names = kinds.flatMap(({file}) => file.split(", "));
   return (name) => names.includes(name) || (kind === "grid" && /^(source|level_.*)_(row|column)wise\.tif$/.test(name));
 }

@@ -1,18 +1,16 @@
 /** `groundward continue`: from readings to sources, levels and strips with intervals. */
-import {ASSUMED} from "../options/assumed.ts";
+import {CONTINUE_OPTIONS, SURVEY} from "../options/continue-options.ts";
 import {askedOf, declare} from "../options/declare.ts";
-import {MEASURED} from "../options/measured.ts";
-import {WRITTEN} from "../options/output.ts";
-import {WANTED} from "../options/wanted.ts";
+import {isOn} from "../options/entry.ts";
 import type {AddCommand} from "./command.ts";
 
 export const continueCommand: AddCommand = (create, host, finish) => {
-  const command = declare(create("continue"), [MEASURED, ASSUMED, WANTED, WRITTEN])
+  const command = declare(create("continue"), CONTINUE_OPTIONS)
     .summary("sources on the boundary and fields on levels, with intervals")
     .description(
       "The main job, for one line, thousands of them or a grid: estimates the sources on the boundary, carries the field to the levels asked, and answers for strips, each with an interval. Files go to --out; a table goes to standard output.",
     )
-    .argument("<survey...>", "CSV files with a header row, or one GeoTIFF")
+    .argument("[survey...]", `${SURVEY.help}; or the key survey of a job file`)
     .addHelpText(
       "after",
       [
@@ -22,6 +20,8 @@ export const continueCommand: AddCommand = (create, host, finish) => {
         "      --support 400:900 --strip dyke=600:700 --level 0 --level 10 --out out/",
         "  groundward continue grid.tif --observable field-vertical --clearance 60 --noise 1 \\",
         "      --bound discrepancy --out out-grid/",
+        "  groundward continue --job survey.toml --level 20",
+        "  groundward continue --job survey.toml --explain",
         "",
         "Exit status:",
         "  0    every line done",
@@ -37,7 +37,11 @@ export const continueCommand: AddCommand = (create, host, finish) => {
     );
   return command.action(async (paths: string[]) => {
     const asked = askedOf(command);
-    const {continueRun} = await import("../continue-run.ts");
-    finish(await continueRun(paths, asked, host));
+    const {withRequest} = await import("../request.ts");
+    const status = await withRequest(host, paths, asked, async (request) => {
+      if (isOn(asked, "explain")) return (await import("../explain.ts")).explain(request, host);
+      return (await import("../continue-run.ts")).continueRun(request, host);
+    });
+    finish(status);
   });
 };

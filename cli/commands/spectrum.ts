@@ -8,22 +8,37 @@ import {PRINTED} from "../options/output.ts";
 import {textTable} from "../table.ts";
 import type {AddCommand} from "./command.ts";
 
+const NO_LINE = "there is no survey to take it from";
+const DEFAULT_COUNT = "10";
+const DEFAULT_FLOOR = "1e-8";
+
 const QUESTION: OptionGroup = {
   heading: "The question",
   entries: [
-    {name: "support", value: "A:B", help: "source zone, metres along the line (required)"},
-    {name: "height", value: "H", help: "height of the sensor above the sources, m (required)"},
-    {name: "count", value: "N", help: "how many eigenvalues, from the largest on; default 10"},
-    {name: "floor", value: "F", help: "a mode is usable while its eigenvalue is above F; default 1e-8"},
+    {name: "support", value: "A:B", help: "source zone, metres along the line", required: NO_LINE},
+    {name: "height", value: "H", help: "height of the sensor above the sources, m", required: NO_LINE},
+    {
+      name: "count",
+      value: "N",
+      help: "how many eigenvalues, from the largest on",
+      default: {value: DEFAULT_COUNT, reason: "enough to see how fast the modes fall off"},
+    },
+    {
+      name: "floor",
+      value: "F",
+      help: "a mode is usable while its eigenvalue is above F",
+      default: {value: DEFAULT_FLOOR, reason: "a heuristic: about the square root of double precision"},
+    },
   ],
 };
 
 const COUNT: Need = {
   words: "a whole number above 0",
-  example: "10",
-  holds: (value) => Number.isInteger(value) && value > 0,
+  example: DEFAULT_COUNT,
+  above: 0,
+  whole: true,
 };
-const FLOOR: Need = {words: "a number between 0 and 1", example: "1e-8", holds: (value) => value > 0 && value < 1};
+const FLOOR: Need = {words: "a number between 0 and 1", example: DEFAULT_FLOOR, above: 0, below: 1};
 
 function required(asked: Asked, name: string, example: string): string {
   const text = oneOf(asked, name);
@@ -52,8 +67,8 @@ export const spectrumCommand: AddCommand = (create, host, finish) => {
       words: "a height in metres above 0",
       example: "60",
     });
-    const count = numberFor("--count", oneOf(asked, "count") ?? "10", COUNT);
-    const floor = numberFor("--floor", oneOf(asked, "floor") ?? "1e-8", FLOOR);
+    const count = numberFor("--count", oneOf(asked, "count") ?? DEFAULT_COUNT, COUNT);
+    const floor = numberFor("--floor", oneOf(asked, "floor") ?? DEFAULT_FLOOR, FLOOR);
     const {countUsableModes, poissonSpectrum} = await import("../../lib/spectral/poisson-spectrum.ts");
     const {eigenvalues} = poissonSpectrum({from, to, height, count});
     const usable = countUsableModes({from, to}, height, floor);

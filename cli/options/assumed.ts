@@ -10,10 +10,15 @@ import type {BoundarySetting} from "../../lib/survey/boundary.ts";
 import {shown} from "../printable.ts";
 import {type Asked, allOf, type OptionGroup, oneOf} from "./entry.ts";
 import {intervalFor} from "./interval-text.ts";
-import {NOT_NEGATIVE, numberFor, numberIn, POSITIVE} from "./number.ts";
+import {type MapFiles, mapFileAt, zonesFrom} from "./map-file.ts";
+import {ANY_NUMBER, type Need, NOT_NEGATIVE, NUMBER_PATTERN, numberFor, numberIn, POSITIVE} from "./number.ts";
 
 const REGIONALS = {none: -1, "0": 0, "1": 1, "2": 2, "3": 3} as const;
+const DEFAULT_REGIONAL = "1";
 const DEFAULT_BOUND = "discrepancy";
+const DEPTH: Need = {...NOT_NEGATIVE, words: "a depth, 0 or above", example: "5"};
+const DEGREE: Need = {words: "a whole number from 0 to 3", example: DEFAULT_REGIONAL, least: 0, most: 3, whole: true};
+const WIDTH: Need = {...POSITIVE, words: "a width in metres above 0", example: "5"};
 
 export const ASSUMED: OptionGroup = {
   heading: "What is assumed",
@@ -21,28 +26,52 @@ export const ASSUMED: OptionGroup = {
     {
       name: "boundary",
       value: "Z|depth-D",
-      help: "flat boundary with every source at or below it: at elevation Z metres, or D metres below the lowest ground under the line. Default where the sensor is known by clearance only: the ground, taken as flat",
+      form: {number: ANY_NUMBER, pattern: `depth-${NUMBER_PATTERN}`},
+      help: "flat boundary with every source at or below it: at elevation Z metres, or D metres below the lowest ground under the line",
+      default: {
+        value: "the ground, taken as flat, where the sensor is known by clearance only; else it must be given",
+        reason:
+          "clearance is measured from the ground and no source stands above it; a source above the boundary would make the result invalid",
+      },
     },
     {
       name: "support",
-      value: "A:B",
+      value: "A:B|FILE.geojson",
       repeated: true,
-      help: "source zone, where sources may be: metres of chainage, which is distance along the line (G2/A:B for the lines of group G2). Default: the line and five median heights beyond either end",
+      form: {interval: true, mapFile: true},
+      help: "source zone, where sources may be: metres of chainage, which is distance along the line (G2/A:B for the lines of group G2), or polygons of the map, of which each line gets the part inside (20 median heights beyond its ends at most) and a line that meets none is skipped",
+      default: {
+        value: "the line and five median heights beyond either end",
+        reason: "from five heights away a source adds at most 6 per cent of its strength to the last station",
+      },
     },
     {
       name: "bound",
       value: "RULE",
-      help: `bound on the sources, which fixes the multiplier (regularisation parameter); default ${DEFAULT_BOUND}. ${BOUND_RULES.map(({usage, summary}) => `${usage}: ${summary}`).join("; ")}`,
+      form: {pattern: BOUND_RULES.map(({usage}) => usage.replace(/:V$/, `:${NUMBER_PATTERN}`)).join("|")},
+      help: `bound on the sources, which fixes the multiplier (regularisation parameter). ${BOUND_RULES.map(({usage, summary}) => `${usage}: ${summary}`).join("; ")}`,
+      default: {
+        value: DEFAULT_BOUND,
+        reason:
+          "the noise can be told from the data, the strength of the sources cannot; intervals then rest on an assumption, so give rms or norm where the strength is known",
+      },
     },
     {
       name: "regional",
       value: "none|0|1|2|3",
-      help: "degree of the polynomial estimated together with the source; default 1",
+      form: {words: Object.keys(REGIONALS), number: DEGREE},
+      help: "degree of the polynomial estimated together with the source",
+      default: {value: DEFAULT_REGIONAL, reason: "anomalies keep a level and a slope of unknown origin"},
     },
     {
       name: "panel",
       value: "W",
-      help: "widest panel of the source zone in metres; default: a quarter of the least height",
+      form: {number: WIDTH},
+      help: "widest panel of the source zone in metres",
+      default: {
+        value: "a quarter of the least height",
+        reason: "finer detail does not reach the sensor; intervals do not depend on the panels",
+      },
     },
   ],
 };
@@ -53,7 +82,7 @@ function boundaryFrom(text: string | undefined): BoundarySetting | undefined {
   if (depth !== undefined)
     return {
       kind: "depth",
-      depth: numberFor("--boundary depth-", depth, {...NOT_NEGATIVE, words: "a depth, 0 or above", example: "5"}),
+      depth: numberFor("--boundary depth-", depth, DEPTH),
     };
   const elevation = numberIn(text);
   if (elevation === undefined)
@@ -64,16 +93,20 @@ function boundaryFrom(text: string | undefined): BoundarySetting | undefined {
   return {kind: "elevation", elevation};
 }
 
+/** An ending of letters: no interval has one. */
+const isFile = (text: string): boolean => /\.[a-z]\w*$/i.test(text);
+
 /** Supports of one group, or for every line, must be disjoint. */
-function supportsFrom(asked: Asked): readonly SupportSetting[] {
-  const supports = allOf(asked, "support").map((text) => intervalFor("--support ", text));
+function supportsFrom(asked: Asked, maps: MapFiles | undefined): readonly SupportSetting[] {
+  const texts = allOf(asked, "support");
+  const supports = texts.filter((text) => !isFile(text)).map((text) => intervalFor("--support ", text));
   for (const group of new Set(supports.map((support) => support.group)))
     supportOf(supports.filter((support) => support.group === group || support.group === undefined));
-  return supports;
+  const files = texts.filter(isFile).flatMap((path) => mapFileAt("--support", path, maps) ?? []);
+  return [...supports, ...files.flatMap(zonesFrom)];
 }
 
-function regionalFrom(text: string | undefined): ModelSettings["regional"] {
-  if (text === undefined) return 1;
+function regionalFrom(text: string): ModelSettings["regional"] {
   if (!Object.hasOwn(REGIONALS, text))
     throw new InputError(
       "option/unknown-word",
@@ -82,17 +115,17 @@ function regionalFrom(text: string | undefined): ModelSettings["regional"] {
   return REGIONALS[text as keyof typeof REGIONALS];
 }
 
-/** @throws {InputError} `option/…`, `support/…` */
-export function modelFrom(asked: Asked): ModelSettings {
+/**
+ * @param maps files of polygons by their paths; undefined: they are left out
+ * @throws {InputError} `option/…`, `support/…`, `polygon/…`
+ */
+export function modelFrom(asked: Asked, maps?: MapFiles): ModelSettings {
   const panel = oneOf(asked, "panel");
   return {
     boundary: boundaryFrom(oneOf(asked, "boundary")),
-    support: supportsFrom(asked),
-    panel:
-      panel === undefined
-        ? undefined
-        : numberFor("--panel", panel, {...POSITIVE, words: "a width in metres above 0", example: "5"}),
-    regional: regionalFrom(oneOf(asked, "regional")),
+    support: supportsFrom(asked, maps),
+    panel: panel === undefined ? undefined : numberFor("--panel", panel, WIDTH),
+    regional: regionalFrom(oneOf(asked, "regional") ?? DEFAULT_REGIONAL),
   };
 }
 

@@ -1,12 +1,14 @@
 /** Entries → options of a command line, and the command line → what was asked. */
 import {type Command, Option} from "commander";
 import {InputError} from "../../lib/errors.ts";
-import type {Asked, OptionGroup} from "./entry.ts";
+import {type Asked, helpOf, type OptionGroup} from "./entry.ts";
 
 /** Puts the entries on `command`, under their headings, in their order. */
 export function declare(command: Command, groups: readonly OptionGroup[]): Command {
   for (const {heading, entries} of groups)
-    for (const {name, value, repeated, help} of entries) {
+    for (const entry of entries) {
+      const {name, value, repeated} = entry;
+      const help = helpOf(entry);
       const option = new Option(
         value === undefined ? `--${name}` : `--${name} <${value}>`,
         repeated ? `${help}. May be repeated` : help,

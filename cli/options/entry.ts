@@ -1,8 +1,10 @@
 /**
- * An option as data: help texts, the command line and the record of a run read the same entries.
- * What was asked is kept as text under the option's name until one function per stage turns it into settings.
+ * An option as data: help texts, the command line, the job file and its schema, and what `--explain` tells read
+ * the same entries. What was asked is kept as text under the option's name until one function per stage turns
+ * it into settings.
  */
 import {InputError} from "../../lib/errors.ts";
+import type {Form} from "./form.ts";
 
 export interface OptionEntry {
   /** Without dashes. */
@@ -12,6 +14,23 @@ export interface OptionEntry {
   /** Whether it may be given several times. */
   readonly repeated?: true;
   readonly help: string;
+  /** What a value may be; any text where absent. */
+  readonly form?: Form;
+  /** Of a switch: off. */
+  readonly default?: Default;
+  /** Why there is no default: it must be given. */
+  readonly required?: string;
+  /** Says what to do with a job file, so cannot stand in one. */
+  readonly commandLineOnly?: true;
+}
+
+/** What is in force where an option is not given. */
+interface Default {
+  /** As the option would take it, or in words where it depends on the survey. */
+  readonly value: string;
+  readonly reason: string;
+  /** The value in words, once other options are known; undefined where they do not settle it. */
+  inForce?(asked: Asked): string | undefined;
 }
 
 export interface OptionGroup {
@@ -41,3 +60,11 @@ export function oneOf(asked: Asked, name: string): string | undefined {
     );
   return values[0];
 }
+
+/** The help of an option with its default. */
+export const helpOf = ({help, value, default: fallback, required}: OptionEntry): string =>
+  required !== undefined
+    ? `${help} (required)`
+    : fallback === undefined || value === undefined
+      ? help
+      : `${help}; default: ${fallback.value}`;

@@ -4,13 +4,15 @@ import {OBSERVABLES, observableNamed} from "../../lib/potential/catalogue.ts";
 import type {Settings} from "../../lib/study/settings.ts";
 import {boundFrom, modelFrom} from "./assumed.ts";
 import {type Asked, oneOf} from "./entry.ts";
+import type {MapFiles} from "./map-file.ts";
 import {acquisitionFrom} from "./measured.ts";
 import {wantedFrom} from "./wanted.ts";
 
 /**
+ * @param maps GeoJSON files by their paths; undefined: what they would add is left out
  * @throws {InputError} `option/missing` without an observable; `option/…`, `unit/…`, `observable/unknown`, `support/…`, `bound/…`
  */
-export function settingsFrom(asked: Asked): Settings {
+export function settingsFrom(asked: Asked, maps?: MapFiles): Settings {
   const observable = oneOf(asked, "observable");
   if (observable === undefined)
     throw new InputError(
@@ -18,10 +20,10 @@ export function settingsFrom(asked: Asked): Settings {
       `--observable is missing: nothing says what the values are. Give one of ${OBSERVABLES.map(({name}) => name).join(", ")}, for example --observable ${OBSERVABLES[0]!.name}.`,
     );
   return {
-    acquisition: acquisitionFrom(asked),
-    model: modelFrom(asked),
+    acquisition: acquisitionFrom(asked, maps),
+    model: modelFrom(asked, maps),
     bound: boundFrom(asked, observableNamed(observable)),
-    wanted: wantedFrom(asked),
+    wanted: wantedFrom(asked, maps),
     processing: oneOf(asked, "processing"),
   };
 }

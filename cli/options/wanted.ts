@@ -2,11 +2,27 @@
 import {type LevelSetting, levelLabel} from "../../lib/continuation/level-profile.ts";
 import {InputError} from "../../lib/errors.ts";
 import type {Strip} from "../../lib/inverse/nouns.ts";
-import type {WantedSettings} from "../../lib/study/settings.ts";
+import {ALSO, type AlsoWord} from "../../lib/products/also.ts";
+import type {StripSetting, WantedSettings} from "../../lib/study/settings.ts";
 import {shown} from "../printable.ts";
 import {type Asked, allOf, type OptionGroup, oneOf} from "./entry.ts";
 import {intervalFor} from "./interval-text.ts";
-import {NOT_NEGATIVE, numberFor} from "./number.ts";
+import {type MapFiles, mapFileAt, stripsFrom} from "./map-file.ts";
+import {type Need, NOT_NEGATIVE, NUMBER_PATTERN, numberFor} from "./number.ts";
+
+const DEFAULT_LEVEL = "0";
+const DEFAULT_CONFIDENCE = "0.95";
+const LEVEL: Need = {
+  ...NOT_NEGATIVE,
+  words: "a height in metres, 0 or above (nothing is known below the boundary)",
+  example: "10",
+};
+const PROBABILITY: Need = {
+  words: "a probability between 0 and 1, both excluded",
+  example: DEFAULT_CONFIDENCE,
+  above: 0,
+  below: 1,
+};
 
 export const WANTED: OptionGroup = {
   heading: "What is wanted",
@@ -15,22 +31,42 @@ export const WANTED: OptionGroup = {
       name: "level",
       value: "L|ground+D",
       repeated: true,
-      help: "field at L metres above the boundary, or D metres above the ground; 0 (default) is the boundary itself",
+      form: {number: LEVEL, pattern: `ground\\+${NUMBER_PATTERN}`},
+      help: "field at L metres above the boundary, or D metres above the ground; 0 is the boundary itself",
+      default: {value: DEFAULT_LEVEL, reason: "the boundary is where sources are told apart best"},
     },
     {
       name: "strip",
       value: "NAME=A:B",
       repeated: true,
+      form: {pairs: {of: {interval: true}}},
       help: "mean and total of the source between the chainages A and B, with intervals (NAME=G2/A:B for the lines of group G2)",
+      default: {value: "no strips", reason: "which stretches matter is for the user to say"},
     },
-    {name: "confidence", value: "P", help: "coverage of every interval, between 0 and 1; default 0.95"},
+    {
+      name: "strips",
+      value: "FILE.geojson",
+      repeated: true,
+      form: {mapFile: true},
+      help: "strips as polygons of the map: of each line the part inside, under the property name of the polygon; where a line crosses one several times, mean and total are over all of it",
+      default: {value: "no polygons", reason: "which areas matter is for the user to say"},
+    },
+    {
+      name: "confidence",
+      value: "P",
+      form: {number: PROBABILITY},
+      help: "coverage of every interval, between 0 and 1",
+      default: {value: DEFAULT_CONFIDENCE, reason: "custom: 19 intervals in 20 are to hold the truth"},
+    },
+    {
+      name: "also",
+      value: "KIND",
+      repeated: true,
+      form: {words: ALSO.map(({word}) => word)},
+      help: `further files beside the usual ones. ${ALSO.map(({help}) => help).join("; ")}`,
+      default: {value: "nothing further", reason: "the tables in CSV hold every number"},
+    },
   ],
-};
-
-const LEVEL = {
-  ...NOT_NEGATIVE,
-  words: "a height in metres, 0 or above (nothing is known below the boundary)",
-  example: "10",
 };
 
 function levelFrom(text: string): LevelSetting {
@@ -52,33 +88,49 @@ function stripFrom(text: string): Strip {
   return {name, ...intervalFor(`--strip ${name}=`, text.slice(cut + 1))};
 }
 
-/** @throws {InputError} `option/…` */
-export function wantedFrom(asked: Asked): WantedSettings {
+function alsoFrom(asked: Asked): AlsoWord[] {
+  const words = new Set(allOf(asked, "also"));
+  return [...words].map((text) => {
+    const found = ALSO.find(({word}) => word === text);
+    if (found === undefined)
+      throw new InputError(
+        "option/unknown-word",
+        `--also ${shown(text)} is not known. Give ${ALSO.map(({word}) => word).join(" or ")}.`,
+      );
+    return found.word;
+  });
+}
+
+/**
+ * @param maps files of polygons by their paths; undefined: they are left out
+ * @throws {InputError} `option/…`, `strip/no-name`, `polygon/…`
+ */
+export function wantedFrom(asked: Asked, maps?: MapFiles): WantedSettings {
   // A level asked twice, 10 and 10.0 alike, is one level.
   const levels = new Map(
     allOf(asked, "level")
       .map(levelFrom)
       .map((level) => [levelLabel(level), level]),
   );
-  const strips = allOf(asked, "strip").map(stripFrom);
+  const files = allOf(asked, "strips").flatMap((path) => mapFileAt("--strips", path, maps) ?? []);
+  const strips = [...allOf(asked, "strip").map(stripFrom), ...files.flatMap(stripsFrom)];
+  const groupOf = (strip: StripSetting): string | undefined => ("area" in strip ? undefined : strip.group);
   strips.forEach((strip, i) => {
-    if (strips.slice(0, i).some((other) => other.name === strip.name && other.group === strip.group))
+    const map = "area" in strip;
+    // A polygon is for the lines of every group.
+    if (strips.slice(0, i).some((other) => other.name === strip.name && (map || groupOf(other) === groupOf(strip))))
       throw new InputError(
         "option/two-strips",
-        `--strip names ${shown(strip.name)} twice. Give every strip a name of its own.`,
+        map
+          ? `${strip.area.words} bears the name of another strip. Give every strip a name of its own, or make one MultiPolygon of the two.`
+          : `--strip names ${shown(strip.name)} twice. Give every strip a name of its own.`,
       );
   });
-  const confidence = oneOf(asked, "confidence");
+  const also = alsoFrom(asked);
   return {
-    levels: levels.size === 0 ? [{kind: "above-boundary", height: 0}] : [...levels.values()],
+    levels: levels.size === 0 ? [levelFrom(DEFAULT_LEVEL)] : [...levels.values()],
     strips,
-    confidence:
-      confidence === undefined
-        ? 0.95
-        : numberFor("--confidence", confidence, {
-            words: "a probability between 0 and 1, both excluded",
-            example: "0.95",
-            holds: (value) => value > 0 && value < 1,
-          }),
+    confidence: numberFor("--confidence", oneOf(asked, "confidence") ?? DEFAULT_CONFIDENCE, PROBABILITY),
+    ...(also.length === 0 ? {} : {also}),
   };
 }

@@ -1,11 +1,14 @@
 /** A line of the survey from its run of rows: placed on the axis, heights complete, readings in SI. */
 import {InputError, type Place, type ReportableError} from "../errors.ts";
+import type {Track} from "../geometry/track.ts";
 import {doubt, type Notice, remark} from "../notice.ts";
 import type {Channel, Stations, SurveyLine} from "../survey/line.ts";
 import {chainageAt, offsetAt, pointAt} from "../survey/line-axis.ts";
 import {spacingOf} from "../survey/record-noise.ts";
 import type {LineRecord} from "../survey/survey.ts";
-import {bendOf, trackKnots, valueAt} from "../survey/track-shape.ts";
+import {type TrackKnots, trackKnots, valueAt} from "../survey/track-shape.ts";
+import {axisTrack} from "./axis-track.ts";
+import {bendDoubts} from "./bend-doubts.ts";
 import type {ChannelPlan} from "./channel-plan.ts";
 import type {Frames} from "./frames.ts";
 import {heightsOf} from "./heights.ts";
@@ -72,6 +75,7 @@ export function assembleLine(
       direction: chainage[count - 1]! < chainage[0]! ? -1 : 1,
       omitted: run.omitted,
       locate: locator(placing, course, stations),
+      track: trackOf(run, placing, course, chainage),
       notices: notices.map((notice) => ({...notice, line: id})),
     },
   };
@@ -130,12 +134,7 @@ function unusable(id: string, run: LineRun, chainage: Float64Array, place: Place
   return undefined;
 }
 
-function shapeNotices(
-  chainage: Float64Array,
-  course: ReturnType<typeof trackKnots>,
-  {group}: Placing,
-  place: Place,
-): Notice[] {
+function shapeNotices(chainage: Float64Array, course: TrackKnots, {group}: Placing, place: Place): Notice[] {
   const notices: Notice[] = [];
   const spacing = spacingOf(chainage);
   const sorted = chainage.toSorted();
@@ -161,26 +160,37 @@ function shapeNotices(
       ),
     );
   }
-  const {excess, departure} = bendOf(course);
-  if (excess > spacing)
-    notices.push(
-      doubt(
-        "line/bends",
-        `The line departs up to ${departure.toPrecision(3)} m from straight, so that the distance flown exceeds its chainage by ${excess.toPrecision(3)} m, more than its station spacing of ${spacing.toPrecision(3)} m. Features are displaced by as much; split the line where it bends, or give its chainage.`,
-        place,
-      ),
-    );
+  notices.push(...bendDoubts(course, spacing, place));
   return notices;
 }
 
 /** Between the ends along the course flown, beyond them straight on. */
-function locator(
-  {group, frames}: Placing,
-  course: ReturnType<typeof trackKnots>,
-  {chainage, x, y}: Stations,
-): SurveyLine["locate"] {
+function locator({group, frames}: Placing, course: TrackKnots, {chainage, x, y}: Stations): SurveyLine["locate"] {
   if (group !== undefined) return (at) => group.frame.delivered(...pointAt(group.axis, at, valueAt(course, at)));
   if (frames === undefined || x === undefined || y === undefined) return undefined;
   const [courseX, courseY] = [trackKnots(chainage, x), trackKnots(chainage, y)];
   return (at) => [valueAt(courseX, at), valueAt(courseY, at)];
+}
+
+/** The course flown in the metric system of the survey, knot by knot. */
+function trackOf(
+  run: LineRun,
+  {group, frames, coordinates}: Placing,
+  course: TrackKnots,
+  chainage: Float64Array,
+): Track | undefined {
+  if (group !== undefined) return axisTrack(group.axis, course, group.frame.system, group.frame.unit);
+  if (frames === undefined || coordinates === undefined) return undefined;
+  const {metric, system, unit} = frames.first;
+  const [first, second] = coordinates.map((role) => run.columns.get(role)!);
+  const places = Array.from(first!, (a, i) => metric(a, second![i]!));
+  const x = trackKnots(
+    chainage,
+    Float64Array.from(places, ([east]) => east / unit),
+  );
+  const y = trackKnots(
+    chainage,
+    Float64Array.from(places, ([, north]) => north / unit),
+  );
+  return {system, chainage: x.chainage, x: x.value, y: y.value, beyond: [x.slope, y.slope]};
 }

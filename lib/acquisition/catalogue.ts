@@ -1,15 +1,20 @@
-/** Every kind of source of a survey; which one a file is, its first bytes say. */
+/** Every kind of source of a survey; which one a file is, its first bytes or its name say. */
 import {InputError} from "../errors.ts";
 import type {ByteSource} from "../formats/byte-source.ts";
 import type {Survey} from "../survey/survey.ts";
+import {openAsegSurvey} from "./aseg-gdf2.ts";
 import {openDelimitedSurvey} from "./delimited.ts";
+import {isGdf2} from "./gdf2-pairs.ts";
 import {openRasterSurvey} from "./raster-rows.ts";
 import type {AcquisitionSettings} from "./settings.ts";
 
 interface SourceKind {
   readonly name: string;
-  /** @param head the first bytes of the file, up to 16 */
-  recognises(head: Uint8Array): boolean;
+  /**
+   * @param head the first bytes of the file, up to 16
+   * @param names of all files of the survey
+   */
+  recognises(head: Uint8Array, name: string, names: readonly string[]): boolean;
   /** How many files make one survey. */
   readonly most: number;
   open(files: readonly ByteSource[], settings: AcquisitionSettings): Promise<Survey>;
@@ -20,9 +25,22 @@ const isTiff = ([a, b, c, d]: Uint8Array): boolean =>
   (a === 0x49 && b === 0x49 && (c === 42 || c === 43) && d === 0) ||
   (a === 0x4d && b === 0x4d && c === 0 && (d === 42 || d === 43));
 
+const GRID: SourceKind = {
+  name: "GeoTIFF grid",
+  recognises: isTiff,
+  most: 1,
+  open: ([file], settings) => openRasterSurvey(file!, settings),
+};
+
 /** In the order tried; the last takes what no other does. */
 const SOURCE_KINDS: readonly SourceKind[] = [
-  {name: "GeoTIFF grid", recognises: isTiff, most: 1, open: ([file], settings) => openRasterSurvey(file!, settings)},
+  GRID,
+  {
+    name: "ASEG-GDF2 pair",
+    recognises: (_head, name, names) => isGdf2(name, names),
+    most: Infinity,
+    open: openAsegSurvey,
+  },
   {name: "table", recognises: () => true, most: Infinity, open: openDelimitedSurvey},
 ];
 
@@ -32,10 +50,11 @@ const SOURCE_KINDS: readonly SourceKind[] = [
  */
 export async function openSurvey(files: readonly ByteSource[], settings: AcquisitionSettings): Promise<Survey> {
   if (files.length === 0) throw new InputError("survey/no-file", "No survey file was given. Name one or more.");
+  const names = files.map(({name}) => name);
   const kinds: SourceKind[] = [];
   for (const file of files) {
     const head = await file.read(0, Math.min(16, file.size));
-    kinds.push(SOURCE_KINDS.find((kind) => kind.recognises(head))!);
+    kinds.push(SOURCE_KINDS.find((kind) => kind.recognises(head, file.name, names))!);
   }
   const kind = kinds[0]!;
   const other = kinds.findIndex((candidate) => candidate !== kind);
@@ -51,5 +70,23 @@ export async function openSurvey(files: readonly ByteSource[], settings: Acquisi
       `${files.length} files of the kind ${kind.name} were given; ${kind.most} makes a survey. Run them one by one.`,
       {place: {file: files[1]!.name}},
     );
+  if (kind !== GRID) refuseGridSettings(settings, files[0]!.name);
   return kind.open(files, settings);
+}
+
+function refuseGridSettings({profiles, every, sampling}: AcquisitionSettings, file: string): void {
+  const option =
+    typeof profiles !== "string"
+      ? `--profiles ${profiles.file}`
+      : every !== undefined
+        ? `--every ${every}`
+        : sampling !== undefined
+          ? `--sampling ${sampling}`
+          : undefined;
+  if (option === undefined) return;
+  throw new InputError(
+    "survey/not-a-grid",
+    `${option} takes lines out of a grid, but ${file} is a table and has lines of its own. Leave it out, or give a GeoTIFF.`,
+    {place: {file}},
+  );
 }

@@ -8,15 +8,8 @@ import {doubt, type Notice, remark} from "../notice.ts";
 import type {RoleChoice} from "../survey/survey.ts";
 import {askedColumns, listed} from "./asked-columns.ts";
 import type {ChannelPlan} from "./channel-plan.ts";
-import {
-  fieldUnit,
-  headerName,
-  isOtherLength,
-  ROLE_NAMES,
-  type Role,
-  VALUE_NAMES,
-  WEAK_CHAINAGE,
-} from "./header-names.ts";
+import {fieldName} from "./field-name.ts";
+import {fieldUnit, isOtherLength, ROLE_NAMES, type Role, VALUE_NAMES, WEAK_CHAINAGE} from "./header-names.ts";
 import {type AcquisitionSettings, ROLES} from "./settings.ts";
 
 export interface ColumnChoice extends RoleChoice {
@@ -39,6 +32,9 @@ export interface ColumnPlan {
 export interface TableHead {
   readonly name: string;
   readonly header: readonly string[];
+  /** What a definition beside the table says of each column. */
+  readonly longNames?: readonly (string | undefined)[];
+  readonly units?: readonly (string | undefined)[];
   readonly decimal: DecimalMark;
   /** Some rows, to see which columns hold numbers. */
   readonly sample: readonly (readonly string[])[];
@@ -59,7 +55,7 @@ export function chooseColumns(
 ): ColumnPlan {
   const file = head.name;
   const asked = askedColumns(head, settings, channels);
-  const names = head.header.map(headerName);
+  const names = head.header.map((name, i) => fieldName(name, head.longNames?.[i], head.units?.[i]));
   const candidates = new Map<string, number[]>();
   const askedIndices = new Set(asked.values());
   for (const role of ROLES)

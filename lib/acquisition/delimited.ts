@@ -6,7 +6,7 @@
  */
 import {InputError} from "../errors.ts";
 import type {ByteSource} from "../formats/byte-source.ts";
-import {openTable} from "../formats/delimited.ts";
+import {openTable, type Table} from "../formats/delimited.ts";
 import {coordinateSystem} from "../geometry/coordinate-system.ts";
 import {doubt, type Notice, remark} from "../notice.ts";
 import {chainageAt, movedAlong} from "../survey/line-axis.ts";
@@ -34,6 +34,18 @@ export async function openDelimitedSurvey(
   files: readonly ByteSource[],
   settings: AcquisitionSettings,
 ): Promise<Survey> {
+  // Of several things wrong, a setting is told before a file.
+  channelPlans(settings.channels);
+  const tables: Table[] = [];
+  for (const file of files) tables.push(await openTable(file));
+  return openTableSurvey(tables, settings);
+}
+
+/**
+ * The same for tables of any form.
+ * @param files at least one, in the order of the survey
+ */
+export async function openTableSurvey(files: readonly Table[], settings: AcquisitionSettings): Promise<Survey> {
   const channels = channelPlans(settings.channels);
   const {tables, layout, chainageGiven, choices, notices} = await openTables(files, settings, channels);
   const read = new Set(tables[0]!.choices.map(({role}) => role));
@@ -90,26 +102,35 @@ export async function openDelimitedSurvey(
   };
 }
 
+/** What the columns of one table are; `needed`: roles that an earlier table of the survey was read with. */
+export async function planColumns(
+  table: Table,
+  settings: AcquisitionSettings,
+  channels: ReturnType<typeof channelPlans>,
+  needed?: ReadonlySet<string>,
+): Promise<ColumnPlan> {
+  const geographic = settings.crs === undefined ? undefined : coordinateSystem(settings.crs).kind === "geographic";
+  const sample: (readonly string[])[] = [];
+  for await (const block of table.blocks()) {
+    sample.push(...block.rows.slice(0, SAMPLE));
+    break;
+  }
+  return chooseColumns({...table, sample}, settings, channels, geographic, needed);
+}
+
 async function openTables(
-  files: readonly ByteSource[],
+  files: readonly Table[],
   settings: AcquisitionSettings,
   channels: ReturnType<typeof channelPlans>,
 ) {
-  const geographic = settings.crs === undefined ? undefined : coordinateSystem(settings.crs).kind === "geographic";
   const tables: ChosenTable[] = [];
   const notices: Notice[] = [];
   const choices: RoleChoice[] = [];
   let first: ColumnPlan | undefined;
   for (const file of files) {
-    const table = await openTable(file);
-    notices.push(...table.notices);
-    const sample: (readonly string[])[] = [];
-    for await (const block of table.blocks()) {
-      sample.push(...block.rows.slice(0, SAMPLE));
-      break;
-    }
+    notices.push(...file.notices);
     const needed = first === undefined ? undefined : new Set(first.choices.map(({role}) => role));
-    const plan = chooseColumns({...table, sample}, settings, channels, geographic, needed);
+    const plan = await planColumns(file, settings, channels, needed);
     if (first !== undefined && (plan.layout !== first.layout || plan.chainageGiven !== first.chainageGiven))
       throw new InputError(
         "column/layouts-differ",
@@ -119,7 +140,7 @@ async function openTables(
     first ??= plan;
     notices.push(...plan.notices);
     const used = plan.choices.filter(({role}) => needed === undefined || needed.has(role));
-    tables.push({table, choices: used});
+    tables.push({table: file, choices: used});
     for (const {role, column, reason} of used)
       if (!choices.some((known) => known.role === role && known.column === column))
         choices.push({role, column, reason});
@@ -127,7 +148,7 @@ async function openTables(
   return {tables, notices, choices, layout: first!.layout, chainageGiven: first!.chainageGiven};
 }
 
-function requireStations(scan: Scan, files: readonly ByteSource[]): void {
+function requireStations(scan: Scan, files: readonly Table[]): void {
   if (scan.runs.some(({stations}) => stations > 0)) return;
   const names = files.map(({name}) => name).join(", ");
   throw new InputError(
@@ -141,7 +162,7 @@ function scanNotices(
   scan: Scan,
   repeated: readonly string[],
   empty: readonly string[],
-  files: readonly ByteSource[],
+  files: readonly Table[],
 ): Notice[] {
   const place = {file: files[0]!.name};
   const notices: Notice[] = [];

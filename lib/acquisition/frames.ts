@@ -22,6 +22,10 @@ import type {Coordinates} from "./survey-scan.ts";
 /** Metres of one system, and back. */
 export interface Frame {
   readonly title: string;
+  /** The system of the metres; undefined where the data's is not known. */
+  readonly system: CoordinateSystem | undefined;
+  /** Metres in one unit of that system. */
+  readonly unit: number;
   /** Coordinates of the file to metres. */
   metric(a: number, b: number): Position;
   /** Metres to delivered coordinates. */
@@ -83,6 +87,8 @@ function planarFrames(settings: AcquisitionSettings, ends: readonly Coordinates[
   const title = system === undefined ? "x, y of the data, taken as metres" : `${system.name} (${system.title})`;
   const frame: Frame = {
     title: unit === 1 ? title : `${title}, in metres`,
+    system,
+    unit,
     metric: (x, y) => [x * unit, y * unit],
     delivered: (x, y) => out.apply(x / unit, y / unit),
   };
@@ -113,6 +119,8 @@ function geographicFrames(settings: AcquisitionSettings, ends: readonly Coordina
   const out = outgoing(system, settings.outCrs, notices);
   const frameOf = (own: OwnProjection): Frame => ({
     title: own.system.title,
+    system: own.system,
+    unit: 1,
     metric: (longitude, latitude) => own.project(longitude, latitude),
     delivered: (x, y) => out.apply(...own.unproject(x, y)),
   });

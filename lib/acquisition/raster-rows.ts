@@ -3,163 +3,52 @@
  * pixel, each further one hands out the lines. Memory: one block of rows.
  */
 import {InputError} from "../errors.ts";
-import {pixelCentreX, pixelCentreY} from "../formats/affine.ts";
 import type {ByteSource} from "../formats/byte-source.ts";
-import {openRaster, type Raster} from "../formats/geotiff-read.ts";
-import {coordinateSystem} from "../geometry/coordinate-system.ts";
-import type {CoordinateSystem} from "../geometry/crs-definition.ts";
-import {crsFromGeoKeys} from "../geometry/geo-keys.ts";
-import {type Position, transformation} from "../geometry/transformation.ts";
-import {doubt, type Notice} from "../notice.ts";
+import type {Raster} from "../formats/geotiff-read.ts";
+import type {Track} from "../geometry/track.ts";
 import type {SurveyLine} from "../survey/line.ts";
 import type {LineRecord, Survey} from "../survey/survey.ts";
-import {anomalyCheck} from "./anomaly-check.ts";
-import {type ChannelPlan, channelPlans} from "./channel-plan.ts";
-import {fieldUnit} from "./header-names.ts";
-import {checkHeightSettings, heightsOf} from "./heights.ts";
-import {scaleDoubts} from "./scale-doubts.ts";
+import {heightsOf} from "./heights.ts";
+import {centre, type OpenedGrid, openGrid} from "./opened-grid.ts";
 import type {AcquisitionSettings} from "./settings.ts";
+import {transectSurvey} from "./transects.ts";
 
 /** A line of a grid without two pixels to it; the study leaves it out. */
 export const EMPTY_ROW = "grid/empty-row";
 
 /**
- * @throws {InputError} `grid/columns-asked`, `grid/one-channel`, `grid/geographic`, `grid/empty`, `noise/grid-needs-number`,
- *   `height/none`, `value/not-an-anomaly`, and those of the raster and the coordinate system
+ * With `--every N` the rows are lines of their own, each with its own answers, and there is no grid of answers.
+ * @throws {InputError} those of the grid and, with transects, of these
  */
 export async function openRasterSurvey(file: ByteSource, settings: AcquisitionSettings): Promise<Survey> {
-  const place = {file: file.name};
-  const channels = channelPlans(settings.channels);
-  const channel = channels[0]!;
-  if (settings.columns.size > 0)
-    throw new InputError("grid/columns-asked", `${file.name} is a grid and has no columns; leave --column out.`, {
-      place,
-    });
-  if (channels.length > 1)
-    throw new InputError(
-      "grid/one-channel",
-      `${file.name} is a grid of one kind of reading, but ${channels.length} channels were asked for. Give --observable once.`,
-      {place},
-    );
-  if (channel.noise === "record" && settings.inspecting !== true)
-    throw new InputError(
-      "noise/grid-needs-number",
-      `The noise of a grid cannot be taken from its record: ${file.name} was interpolated, which leaves it smooth. Give the standard deviation with --noise S.`,
-      {place},
-    );
-  const heightNotices = checkHeightSettings(new Set(), settings, place);
-  const raster = await openRaster(file);
-  const {system, unit, notices} = systemOf(raster, settings);
-  notices.unshift(...raster.notices, ...heightNotices);
-  const written = fieldUnit(raster.unit?.trim().toLowerCase());
-  if (written !== undefined && written !== channel.unit.symbol)
-    notices.push(
-      doubt(
-        "grid/unit",
-        `${file.name} says that it is in ${written}, but it is read in ${channel.unit.symbol}. Give --unit ${written} if the file is right.`,
-        place,
-      ),
-    );
-  await checkPixels(raster, channel);
-  const out = settings.outCrs === undefined ? undefined : coordinateSystem(settings.outCrs);
-  if (out !== undefined && system === undefined)
-    throw new InputError(
-      "crs/needed",
-      `Coordinates were to be delivered in ${settings.outCrs}, but the system of ${file.name} is not known. Give it with --crs EPSG:n.`,
-      {place},
-    );
-  const way = out === undefined || system === undefined ? undefined : transformation(system, out);
-  if (out !== undefined) notices.push(...out.notices);
-  if (way !== undefined) notices.push(...way.notices);
-  if (system !== undefined) {
-    const [right, bottom] = [raster.width - 1, raster.height - 1];
-    const corners = [0, right].flatMap((c) => [0, bottom].map((r) => centre(raster, c, r)));
-    notices.push(...scaleDoubts(system, corners));
-  }
-  const deliver = (x: number, y: number): Position => (way === undefined ? [x, y] : way.apply(x, y));
-  const frame = lineFrame(raster, settings.profiles, unit);
-  const title = system === undefined ? `map units of ${unit} m` : `${system.name} (${system.title})`;
+  const opened = await openGrid(file, settings);
+  const {profiles, every} = settings;
+  if (typeof profiles !== "string") return transectSurvey(opened, profiles, settings);
+  const {raster, title, delivered, notices, unit} = opened;
+  const frame = lineFrame(raster, profiles, unit);
+  const lineCount = Math.ceil(frame.lines / (every ?? 1));
   return {
-    kind: "grid",
+    kind: every === undefined ? "grid" : "lines",
     files: [file.name],
-    axes: [
-      {
-        group: "G1",
-        azimuth: settings.profiles === "rows" ? 90 : 0,
-        origin: frame.origin,
-        system: unit === 1 ? title : `${title}, in metres`,
-        lines: frame.lines,
-      },
-    ],
+    axes: [{group: "G1", azimuth: profiles === "rows" ? 90 : 0, origin: frame.origin, system: title, lines: lineCount}],
     choices: [],
-    delivered: out?.name ?? system?.name ?? "map units of the grid",
+    delivered,
     notices,
-    lineCount: frame.lines,
-    grid: {
-      width: raster.width,
-      height: raster.height,
-      orientation: settings.profiles,
-      step: frame.step,
-      spacing: frame.spacing,
-    },
-    lines: () => gridLines(raster, frame, channel, settings, deliver),
+    lineCount,
+    grid:
+      every === undefined
+        ? {
+            width: raster.width,
+            height: raster.height,
+            orientation: profiles,
+            step: frame.step,
+            spacing: frame.spacing,
+          }
+        : undefined,
+    fromGrid: true,
+    lines: () => gridLines(opened, frame, settings),
   };
 }
-
-function systemOf(raster: Raster, settings: AcquisitionSettings) {
-  const place = {file: raster.name};
-  const {kind, epsg, linearUnit, citation} = raster.crs;
-  const refuse = (what: string) =>
-    new InputError(
-      "grid/geographic",
-      `${raster.name} is ${what}, and lines of a grid are measured in metres. Reproject it first, for example with gdalwarp -t_srs EPSG:n, to a projected system of the area.`,
-      {place},
-    );
-  if (settings.crs === undefined && kind === "geographic") throw refuse("a grid in degrees");
-  const notices: Notice[] = [];
-  let system: CoordinateSystem | undefined;
-  let unit: number | undefined;
-  if (settings.crs !== undefined) {
-    system = coordinateSystem(settings.crs);
-    unit = system.metresPerUnit;
-  } else {
-    const found = crsFromGeoKeys({
-      ...(kind === "projected" ? {GTModelTypeGeoKey: 1} : {}),
-      ...(epsg === undefined ? {} : {ProjectedCSTypeGeoKey: epsg}),
-      ...(linearUnit === undefined ? {} : {ProjLinearUnitsGeoKey: linearUnit}),
-      ...(citation === undefined ? {} : {GTCitationGeoKey: citation}),
-    });
-    system = found.system;
-    unit = found.metresPerUnit;
-    notices.push(...found.notices);
-  }
-  if (system?.kind === "geographic") throw refuse(`said to be in degrees (${system.name})`);
-  if (system !== undefined) notices.push(...system.notices);
-  return {system, unit: unit ?? 1, notices};
-}
-
-/** Every pixel decoded once: damage, infinities and readings that are no anomalies stop the work here. */
-async function checkPixels(raster: Raster, channel: ChannelPlan): Promise<void> {
-  const check = anomalyCheck(channel);
-  let filled = 0;
-  for await (const {values} of raster.rowBlocks()) {
-    const readings = values.filter((value) => !Number.isNaN(value));
-    filled += readings.length;
-    check.add(readings);
-  }
-  if (filled === 0)
-    throw new InputError(
-      "grid/empty",
-      `${raster.name} has no pixel with a value: all ${raster.width} × ${raster.height} are nodata. Check the nodata value with gdalinfo.`,
-      {place: {file: raster.name}},
-    );
-  check.finish({file: raster.name});
-}
-
-const centre = (raster: Raster, column: number, row: number): readonly [number, number] => [
-  pixelCentreX(raster.affine, column),
-  pixelCentreY(raster.affine, row),
-];
 
 interface LineFrame {
   readonly orientation: "rows" | "columns";
@@ -202,24 +91,26 @@ function lineFrame(raster: Raster, orientation: "rows" | "columns", unit: number
 }
 
 async function* gridLines(
-  raster: Raster,
+  {raster, channel, deliver, system, unit}: OpenedGrid,
   frame: LineFrame,
-  channel: ChannelPlan,
   settings: AcquisitionSettings,
-  deliver: (x: number, y: number) => Position,
 ): AsyncGenerator<LineRecord> {
   const {pixels, lines} = frame;
+  const every = settings.every ?? 1;
   const digits = String(lines).length;
   const rows = frame.orientation === "rows";
   const id = (line: number) => `${rows ? "row" : "column"}-${String(line + 1).padStart(digits, "0")}`;
-  if (rows)
+  if (rows) {
     for await (const {row0, rows: count, values} of raster.rowBlocks())
       for (let r = 0; r < count; ++r)
-        yield gridLine(id(row0 + r), row0 + r, values.subarray(r * pixels, (r + 1) * pixels));
-  else
+        if ((row0 + r) % every === 0)
+          yield gridLine(id(row0 + r), row0 + r, values.subarray(r * pixels, (r + 1) * pixels));
+  } else {
     for await (const {column0, columns, values} of raster.columnBlocks())
       for (let c = 0; c < columns; ++c)
-        yield gridLine(id(column0 + c), column0 + c, values.subarray(c * pixels, (c + 1) * pixels));
+        if ((column0 + c) % every === 0)
+          yield gridLine(id(column0 + c), column0 + c, values.subarray(c * pixels, (c + 1) * pixels));
+  }
 
   function gridLine(name: string, line: number, readings: Float64Array): LineRecord {
     let count = 0;
@@ -260,8 +151,21 @@ async function* gridLines(
         const pixel = frame.first === 0 ? at / frame.step : frame.first - at / frame.step;
         return deliver(...(rows ? centre(raster, pixel, line) : centre(raster, line, pixel)));
       },
+      track: trackOf(line),
       notices,
     };
     return {line: built};
+  }
+  /** Between the outermost pixels, in map coordinates. */
+  function trackOf(line: number): Track {
+    const ends = frame.first === 0 ? [0, pixels - 1] : [pixels - 1, 0];
+    const places = ends.map((pixel) => (rows ? centre(raster, pixel, line) : centre(raster, line, pixel)));
+    return {
+      system,
+      chainage: Float64Array.from(ends, (pixel) => frame.chainage(pixel)),
+      x: Float64Array.from(places, ([x]) => x),
+      y: Float64Array.from(places, ([, y]) => y),
+      beyond: rows ? [1 / unit, 0] : [0, 1 / unit],
+    };
   }
 }

@@ -1,4 +1,6 @@
 /** What the user says about what was measured. Metres; SI after the edge. */
+import type {GeoFile} from "../formats/geojson.ts";
+import type {SamplingName} from "./sampling.ts";
 
 /** Columns a table may hold. `value.2`, `elevation.2` … follow the same pattern for further channels. */
 export const ROLES = [
@@ -43,8 +45,12 @@ export interface AcquisitionSettings {
   readonly split: "column" | "auto" | undefined;
   /** The first is for `value`. */
   readonly channels: readonly ChannelSettings[];
-  /** Grids: which way the lines run. */
-  readonly profiles: "rows" | "columns";
+  /** Grids: which way the lines run, or the transects that are lines. */
+  readonly profiles: "rows" | "columns" | GeoFile;
+  /** Grids: each n-th row or column as a line of its own; undefined: all of them, as a grid. */
+  readonly every?: number | undefined;
+  /** How transects are sampled; undefined: bilinear. */
+  readonly sampling?: SamplingName | undefined;
   /** Only to look at: heights and the noise of a grid may be missing, which is then a doubt. */
   readonly inspecting?: boolean;
 }

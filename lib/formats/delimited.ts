@@ -21,11 +21,17 @@ export interface TableBlock {
 export interface Table {
   readonly name: string;
   readonly header: readonly string[];
-  readonly delimiter: Delimiter;
+  /** What a definition beside the table says of each column: a name in words, a unit; undefined where it says nothing. */
+  readonly longNames?: readonly (string | undefined)[];
+  readonly units?: readonly (string | undefined)[];
   readonly decimal: DecimalMark;
   readonly notices: readonly Notice[];
   /** The rows in order, from the beginning at every call. Rows in which every cell is empty are left out. */
   blocks(): AsyncIterable<TableBlock>;
+}
+
+export interface DelimitedTable extends Table {
+  readonly delimiter: Delimiter;
 }
 
 /** Bytes at a time: some thousand rows, so that neither memory nor the cost of a chunk counts. */
@@ -43,7 +49,7 @@ const SAMPLE = 1000;
  *   `table/ragged-row`, `table/quote`, `table/cell-too-large`, `table/row-too-large`;
  *   `blocks()` throws the last four, too
  */
-export async function openTable(source: ByteSource): Promise<Table> {
+export async function openTable(source: ByteSource): Promise<DelimitedTable> {
   const encoding = await detectEncoding(source);
   const delimiter = delimiterOf(await firstLine(source, encoding));
   const notices: Notice[] = [];

@@ -17,7 +17,7 @@ import {TAG} from "./tiff-tags.ts";
 /** The georeferencing tags, to be copied into another file as they are. */
 export interface Georeference extends ModelTags, GeoKeyTags {}
 
-export interface RowBlock {
+interface RowBlock {
   /** 0-based. */
   readonly row0: number;
   readonly rows: number;
@@ -25,7 +25,7 @@ export interface RowBlock {
   readonly values: Float64Array;
 }
 
-export interface ColumnBlock {
+interface ColumnBlock {
   /** 0-based. */
   readonly column0: number;
   readonly columns: number;
@@ -57,6 +57,16 @@ export interface Raster {
    * once for every window of columns, a tiled one once altogether if a window holds a tile.
    */
   columnBlocks(windowBytes?: number): AsyncIterable<ColumnBlock>;
+  /** A part of the grid, row by row; NaN where there is no value. It must lie inside. */
+  window(part: Rectangle): Promise<Float64Array>;
+}
+
+/** Pixels of a grid, 0-based. */
+interface Rectangle {
+  readonly row0: number;
+  readonly rows: number;
+  readonly column0: number;
+  readonly columns: number;
 }
 
 /** Bytes of a block of rows from a striped file, about; and rows it holds at least, where strips are thin. */
@@ -124,6 +134,8 @@ export async function openRaster(source: ByteSource, options: {readonly band?: n
     notices,
     rowBlocks: () => rowBlocks(grid),
     columnBlocks: (windowBytes = COLUMN_WINDOW_BYTES) => columnBlocks(grid, windowBytes),
+    window: (part) =>
+      fillWindow(grid, new Float64Array(part.rows * part.columns), part, {rowStep: part.columns, columnStep: 1}),
   };
 }
 
@@ -174,20 +186,13 @@ async function* columnBlocks(grid: Grid, windowBytes: number): AsyncGenerator<Co
   }
 }
 
-interface Rectangle {
-  readonly row0: number;
-  readonly rows: number;
-  readonly column0: number;
-  readonly columns: number;
-}
-
-/** Decodes the blocks that meet a window, one after another, and copies their part of it. */
+/** Decodes the blocks that meet a window, one after another, and copies their part of it; @returns `target` */
 async function fillWindow(
   grid: Grid,
   target: Float64Array,
   window: Rectangle,
   steps: {readonly rowStep: number; readonly columnStep: number},
-): Promise<void> {
+): Promise<Float64Array> {
   const {layout, band, reading} = grid;
   const {blockWidth, blockHeight, blocksAcross, blocksDown, interleaved, bands} = layout;
   const pixelStep = interleaved ? bands : 1;
@@ -212,6 +217,7 @@ async function fillWindow(
       if (infinite >= 0)
         throw infiniteReading(grid.name, row + Math.floor(infinite / columns), column + (infinite % columns));
     }
+  return target;
 }
 
 const infiniteReading = (file: string, row: number, column: number): InputError =>

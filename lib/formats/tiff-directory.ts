@@ -15,7 +15,7 @@ interface Entry {
   readonly offset: number;
 }
 
-export interface TiffDirectory {
+interface TiffDirectory {
   readonly entries: ReadonlyMap<number, Entry>;
 }
 

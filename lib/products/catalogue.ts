@@ -1,7 +1,11 @@
 /** Every file that a run writes, record and timing apart. A new product is one file and one line here. */
+
+import type {Settings} from "../study/settings.ts";
+import type {AlsoWord} from "./also.ts";
 import {gridRasters} from "./grid-rasters.ts";
 import {gridReportHtml} from "./grid-report-html.ts";
 import {levelsCsv} from "./levels-csv.ts";
+import {levelsGdf2} from "./levels-gdf2.ts";
 import {linesCsv, rowsCsv} from "./lines-csv.ts";
 import type {GridPlace, Opening, RunAbout} from "./opening.ts";
 import type {LineProduct, RowProduct} from "./product.ts";
@@ -11,7 +15,10 @@ import {stripsCsv} from "./strips-csv.ts";
 import {tradeoffCsv} from "./tradeoff-csv.ts";
 
 export interface LineProductKind {
+  /** Names, apart by ", ". */
   readonly file: string;
+  /** The word of `--also` that asks for it; absent: always written. */
+  readonly also?: AlsoWord;
   /** One sentence for help texts. */
   readonly summary: string;
   make(opening: Opening, about: RunAbout): Promise<LineProduct>;
@@ -23,7 +30,7 @@ export interface GridProductKind {
   make(opening: Opening, about: RunAbout, place: GridPlace): Promise<RowProduct>;
 }
 
-export const LINE_PRODUCTS: readonly LineProductKind[] = [
+const LINE_PRODUCTS: readonly LineProductKind[] = [
   {
     file: "source.csv",
     summary: "the source on every panel, with averages and their intervals",
@@ -33,6 +40,12 @@ export const LINE_PRODUCTS: readonly LineProductKind[] = [
     file: "levels.csv",
     summary: "the field on every level, with intervals",
     make: async ({openText}) => levelsCsv(await openText("levels.csv")),
+  },
+  {
+    file: "levels.dfn, levels.dat",
+    also: "gdf2",
+    summary: "the rows of levels.csv as an ASEG-GDF2 pair",
+    make: async (opening) => levelsGdf2(opening),
   },
   {
     file: "strips.csv",
@@ -74,10 +87,14 @@ export const GRID_PRODUCTS: readonly GridProductKind[] = [
   },
 ];
 
+/** Those that a run with these settings writes. */
+export const lineProductKinds = ({wanted}: Settings): readonly LineProductKind[] =>
+  LINE_PRODUCTS.filter(({also}) => also === undefined || wanted.also?.includes(also));
+
 /** Opens the files of a run over lines; `begin` none before all are open. */
 export async function lineProducts(opening: Opening, about: RunAbout): Promise<readonly LineProduct[]> {
   const products: LineProduct[] = [];
-  for (const kind of LINE_PRODUCTS) products.push(await kind.make(opening, about));
+  for (const kind of lineProductKinds(about.settings)) products.push(await kind.make(opening, about));
   return products;
 }
 

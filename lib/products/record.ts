@@ -4,7 +4,7 @@
  */
 import {cautionSentence, cautionsFor} from "../report/cautions.ts";
 import {INTERVAL_BASIS} from "../report/interval-basis.ts";
-import type {Settings} from "../study/settings.ts";
+import type {Settings, StripSetting, SupportSetting} from "../study/settings.ts";
 import type {Survey} from "../survey/survey.ts";
 
 export interface FileDigest {
@@ -36,10 +36,10 @@ export function recordJson(run: RecordInput): string {
     program: {name: "groundward", version: run.version, node: run.node, architecture: run.architecture},
     inputs: run.inputs.map(digest),
     settings: {
-      acquisition: settings.acquisition,
-      model: settings.model,
+      acquisition: {...settings.acquisition, profiles: nameOf(settings.acquisition.profiles)},
+      model: {...settings.model, support: settings.model.support.map(zoneText)},
       bound: settings.bound.text,
-      wanted: settings.wanted,
+      wanted: {...settings.wanted, strips: settings.wanted.strips.map(zoneText)},
       processing: settings.processing,
     },
     survey: {
@@ -66,6 +66,12 @@ export function recordJson(run: RecordInput): string {
   };
   return `${JSON.stringify(ordered(record, SECTIONS), undefined, 2)}\n`;
 }
+
+/** Polygons and transects stand by their file, whose digest is among the inputs. */
+const nameOf = (profiles: Settings["acquisition"]["profiles"]): string =>
+  typeof profiles === "string" ? profiles : profiles.file;
+const zoneText = (zone: SupportSetting | StripSetting): unknown =>
+  "area" in zone ? {...zone, area: zone.area.words} : zone;
 
 const digest = ({file, bytes, sha256}: FileDigest): FileDigest => ({file, bytes, sha256});
 

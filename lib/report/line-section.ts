@@ -65,10 +65,7 @@ function grounds(study: LineStudy): string {
     ["Degrees of freedom", `${figureText(estimate.degreesOfFreedom)} used of ${countText(readings)}`],
     ["Resolution", `${metreText(resolution.length)} m`],
     ["Norm of the source", `${figureText(delivery.toNorm(estimate.norm))} ${delivery.field}·√m`],
-    [
-      "Bound",
-      `${figureText(delivery.toNorm(choice.bound))} ${delivery.field}·√m, ${boundWords(choice)}`,
-    ],
+    ["Bound", `${figureText(delivery.toNorm(choice.bound))} ${delivery.field}·√m, ${boundWords(choice)}`],
   ])}<p class="small"><b>${basis.lead}</b> ${messageText(basis.text)}</p></div>`;
 }
 

@@ -24,7 +24,9 @@ export function settingsPairs(
   const pairs: [string, string][] = [["Files", survey.files.map(nameText).join(", ")]];
   const [channel] = acquisition.channels;
   if (channel !== undefined) {
-    const unit = nameText(channel.unit ?? delivery.reading);
+    const unit = nameText(
+      channel.unit ?? survey.choices.find(({role}) => role === channel.role)?.unit ?? delivery.reading,
+    );
     const noise =
       channel.noise === "record" || channel.noise === undefined
         ? "noise from the fourth differences of the record"
@@ -45,9 +47,10 @@ export function settingsPairs(
     model.support.length === 0
       ? "the line and five median heights on either side"
       : model.support
-          .map(
-            ({from, to, group}) =>
-              `${group === undefined ? "" : `${nameText(group)}: `}${metreText(from)} to ${metreText(to)} m`,
+          .map((zone) =>
+            "area" in zone
+              ? nameText(zone.area.words)
+              : `${zone.group === undefined ? "" : `${nameText(zone.group)}: `}${metreText(zone.from)} to ${metreText(zone.to)} m`,
           )
           .join("; "),
   ]);

@@ -2,7 +2,8 @@
  * A strip in physical units: its mean density, and the total across it per metre of strike,
  * which is the mean times the length since the density is zero outside the support.
  */
-import type {StripEstimate} from "../inverse/nouns.ts";
+import {totalLength} from "../geometry/interval.ts";
+import {partsOf, type StripEstimate} from "../inverse/nouns.ts";
 import type {Delivery} from "./delivery.ts";
 
 export interface Bracket {
@@ -18,7 +19,7 @@ export interface StripAnswer {
 }
 
 export function stripAnswer(estimate: StripEstimate, delivery: Delivery): StripAnswer {
-  const length = estimate.strip.to - estimate.strip.from;
+  const length = totalLength(partsOf(estimate.strip));
   const mean: Bracket = {
     value: delivery.toDensity(estimate.mean),
     lower: delivery.toDensity(estimate.lower),

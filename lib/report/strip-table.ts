@@ -41,8 +41,9 @@ export function stripTable(
   if (rows.length === 0) return "";
   const groups = new Map<string, StripRow[]>();
   for (const row of rows) {
-    const {name, from, to, group} = row.strip;
-    const key = JSON.stringify([name, from, to, group]);
+    // One name in one group is one strip, also where a polygon gives each line another stretch of it.
+    const {name, group} = row.strip;
+    const key = JSON.stringify([name, group]);
     const together = groups.get(key);
     if (together === undefined) groups.set(key, [row]);
     else together.push(row);
@@ -50,8 +51,9 @@ export function stripTable(
   const percent = percentText(confidence);
   const body = [...groups.values()].map((group) => {
     const {name, from, to} = group[0]!.strip;
+    const alike = group.every(({strip}) => strip.from === from && strip.to === to);
     const [least, greatest] = extent([0, ...group.flatMap(({answer}) => [answer.mean.lower, answer.mean.upper])]);
-    const span = `${nameText(name)} <span class="small">${metreText(from)} to ${metreText(to)} m, drawn from ${figureText(least!, 2)} to ${figureText(greatest!, 2)} ${delivery.density}</span>`;
+    const span = `${nameText(name)} <span class="small">${alike ? `${metreText(from)} to ${metreText(to)} m` : "a polygon, elsewhere on each line"}, drawn from ${figureText(least!, 2)} to ${figureText(greatest!, 2)} ${delivery.density}</span>`;
     const heading = withLine ? `<tr class="group"><td colspan="5">${span}</td></tr>` : "";
     return heading + group.map((row) => tableRow(row, [least!, greatest!], withLine)).join("");
   });

@@ -9,6 +9,9 @@ import type {BoundChoice} from "../inverse/nouns.ts";
 import {doubt, type Notice} from "../notice.ts";
 import type {Solver} from "../solvers/solver.ts";
 
+/** A noise more than this many times too small is no slip of the surveyor's; the advice would only hide the fault. */
+const MOST_NOISE = 5;
+
 interface Relief {
   readonly words: string;
   /** By how much it moves, relative. */
@@ -39,7 +42,7 @@ export function feasibility(
   const beyond = misfit > misfitLimit(solver.data);
   const reliefs: Relief[] = [];
   const factor = Math.sqrt(misfit / target);
-  reliefs.push({words: `the noise ${enough(factor)} times larger`, cost: factor - 1});
+  if (factor <= MOST_NOISE) reliefs.push({words: `the noise ${enough(factor)} times larger`, cost: factor - 1});
   const best = solver.misfit(0);
   const freed = multiplierForMisfit(solver, target);
   if (bounded && freed !== undefined && freed !== Infinity) {
@@ -53,14 +56,17 @@ export function feasibility(
   }
   reliefs.sort((a, b) => a.cost - b.cost);
   const found = `The misfit is ${misfit.toPrecision(4)} for ${solver.data} readings; noise alone gives at most ${target.toPrecision(4)}.`;
-  const cure = `Cheapest cure: ${reliefs[0].words}${
-    reliefs.length > 1
-      ? `; else ${reliefs
-          .slice(1)
-          .map(({words}) => words)
-          .join(", or ")}`
-      : ""
-  }.`;
+  const cure =
+    reliefs.length === 0
+      ? "No noise that would explain it is plausible: give a wider --support, to where sources may be."
+      : `Cheapest cure: ${reliefs[0].words}${
+          reliefs.length > 1
+            ? `; else ${reliefs
+                .slice(1)
+                .map(({words}) => words)
+                .join(", or ")}`
+            : ""
+        }.`;
   if (bounded && best <= misfitLimit(solver.data)) {
     const message = `No source within the bound explains the readings. ${found} ${cure}`;
     if (beyond) throw new ModelError("bound/infeasible", message);

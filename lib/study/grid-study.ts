@@ -6,10 +6,10 @@
 import {ModelError, ReportableError} from "../errors.ts";
 import {misfitLimit} from "../inverse/misfit-range.ts";
 import type {BoundChoice} from "../inverse/nouns.ts";
-import {doubt, type Notice} from "../notice.ts";
+import {doubt, isDoubtful, type Notice} from "../notice.ts";
 import {matVecInto} from "../numeric/matmul.ts";
 import {whitenData} from "../operators/whitened.ts";
-import {energyOutside, modalSums} from "../solvers/spectral.ts";
+import {energyOutside, evidenceOf, modalSums} from "../solvers/spectral.ts";
 import {dataCoefficients} from "../spectral/singular-system.ts";
 import {condition} from "../survey/condition.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
@@ -18,7 +18,10 @@ import type {LineRecord, Survey} from "../survey/survey.ts";
 import type {RowBand, RowOutcome, RowStudy} from "./outcome.ts";
 import {type RowAnswers, type RowGeometry, rowAnswers, rowGeometry} from "./row-geometry.ts";
 import type {Settings} from "./settings.ts";
+import {statusWithout} from "./skipped.ts";
+import {cutNotices, supportOfLine} from "./support-of-line.ts";
 import {checkGroups} from "./survey-study.ts";
+import {type LineZones, type ZonesOf, zonesFor} from "./zones.ts";
 
 /** Geometries kept at a time: a 1,000-pixel row takes about 25 MB. A heuristic. */
 const KEPT = 4;
@@ -29,6 +32,8 @@ const NORM_POINTS = 8;
 interface Pool {
   readonly eigenvalues: Float64Array;
   readonly energies: Float64Array;
+  /** Of the regional, a row. */
+  readonly terms: number;
   rows: number;
   readings: number;
   outside: number;
@@ -40,40 +45,50 @@ interface Pool {
  */
 export async function* studyGrid(survey: Survey, settings: Settings): AsyncGenerator<RowOutcome> {
   checkGroups(survey, settings);
+  const zonesOf = zonesFor(settings);
   const geometries = recent<RowGeometry>(KEPT);
-  const pooled = await poolRows(survey, settings, geometries);
+  const pooled = await poolRows(survey, settings, zonesOf, geometries);
   const answers = recent<RowAnswers>(KEPT);
   let index = -1;
   for await (const record of survey.lines()) {
     ++index;
-    const prepared = prepare(record, settings);
+    const prepared = prepare(record, settings, zonesOf);
     if ("failure" in prepared) {
       const {id, failure} = prepared;
-      yield {status: failure.code === EMPTY_ROW ? "skipped" : "failed", id, index, failure};
+      yield {status: statusWithout(failure), id, index, failure};
       continue;
     }
-    const {line, conditioned, key} = prepared;
-    const geometry = geometries(key, () => rowGeometry(conditioned, settings));
+    const {line, conditioned, zones, key} = prepared;
+    const geometry = geometries(key, () => rowGeometry(conditioned, settings, zones.support));
     const answer = answers(key, () => rowAnswers(geometry, settings, pooled.bound, pooled.multiplier));
     const study = answerRow(line, conditioned, geometry, answer, pooled, survey.grid);
-    const doubtful = study.notices.some(({weight}) => weight === "doubt");
+    const doubtful = isDoubtful(study.notices);
     yield {status: doubtful ? "doubtful" : "done", id: line.id, index, study};
   }
 }
 
-/** Code of the failure that stands for a row without a reading. */
-const EMPTY_ROW = "grid/empty-row";
-
 type Prepared =
-  | {readonly line: SurveyLine; readonly conditioned: ConditionedLine; readonly key: string}
+  | {
+      readonly line: SurveyLine;
+      readonly conditioned: ConditionedLine;
+      readonly zones: LineZones;
+      /** Rows of one key share their geometry. */
+      readonly key: string;
+    }
   | {readonly id: string; readonly failure: ReportableError};
 
-function prepare(record: LineRecord, settings: Settings): Prepared {
+function prepare(record: LineRecord, settings: Settings, zonesOf: ZonesOf): Prepared {
   if ("failure" in record) return record;
-  const {line} = record;
+  // What is wrong with polygons is wrong for every row.
+  const zones = zonesOf(record.line);
+  const line = {...record.line, notices: [...record.line.notices, ...zones.notices]};
   try {
-    const conditioned = condition(line, settings.model.boundary);
-    return {line, conditioned, key: patternOf(line, settings.model.support.length > 0)};
+    const first = condition(line, settings.model.boundary);
+    const conditioned = {...first, notices: [...first.notices, ...cutNotices(first, zones.support)]};
+    const pattern = patternOf(line, settings.model.support.length > 0);
+    if (zones.support === undefined) return {line, conditioned, zones, key: pattern};
+    const support = supportOfLine(conditioned, settings.model, zones.support);
+    return {line, conditioned, zones, key: `${pattern} ${support.map(({from, to}) => `${from}:${to}`).join(" ")}`};
   } catch (error) {
     if (!(error instanceof ReportableError)) throw error;
     return {id: line.id, failure: error};
@@ -101,6 +116,7 @@ function patternOf(line: SurveyLine, placed: boolean): string {
 async function poolRows(
   survey: Survey,
   settings: Settings,
+  zonesOf: ZonesOf,
   geometries: (key: string, make: () => RowGeometry) => RowGeometry,
 ): Promise<BoundChoice> {
   const pools = new Map<string, Pool>();
@@ -109,13 +125,13 @@ async function poolRows(
   let supportLength = 0;
   let failure: ReportableError | undefined;
   for await (const record of survey.lines()) {
-    const prepared = prepare(record, settings);
+    const prepared = prepare(record, settings, zonesOf);
     if ("failure" in prepared) {
-      if (failure === undefined || failure.code === EMPTY_ROW) failure = prepared.failure;
+      if (failure === undefined || statusWithout(failure) === "skipped") failure = prepared.failure;
       continue;
     }
-    const {conditioned, key} = prepared;
-    const geometry = geometries(key, () => rowGeometry(conditioned, settings));
+    const {conditioned, zones, key} = prepared;
+    const geometry = geometries(key, () => rowGeometry(conditioned, settings, zones.support));
     const {modes} = geometry;
     const {data, energies, outside} = onModes(conditioned, geometry);
     let pool = pools.get(key);
@@ -123,6 +139,7 @@ async function poolRows(
       pool = {
         eigenvalues: modes.eigenvalues,
         energies: new Float64Array(modes.count),
+        terms: geometry.basis.terms,
         rows: 0,
         readings: 0,
         outside: 0,
@@ -160,18 +177,18 @@ async function poolRows(
   const order = sortedByEigenvalue(
     join((pool) => pool.eigenvalues),
     join((pool) => pool.energies),
+    join((pool) => new Float64Array(pool.energies.length).fill(pool.rows)),
   );
   const total = (pick: (pool: Pool) => number): number => all.reduce((sum, pool) => sum + pick(pool), 0);
+  const outside = total((pool) => pool.outside);
+  const readings = total((pool) => pool.readings);
+  const terms = total((pool) => pool.rows * pool.terms);
   const solver = {
-    ...modalSums(
-      order.eigenvalues,
-      order.energies,
-      total((pool) => pool.outside),
-    ),
-    data: total((pool) => pool.readings),
+    ...modalSums(order.eigenvalues, order.energies, outside),
+    data: readings,
     unknowns: 0,
     modes: order.eigenvalues.length,
-    evidence: undefined,
+    evidence: evidenceOf(order.eigenvalues, order.energies, outside, readings - terms, order.repeats),
     estimate: (): Float64Array => new Float64Array(),
     withNoise(): never {
       throw new Error("pooled rows share one noise");
@@ -187,11 +204,12 @@ async function poolRows(
   return settings.bound.choose({solver, supportLength, lines: total((pool) => pool.rows), largestNorm});
 }
 
-function sortedByEigenvalue(eigenvalues: Float64Array, energies: Float64Array) {
+function sortedByEigenvalue(eigenvalues: Float64Array, energies: Float64Array, repeats: Float64Array) {
   const order = Int32Array.from(eigenvalues.keys()).sort((i, j) => eigenvalues[j] - eigenvalues[i] || i - j);
   return {
     eigenvalues: Float64Array.from(order, (i) => eigenvalues[i]),
     energies: Float64Array.from(order, (i) => energies[i]),
+    repeats: Float64Array.from(order, (i) => repeats[i]),
   };
 }
 
@@ -229,9 +247,13 @@ function answerRow(
         `The pooled multiplier leaves a misfit of ${misfit.toPrecision(4)} on row ${line.id}, beyond what the noise explains for ${data.length} readings (${misfitLimit(data.length).toPrecision(4)}).`,
       ),
     );
+  const source = band(answers.source);
   return {
-    source: band(answers.source),
-    levels: answers.levels.map(({setting, answer}) => ({setting, band: band(answer)})),
+    source,
+    levels: answers.levels.map(({setting, answer}) => ({
+      setting,
+      band: answer === answers.source ? source : band(answer),
+    })),
     stations: line.stations.count,
     panels: geometry.panels.count,
     modes: modes.count,

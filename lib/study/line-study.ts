@@ -1,15 +1,16 @@
 /** The walk of one line from readings to answers: the table of contents of the program. */
 import {continueField} from "../continuation/levels.ts";
 import type {Support} from "../geometry/interval.ts";
-import {totalLength} from "../geometry/interval.ts";
+import {clip, totalLength} from "../geometry/interval.ts";
 import {apparentNoise, chanceRatio} from "../inverse/apparent-noise.ts";
 import {averagesOn, resolutionOf} from "../inverse/averages.ts";
 import {estimateSource} from "../inverse/estimate.ts";
 import {intervalSolver} from "../inverse/intervals.ts";
 import {multiplierForNorm} from "../inverse/multiplier-for.ts";
+import {partsOf, type Strip} from "../inverse/nouns.ts";
 import {stripEstimate} from "../inverse/strip-estimate.ts";
 import {tradeoffCurve} from "../inverse/tradeoff.ts";
-import {NOT_WHITE, whiteness} from "../inverse/whiteness.ts";
+import {notWhite, whiteness} from "../inverse/whiteness.ts";
 import {doubt, type Notice} from "../notice.ts";
 import {continuumOf} from "../operators/continuum.ts";
 import {forwardOperator} from "../operators/forward.ts";
@@ -23,16 +24,18 @@ import type {SurveyLine} from "../survey/line.ts";
 import {feasibility} from "./feasibility.ts";
 import type {LineStudy} from "./outcome.ts";
 import type {Settings} from "./settings.ts";
-import {panelsOfLine, supportOfLine} from "./support-of-line.ts";
+import {stripsOfLine} from "./strips-of-line.ts";
+import {cutNotices, panelsOfLine, supportOfLine} from "./support-of-line.ts";
+import {zonesFor} from "./zones.ts";
 
 /**
  * @throws {ReportableError} when the line cannot be answered: its heights, noise, support or bound are at fault, or no
  *   source explains it
  */
-export function studyLine(line: SurveyLine, settings: Settings): LineStudy {
+export function studyLine(line: SurveyLine, settings: Settings, zones = zonesFor(settings)(line)): LineStudy {
   const {model, wanted} = settings;
   const first = condition(line, model.boundary);
-  const support = supportOfLine(first, model);
+  const support = supportOfLine(first, model, zones.support);
   const panels = panelsOfLine(first, support, model);
   const operator = forwardOperator(line.stations.chainage, first.height, panels);
   const regional = regionalBasis(line.stations.chainage, model.regional);
@@ -40,6 +43,7 @@ export function studyLine(line: SurveyLine, settings: Settings): LineStudy {
     first,
     spectralSolver(whiten(operator, first.values, first.noise, regional), regional.terms),
   );
+  const strips = stripsOfLine(line, support, wanted.strips, zones.strips);
   const curve = tradeoffCurve(solver);
   const choice = settings.bound.choose({
     solver,
@@ -76,17 +80,20 @@ export function studyLine(line: SurveyLine, settings: Settings): LineStudy {
     levels: wanted.levels.map((level) =>
       continueField(level, conditioned, panels, estimate.density, intervals, resolution, support),
     ),
-    strips: wanted.strips
-      .filter(({group}) => group === undefined || group === line.group)
-      .map((strip) => stripEstimate(intervals, panels, estimate.density, strip, support)),
+    strips: strips.map((strip) => stripEstimate(intervals, panels, estimate.density, strip, support)),
     confidence: wanted.confidence,
     notices: [
       ...line.notices,
+      ...zones.notices,
+      ...cutNotices(first, zones.support),
       ...conditioned.notices,
       ...choice.notices,
       ...feasible,
-      ...doubtsOfResidual(Float64Array.from(continuum.order, (i) => estimate.residual[i])),
-      ...doubtsOfStrips(settings, line, support),
+      ...doubtsOfResidual(
+        Float64Array.from(continuum.order, (i) => estimate.residual[i]),
+        estimate.misfit,
+      ),
+      ...doubtsOfStrips(strips, support),
     ],
   };
 }
@@ -133,21 +140,20 @@ function widerMisfit(conditioned: ConditionedLine, support: Support, settings: S
   return {metres, share: totalLength(joined) / totalLength(support) - 1, misfit: solver.misfit(multiplier)};
 }
 
-function doubtsOfResidual(residual: Float64Array): Notice[] {
+function doubtsOfResidual(residual: Float64Array, misfit: number): Notice[] {
   const {excess, lagOne} = whiteness(residual);
-  if (!(excess > NOT_WHITE)) return [];
+  if (!(excess > notWhite(residual.length, misfit))) return [];
   return [
     doubt(
       "residual/not-white",
-      `The residuals are not white noise (neighbours correlate by ${lagOne.toFixed(2)}): either the readings' noise is correlated, or part of the anomaly is taken for noise. Intervals that count on white noise are too narrow by then; try a smaller or larger --noise, or a wider --support.`,
+      `The residuals are not white noise (neighbours correlate by ${lagOne.toFixed(2)}): either the readings' noise is correlated, or part of the anomaly is taken for noise. Intervals that count on white noise are too narrow by then. Look at the residual in the report; give the noise as it is at the wavelengths of the anomaly, or a wider --support.`,
     ),
   ];
 }
 
-function doubtsOfStrips(settings: Settings, line: SurveyLine, support: Support): Notice[] {
-  return settings.wanted.strips
-    .filter(({group}) => group === undefined || group === line.group)
-    .filter(({from, to}) => !support.some((part) => part.from < to && part.to > from))
+function doubtsOfStrips(strips: readonly Strip[], support: Support): Notice[] {
+  return strips
+    .filter((strip) => partsOf(strip).every((part) => clip(part, support).length === 0))
     .map((strip) =>
       doubt(
         "strip/off-support",

@@ -37,14 +37,15 @@ export interface RowAnswers {
   readonly levels: readonly {readonly setting: LevelSetting; readonly answer: RowAnswer}[];
 }
 
-export interface RowAnswer {
+interface RowAnswer {
   readonly fromModes: Float64Array;
   readonly halfWidth: Float64Array;
 }
 
-export function rowGeometry(conditioned: ConditionedLine, settings: Settings): RowGeometry {
+/** @param area the part of the row inside the polygons of the support, if any were asked */
+export function rowGeometry(conditioned: ConditionedLine, settings: Settings, area: Support | undefined): RowGeometry {
   const {chainage} = conditioned.line.stations;
-  const support = supportOfLine(conditioned, settings.model);
+  const support = supportOfLine(conditioned, settings.model, area);
   const panels = panelsOfLine(conditioned, support, settings.model);
   const basis = regionalBasis(chainage, settings.model.regional);
   const system = whiten(
@@ -93,9 +94,14 @@ export function rowAnswers(geometry: RowGeometry, settings: Settings, bound: num
     );
     return {fromModes, halfWidth};
   };
+  const source = answer(new Float64Array(chainage.length));
   return {
     resolution: resolution.length,
-    source: answer(new Float64Array(chainage.length)),
-    levels: settings.wanted.levels.map((setting) => ({setting, answer: answer(levelHeights(setting, conditioned))})),
+    source,
+    levels: settings.wanted.levels.map((setting) => {
+      const height = levelHeights(setting, conditioned);
+      // On the boundary the field is the source.
+      return {setting, answer: height.every((z) => z === 0) ? source : answer(height)};
+    }),
   };
 }

@@ -5,14 +5,25 @@
 import type {AcquisitionSettings} from "../acquisition/settings.ts";
 import type {LevelSetting} from "../continuation/level-profile.ts";
 import type {Interval} from "../geometry/interval.ts";
+import type {MapArea} from "../geometry/map-area.ts";
 import type {Strip} from "../inverse/nouns.ts";
 import type {BoundRule} from "../inverse/rules/rule.ts";
 import type {BoundarySetting} from "../survey/boundary.ts";
 
-export interface SupportSetting extends Interval {
+/** A stretch of chainage. */
+export interface ChainageZone extends Interval {
   /** Only lines of this group; undefined: every line. */
   readonly group: string | undefined;
 }
+
+/** An area of the map: of each line the part inside. */
+export interface MapZone {
+  readonly area: MapArea;
+}
+
+export type SupportSetting = ChainageZone | MapZone;
+
+export type StripSetting = Strip | (MapZone & {readonly name: string});
 
 export interface ModelSettings {
   /** Undefined: the ground under a sensor known by clearance only, with a doubt; else it must be given. */
@@ -28,9 +39,11 @@ export interface ModelSettings {
 export interface WantedSettings {
   /** Default: level 0. */
   readonly levels: readonly LevelSetting[];
-  readonly strips: readonly Strip[];
+  readonly strips: readonly StripSetting[];
   /** Coverage of every interval; default 0.95. */
   readonly confidence: number;
+  /** Products beside those that are always written, by their words; absent: none. */
+  readonly also?: readonly string[];
 }
 
 export interface Settings {

@@ -1,42 +1,60 @@
 /** A survey as a stream of line studies: one line in memory at a time. */
 import {InputError, ReportableError} from "../errors.ts";
+import {isDoubtful} from "../notice.ts";
 import type {Survey} from "../survey/survey.ts";
 import {studyLine} from "./line-study.ts";
 import type {LineOutcome} from "./outcome.ts";
-import type {Settings} from "./settings.ts";
+import type {ChainageZone, Settings} from "./settings.ts";
+import {allSkipped, statusWithout} from "./skipped.ts";
+import {zonesFor} from "./zones.ts";
 
 /**
  * Outcomes in the order of the files; a line that cannot be answered is an outcome too.
- * @throws {InputError} `support/needs-group`, before the first line
+ * @throws {InputError} `support/needs-group`, before the first line; `zone/…`; `survey/all-skipped`, after the last
  */
 export async function* studySurvey(survey: Survey, settings: Settings): AsyncGenerator<LineOutcome> {
   checkGroups(survey, settings);
+  const zonesOf = zonesFor(settings);
+  let skipped: ReportableError | undefined;
+  let kept = 0;
+  const without = (id: string, failure: ReportableError): LineOutcome => {
+    const status = statusWithout(failure);
+    if (status === "skipped") skipped ??= failure;
+    else ++kept;
+    return {status, id, failure};
+  };
   for await (const record of survey.lines()) {
-    if ("failure" in record) yield {status: "failed", id: record.id, failure: record.failure};
+    if ("failure" in record) yield without(record.id, record.failure);
     else {
       const {id} = record.line;
+      // What is wrong with polygons is wrong for every line.
+      const zones = zonesOf(record.line);
       try {
-        const study = studyLine(record.line, settings);
-        const doubtful = study.notices.some(({weight}) => weight === "doubt");
+        const study = studyLine(record.line, settings, zones);
+        ++kept;
+        const doubtful = isDoubtful(study.notices);
         yield {status: doubtful ? "doubtful" : "done", id, study};
       } catch (error) {
         if (!(error instanceof ReportableError)) throw error;
-        yield {status: "failed", id, failure: error};
+        yield without(id, error);
       }
     }
   }
+  if (kept === 0 && skipped !== undefined) throw allSkipped(skipped);
 }
+
+const isChainage = <Z extends object>(zone: Z): zone is Extract<Z, ChainageZone> => !("area" in zone);
 
 /** Chainage A:B means something on one axis only. */
 export function checkGroups(survey: Survey, settings: Settings): void {
   const groups = survey.axes.map(({group}) => group);
   const named = [
-    ...settings.model.support.map(({group, from, to}) => ({
+    ...settings.model.support.filter(isChainage).map(({group, from, to}) => ({
       group,
       words: `--support ${from}:${to}`,
       example: `--support ${groups[0]}/${from}:${to}`,
     })),
-    ...settings.wanted.strips.map(({group, name, from, to}) => ({
+    ...settings.wanted.strips.filter(isChainage).map(({group, name, from, to}) => ({
       group,
       words: `--strip ${name}=${from}:${to}`,
       example: `--strip ${name}=${groups[0]}/${from}:${to}`,

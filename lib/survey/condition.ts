@@ -1,6 +1,6 @@
 /** Heights above the boundary and one noise level: the line made ready for the operator. */
 import {InputError, ModelError} from "../errors.ts";
-import {doubt, type Notice, remark} from "../notice.ts";
+import {doubt, type Notice, remark, standingDoubt} from "../notice.ts";
 import type {BoundarySetting} from "./boundary.ts";
 import type {ConditionedLine} from "./conditioned.ts";
 import type {SurveyLine} from "./line.ts";
@@ -74,9 +74,9 @@ function placeBoundary(line: SurveyLine, setting: BoundarySetting | undefined, n
   };
   const flatGround = (depth: number): PlacedBoundary => {
     notices.push(
-      doubt(
+      standingDoubt(
         "boundary/ground-taken-as-flat",
-        `Only the clearance is known, so the ground under the line was taken as flat${depth > 0 ? `, with the boundary ${depth} m below it` : " and as the boundary"}. Give elevation and ground columns if it is not.`,
+        `Only the clearance is known, so the ground under the line was taken as flat${depth > 0 ? `, with the boundary ${depth} m below it` : " and as the boundary"}. If it is not, survey lines with elevation and ground columns say where it lies.`,
       ),
     );
     return {

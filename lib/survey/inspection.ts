@@ -37,6 +37,7 @@ export async function inspectSurvey(survey: Survey): Promise<Inspection> {
   const copies: ThinnedLine[] = [];
   const methods = new Set<string>(["both"]);
   const notices = [...survey.notices];
+  const flown = survey.kind === "lines" && survey.fromGrid !== true;
   for await (const record of survey.lines()) {
     if ("failure" in record) {
       failures.push({id: record.id, code: record.failure.code, message: record.failure.message});
@@ -44,10 +45,10 @@ export async function inspectSurvey(survey: Survey): Promise<Inspection> {
     }
     const {line} = record;
     for (const {observable} of line.channels) methods.add(observable.source.method);
-    lines.push(lineFigures(line, azimuths.get(line.group), survey.kind));
-    if (survey.kind === "lines" && copies.length < MOST_COMPARED) copies.push(thinned(line));
+    lines.push(lineFigures(line, azimuths.get(line.group), flown ? "lines" : "grid"));
+    if (flown && copies.length < MOST_COMPARED) copies.push(thinned(line));
   }
-  if (survey.kind === "lines" && lines.length > copies.length)
+  if (flown && lines.length > copies.length)
     notices.push(
       remark(
         "inspect/not-all-compared",
@@ -63,7 +64,7 @@ export async function inspectSurvey(survey: Survey): Promise<Inspection> {
     grid: survey.grid,
     lines,
     failures,
-    neighbours: survey.kind === "lines" ? neighbours(copies) : undefined,
+    neighbours: flown ? neighbours(copies) : undefined,
     notices,
     notCorrected: NOT_CORRECTED.filter(({method}) => methods.has(method)),
   };

@@ -1,4 +1,5 @@
 /** A survey line as it was measured, on the axis of its survey. SI units; metres. */
+import type {Track} from "../geometry/track.ts";
 import type {Notice} from "../notice.ts";
 import type {Observable} from "../potential/observable.ts";
 
@@ -48,5 +49,7 @@ export interface SurveyLine {
   readonly omitted: number;
   /** Delivered coordinates of a place on the line, also beyond its ends; undefined where only chainage is known. */
   readonly locate: ((chainage: number) => readonly [number, number]) | undefined;
+  /** The course on the map, for what is drawn there; undefined where only chainage is known. */
+  readonly track: Track | undefined;
   readonly notices: readonly Notice[];
 }

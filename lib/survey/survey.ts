@@ -20,6 +20,8 @@ export interface RoleChoice {
   readonly role: string;
   readonly column: string;
   readonly reason: "asked" | "recognised";
+  /** Unit of readings where the file itself defines it, as `--unit` spells it. */
+  readonly unit?: string;
 }
 
 /** Frame of a grid whose rows or columns are the lines. */
@@ -45,6 +47,8 @@ export interface Survey {
   readonly notices: readonly Notice[];
   readonly lineCount: number;
   readonly grid: GridFrame | undefined;
+  /** Lines taken from a grid: smooth, so that their record shows no noise, and not flown beside each other. */
+  readonly fromGrid?: true;
   /** Walks the lines in the order of the files; may be called again. */
   lines(): AsyncIterable<LineRecord>;
 }

@@ -115,7 +115,7 @@ describe("continue over lines", () => {
       ["L3", false],
     ]);
     expect(ledger[1]!["reason"]).toMatch(/boundary/);
-    expect(flat(result.err)).toMatch(/error: line L2 · .*\[boundary\/station-below\]/);
+    expect(flat(result.err)).toMatch(/error: lines\.csv:72 · line L2 · .*\[boundary\/station-below\]/);
     expect(contents(out)).toEqual(LINE_FILES);
   });
 

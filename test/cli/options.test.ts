@@ -144,7 +144,7 @@ describe("settings", () => {
     ["support", "900:400", /ends at or before its start.*400:900/],
     ["support", "400", /not an interval.*A:B.*400:900/],
     ["support", "400:NaN", /not an interval/],
-    ["support", "zone.geojson", /not an interval/],
+    ["support", "zone.shp", /does not name a GeoJSON file.*\.geojson or \.json/],
     ["bound", "rms:0", /rms:0 is not a positive bound.*rms:0\.5/],
     ["bound", "rms:-1", /rms:-1 is not a positive bound/],
     ["bound", "norm:NaN", /norm:NaN is not a positive bound/],

@@ -31,7 +31,7 @@ test("--help loads no mathematics and no file format", () => {
   });
   const loaded = trace.stderr.split("\n").filter((line) => line.startsWith("load "));
   expect(loaded.length).toBeGreaterThan(10);
-  expect(loaded.filter((line) => /geotiff|proj4|csv-parse|d3-|epsg-table|line-study/.test(line))).toEqual([]);
+  expect(loaded.filter((line) => /geotiff|proj4|csv-parse|d3-|smol-toml|epsg-table|line-study/.test(line))).toEqual([]);
 });
 
 /** A module, as a data URL, that tells what is resolved. */

@@ -13,7 +13,8 @@ describe("the program", () => {
   test("--help names every command", async () => {
     const {status, out} = await run(["--help"]);
     expect(status).toBe(0);
-    for (const name of ["inspect", "continue", "spectrum"]) expect(out).toMatch(new RegExp(`^ {2}${name} `, "m"));
+    for (const name of ["inspect", "continue", "spectrum", "schema"])
+      expect(out).toMatch(new RegExp(`^ {2}${name} `, "m"));
   });
 
   test("no arguments: the help, on standard error, with exit status 2", async () => {
@@ -30,7 +31,7 @@ describe("the program", () => {
         " ",
       ),
       ..."observable unit noise regional processing boundary support bound panel level strip confidence".split(" "),
-      ..."profiles out replace json quiet help".split(" "),
+      ..."profiles out replace json quiet job explain help".split(" "),
     ])
       expect(out).toContain(`--${name}`);
     expect(flat(out)).toMatch(/source zone, where sources may be/);
@@ -41,7 +42,7 @@ describe("the program", () => {
     for (const line of out.split("\n")) expect(line.length).toBeLessThanOrEqual(100);
   });
 
-  test.each(["inspect", "continue", "spectrum"])("help %s and %s --help say the same", async (name) => {
+  test.each(["inspect", "continue", "spectrum", "schema"])("help %s and %s --help say the same", async (name) => {
     expect(await run(["help", name])).toEqual(await run([name, "--help"]));
   });
 
@@ -64,7 +65,7 @@ describe("the program", () => {
   test("no survey named", async () => {
     const {status, err} = await run(["inspect"]);
     expect(status).toBe(2);
-    expect(err).toMatch(/missing required argument 'survey'.*groundward inspect --help/s);
+    expect(flat(err)).toMatch(/No survey is named.*groundward inspect lines\.csv.*groundward inspect --help/);
   });
 
   test("with --json an error is one JSON object a line", async () => {

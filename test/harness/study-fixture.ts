@@ -41,7 +41,7 @@ export interface FixtureOptions {
   readonly notices?: readonly Notice[];
 }
 
-export const STRIPS: readonly Strip[] = [
+const STRIPS: readonly Strip[] = [
   {name: "dyke", from: 92, to: 112, group: undefined},
   {name: "rubble", from: 150, to: 180, group: undefined},
 ];

@@ -3,6 +3,8 @@
  * one under another along chainage. Scale from the data: chainage is in metres, whatever the coordinates are.
  */
 import {scaleLinear} from "d3-scale";
+import {clip} from "../../geometry/interval.ts";
+import {partsOf} from "../../inverse/nouns.ts";
 import type {LineStudy} from "../../study/outcome.ts";
 import {deliveryOf} from "../delivery.ts";
 import {nameText} from "../html.ts";
@@ -50,11 +52,9 @@ export function mapLine(study: LineStudy, most: number): MapLine {
     ++count[k]!;
   }
   for (let k = 0; k < segments; ++k) value[k] = count[k]! > 0 ? value[k]! / count[k]! : Number.NaN;
-  const strips = study.strips.flatMap(({strip}) => {
-    const a = Math.max(first, strip.from);
-    const b = Math.min(last, strip.to);
-    return b > a ? [[...locate(a), ...locate(b)] as const] : [];
-  });
+  const strips = study.strips
+    .flatMap(({strip}) => clip({from: first, to: last}, partsOf(strip)))
+    .map((part) => [...locate(part.from), ...locate(part.to)] as const);
   return {id: line.id, x, y, value, placed: line.locate !== undefined, length: last - first, strips};
 }
 

@@ -4,7 +4,8 @@
  */
 import {quantileSorted} from "d3-array";
 import {scaleLinear} from "d3-scale";
-import type {Strip} from "../../inverse/nouns.ts";
+import type {Interval} from "../../geometry/interval.ts";
+import {partsOf, type Strip} from "../../inverse/nouns.ts";
 import type {LineStudy} from "../../study/outcome.ts";
 import {deliveryOf} from "../delivery.ts";
 import {nameText} from "../html.ts";
@@ -178,15 +179,16 @@ function flanks(frame: Frame, first: number, last: number): string {
   return parts.join("");
 }
 
-const spanOf = (frame: Frame, strip: Strip): readonly [number, number] => {
+const spanOf = (frame: Frame, strip: Interval): readonly [number, number] => {
   const clamp = (value: number): number => Math.min(frame.left + frame.width, Math.max(frame.left, value));
   return [clamp(frame.x(strip.from)), clamp(frame.x(strip.to))];
 };
 
 const stripSpans = (frame: Frame, strips: readonly Strip[]): string =>
   strips
-    .map((strip) => {
-      const [a, b] = spanOf(frame, strip);
+    .flatMap(partsOf)
+    .map((part) => {
+      const [a, b] = spanOf(frame, part);
       return b > a ? boxMark("strip", a, frame.top, Math.max(1, b - a), frame.height) : "";
     })
     .join("");

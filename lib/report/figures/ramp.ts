@@ -15,7 +15,7 @@ export interface Ramp {
   classOf(value: number): number;
 }
 
-export const CLASSES = 32;
+const CLASSES = 32;
 
 export const classColour = (index: number): string => interpolateCividis((index + 0.5) / CLASSES);
 

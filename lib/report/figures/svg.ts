@@ -5,7 +5,7 @@ import {type Band, type Curve, decimatedBand, decimatedCurve} from "./decimate.t
 /** A coordinate to a tenth of a pixel. */
 export const px = (value: number): string => String(Math.round(value * 10) / 10 + 0);
 
-export const curvePath = (curve: Curve): string =>
+const curvePath = (curve: Curve): string =>
   line<number>()
     .x((i) => curve.x[i]!)
     .y((i) => curve.y[i]!)
