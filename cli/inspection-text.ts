@@ -17,15 +17,19 @@ const left = (head: string): Column => ({head, align: "left"});
 const right = (head: string): Column => ({head, align: "right"});
 /** Chainage and heights, to be read and typed back into options. */
 const metres = (value: number): string => `${Number(value.toFixed(Math.abs(value) >= 1000 ? 0 : 1)) + 0}`;
+/** A correlation; blank where there is none. */
+const decimals = (value: number): string => (Number.isFinite(value) ? value.toFixed(2) : "");
 const percent = (share: number): string => (share < 1e-4 ? "<0.01" : figure(100 * share, 2));
 
 /** What is not known is left out: heights and what follows from them, or the unit. */
 export function inspectionText(inspection: Inspection, known: Known): string {
-  const {lines, neighbours, notCorrected, kind} = inspection;
+  const {lines, neighbours, notCorrected, kind, grid} = inspection;
   const most = kind === "grid" ? MOST_ROWS : MOST_LINES;
   const shown = lines.slice(0, most);
   const parts = [positions(shown), readings(shown, known)];
-  if (lines.length > most) parts.push(`The first ${most} of ${counted(lines.length, "line")}; --json gives all.\n`);
+  if (shown.some(({channels}) => noiseWords(channels[0]) === PARTLY_SIGNAL)) parts.push(PARTLY_SIGNAL_MEANING);
+  const noun = grid?.orientation.slice(0, -1) ?? "line";
+  if (lines.length > most) parts.push(`The first ${most} of ${counted(lines.length, noun)}; --json gives all.\n`);
   if (neighbours !== undefined && neighbours.pairs.length > 0) parts.push(agreement(inspection, neighbours, known));
   const corrections = notCorrected.map(({name, words}) => paragraph(`  ${name}: `, words, WIDTH, "      ")).join("");
   parts.push(`Groundward does not correct readings. What stays in them unless it was removed before:\n${corrections}`);
@@ -79,7 +83,7 @@ function readings(lines: readonly LineFigures[], known: Known): string {
   const columns = [
     left("line"),
     ...(known.heights
-      ? [right(`${lines[0]?.heights[0]?.kind ?? "height"} m`), right("spacing/height"), right("aliased %")]
+      ? [right(`${lines[0]?.heights[0]?.kind ?? "height"} m`), right("step/height"), right("aliased %")]
       : []),
     right("offset m"),
     right(`readings${unit.after}`),
@@ -110,13 +114,21 @@ function readings(lines: readonly LineFigures[], known: Known): string {
   );
 }
 
+const PARTLY_SIGNAL = "partly signal?";
+const PARTLY_SIGNAL_MEANING = paragraph(
+  "",
+  `${PARTLY_SIGNAL}: stations are farther apart than a tenth of the height, so that the anomaly leaks into the fourth differences that the noise is taken from.`,
+  WIDTH,
+  "",
+);
+
 /** What the noise by fourth differences is worth. */
 function noiseWords(channel: LineFigures["channels"][number] | undefined): string {
   if (channel === undefined) return "";
   if (channel.noise === undefined) return "not known";
   if (!channel.noise.white) return "not white";
   if (channel.noiseMeaningful === undefined) return "white";
-  return channel.noiseMeaningful ? "sound" : "partly signal?";
+  return channel.noiseMeaningful ? "sound" : PARTLY_SIGNAL;
 }
 
 function agreement(
@@ -144,7 +156,7 @@ function agreement(
         figure(distance, 3),
         metres(from),
         metres(to),
-        figure(correlation, 2),
+        decimals(correlation),
         value(difference),
         sameWay ? "the same way" : "opposite ways",
       ]),
@@ -159,6 +171,6 @@ function agreement(
           WIDTH,
           "",
         );
-  const median = Number.isFinite(correlation) ? `Median correlation of neighbours ${figure(correlation, 2)}. ` : "";
+  const median = Number.isFinite(correlation) ? `Median correlation of neighbours ${decimals(correlation)}. ` : "";
   return `${table}${rest}${ways}${paragraph("", `${median}${words}`, WIDTH, "")}`;
 }

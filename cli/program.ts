@@ -8,7 +8,7 @@ import {schemaCommand} from "./commands/schema.ts";
 import {spectrumCommand} from "./commands/spectrum.ts";
 import {messagesTo, report} from "./messages.ts";
 import type {Host} from "./nouns.ts";
-import {printable} from "./printable.ts";
+import {printable, shown} from "./printable.ts";
 
 const DESCRIPTION =
   "Carries gravity and magnetic survey lines down to the boundary of their sources and to any level above it, with a bound on the sources and an interval on every answer.";
@@ -51,10 +51,19 @@ function asInputError(error: CommanderError, program: Command): InputError {
           program.commands.map((candidate) => candidate.name()),
         )}; groundward --help lists all.`,
       );
+    case "commander.optionMissingArgument":
+      return new InputError("option/missing-value", `${word.split(" ")[0]!} has no value. Write it as ${word}.`);
+    case "commander.excessArguments": {
+      const [first] = current.args;
+      return new InputError(
+        "argument/too-many",
+        `${current.name()} takes options only, but got ${shown(first ?? "")}. Leave it out; groundward ${current.name()} --help lists all.`,
+      );
+    }
     default:
       return new InputError(
         "option/refused",
-        `${printable(found, 300)}. See groundward ${current === program ? "" : `${current.name()} `}--help.`,
+        `${printable(found, 300).replace(/\.$/, "")}. See groundward ${current === program ? "" : `${current.name()} `}--help.`,
       );
   }
 }

@@ -4,17 +4,11 @@ import type {ByteSink} from "../lib/formats/byte-source.ts";
 import type {OpenBytes, OpenScratch, OpenText} from "../lib/products/opening.ts";
 import type {FileDigest} from "../lib/products/record.ts";
 import type {Host, OutputFile, OutputFolder, Scratch} from "./nouns.ts";
-import {shown} from "./printable.ts";
+import {type RunIdentity, runDifference} from "./run-difference.ts";
 
 const RECORD = "record.json";
 const TIMING = "timing.json";
 const encoder = new TextEncoder();
-
-/** The parts of a record that tell one run from another. */
-export interface RunIdentity {
-  readonly settings: unknown;
-  readonly inputs: unknown;
-}
 
 export interface RunFolder {
   readonly openText: OpenText;
@@ -52,18 +46,6 @@ async function earlierRun(folder: OutputFolder): Promise<EarlierRun | undefined>
   };
 }
 
-/** The first setting in which two runs differ, as `name: there, here`. */
-function difference(there: unknown, here: unknown, name: string): string | undefined {
-  if (JSON.stringify(there) === JSON.stringify(here)) return undefined;
-  const nested = (value: unknown): value is Record<string, unknown> => typeof value === "object" && value !== null;
-  if (nested(there) && nested(here) && Array.isArray(there) === Array.isArray(here))
-    for (const key of new Set([...Object.keys(there), ...Object.keys(here)])) {
-      const found = difference(there[key], here[key], Array.isArray(here) ? `${name}[${key}]` : key);
-      if (found !== undefined) return found;
-    }
-  return `${name} was ${shown(JSON.stringify(there) ?? "absent")} and is ${shown(JSON.stringify(here) ?? "absent")}`;
-}
-
 export interface RunPlan {
   readonly identity: RunIdentity;
   /** Whether files of others and of other runs may be written over. */
@@ -91,10 +73,7 @@ export async function openRunFolder(
   };
   try {
     const earlier = await earlierRun(folder);
-    const changed =
-      earlier &&
-      (difference(earlier.settings, identity.settings, "settings") ??
-        difference(earlier.inputs, identity.inputs, "input"));
+    const changed = earlier && runDifference(earlier, identity);
     if (changed !== undefined && !replace)
       throw new InputError(
         "out/other-run",

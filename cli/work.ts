@@ -11,6 +11,7 @@ import {studySurvey} from "../lib/study/survey-study.ts";
 import type {Survey} from "../lib/survey/survey.ts";
 import {gridResult} from "./grid-result.ts";
 import {lineResult, type RunResult} from "./line-result.ts";
+import {shown} from "./printable.ts";
 import {observableOf, type Run} from "./run.ts";
 
 export interface Work<Outcome> {
@@ -36,8 +37,17 @@ export async function lineWork({host, settings, survey, folder}: Run): Promise<W
   };
 }
 
-/** @param file the grid, which says where the answers lie */
+/**
+ * @param file the grid, which says where the answers lie
+ * @throws {InputError} `option/lines-only`, and those of the raster
+ */
 export async function gridWork({host, settings, survey, folder}: Run, file: ByteSource): Promise<Work<RowOutcome>> {
+  const [strip] = settings.wanted.strips;
+  if (strip !== undefined)
+    throw new InputError(
+      "option/lines-only",
+      `${"area" in strip ? "--strips" : "--strip"} (${shown(strip.name)}) asks for means along a line, but the survey is a grid, whose answers are rasters. Leave it out, or take lines out of the grid with --profiles FILE.geojson or --every N.`,
+    );
   const [also] = settings.wanted.also ?? [];
   if (also !== undefined)
     throw new InputError(

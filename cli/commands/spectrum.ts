@@ -75,7 +75,7 @@ export const spectrumCommand: AddCommand = (create, host, finish) => {
     if (isOn(asked, "json")) host.out.write(`${JSON.stringify({eigenvalues: [...eigenvalues], usable})}\n`);
     else {
       const rows = [...eigenvalues].map((value, n) => [`${n + 1}`, value.toFixed(12), value.toExponential(3)]);
-      const heads = ["mode", "eigenvalue", ""].map((head) => ({head, align: "right" as const}));
+      const heads = ["mode", "eigenvalue", "rounded"].map((head) => ({head, align: "right" as const}));
       host.out.write(textTable(heads, rows));
       host.out.write(`${usable} mode${usable === 1 ? "" : "s"} above ${floor}\n`);
     }

@@ -27,11 +27,15 @@ const AGREEMENT = 2;
 
 /**
  * Whether the settings and the columns give a height at all, and on one datum.
- * @param roles the roles that the file has columns for
+ * @param roles the roles that the file has columns for; undefined for a raster, which has no columns
  * @returns a doubt when there is no height and none is needed yet
  * @throws {InputError} `height/none`, `height/datums-differ`, `height/not-finite`
  */
-export function checkHeightSettings(roles: ReadonlySet<string>, settings: HeightSettings, place: Place): Notice[] {
+export function checkHeightSettings(
+  roles: ReadonlySet<string> | undefined,
+  settings: HeightSettings,
+  place: Place,
+): Notice[] {
   for (const [option, value] of [
     ["--clearance", settings.clearance],
     ["--elevation", settings.elevation],
@@ -43,15 +47,18 @@ export function checkHeightSettings(roles: ReadonlySet<string>, settings: Height
         "height/not-finite",
         `${option} was given as ${value}; a finite number of metres was needed.`,
       );
-  const elevation = settings.elevation !== undefined || roles.has("elevation");
-  const clearance = settings.clearance !== undefined || roles.has("clearance");
+  const elevation = settings.elevation !== undefined || roles?.has("elevation");
+  const clearance = settings.clearance !== undefined || roles?.has("clearance");
   if (!elevation && !clearance) {
-    const found = `${place.file} has no column for the height of the sensor (elevation above a datum, or clearance above ground), and none was given. Give --clearance H or --elevation Z in metres, or name a column with --column clearance=NAME or --column elevation=NAME.`;
+    const found =
+      roles === undefined
+        ? `${place.file} is a raster of readings and does not say how high the sensor was. Give --clearance H (above the ground) or --elevation Z (above a datum) in metres.`
+        : `${place.file} has no column for the height of the sensor (elevation above a datum, or clearance above ground), and none was given. Give --clearance H or --elevation Z in metres, or name a column with --column clearance=NAME or --column elevation=NAME.`;
     if (settings.inspecting !== true) throw new InputError("height/none", found, {place});
     return [doubt("height/none", found, place)];
   }
   const {elevationDatum, groundDatum, geoidOffset} = settings;
-  if (elevation && roles.has("ground") && elevationDatum !== undefined && groundDatum !== undefined)
+  if (elevation && roles?.has("ground") && elevationDatum !== undefined && groundDatum !== undefined)
     if (elevationDatum.trim().toLowerCase() !== groundDatum.trim().toLowerCase() && geoidOffset === undefined)
       throw new InputError(
         "height/datums-differ",

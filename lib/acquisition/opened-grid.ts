@@ -55,7 +55,7 @@ export async function openGrid(file: ByteSource, settings: AcquisitionSettings):
       `The noise of a grid cannot be taken from its record: ${file.name} was interpolated, which leaves it smooth. Give the standard deviation with --noise S.`,
       {place},
     );
-  const heightNotices = checkHeightSettings(new Set(), settings, place);
+  const heightNotices = checkHeightSettings(undefined, settings, place);
   const raster = await openRaster(file);
   const {system, unit, notices} = systemOf(raster, settings);
   notices.unshift(...raster.notices, ...heightNotices);

@@ -44,14 +44,16 @@ const SAMPLE = 1000;
 /**
  * Opens a table: looks at the whole file for its encoding, at the first rows for the rest.
  *
- * @throws {InputError} `table/empty-file`, `table/utf16`, `table/not-text`,
+ * @throws {InputError} `table/empty-file`, `table/utf16`, `table/not-text`, `table/json`,
  *   `table/header-only`, `table/no-header`, `table/duplicate-column`,
  *   `table/ragged-row`, `table/quote`, `table/cell-too-large`, `table/row-too-large`;
  *   `blocks()` throws the last four, too
  */
 export async function openTable(source: ByteSource): Promise<DelimitedTable> {
   const encoding = await detectEncoding(source);
-  const delimiter = delimiterOf(await firstLine(source, encoding));
+  const opening = await openingText(source, encoding);
+  refuseJson(opening, source.name);
+  const delimiter = delimiterOf(firstLineOf(opening));
   const notices: Notice[] = [];
   if (encoding.name === "latin1")
     notices.push(
@@ -114,10 +116,26 @@ function requireWidth({row, cells}: RawRow, width: number, file: string, delimit
   );
 }
 
-/** The first line that is not blank, for the delimiter; quoted line breaks cut it short, which does no harm. */
-async function firstLine(source: ByteSource, encoding: TextEncoding): Promise<string> {
+/** From the first character on that is not blank. */
+async function openingText(source: ByteSource, encoding: TextEncoding): Promise<string> {
   const bytes = await source.read(encoding.start, Math.min(HEADER_LIMIT, source.size - encoding.start));
-  const text = Buffer.from(bytes).toString("latin1").trimStart();
+  return Buffer.from(bytes).toString("latin1").trimStart();
+}
+
+/** A bracket and what JSON lets follow it: a header such as `[m]` is none. */
+const JSON_OPENING = /^(?:\{\s*["}]|\[\s*[[{"\]\d-])/;
+
+function refuseJson(opening: string, file: string): void {
+  if (!JSON_OPENING.test(opening)) return;
+  throw new InputError(
+    "table/json",
+    `The file is JSON (it begins with ${opening[0]}), and a survey is a CSV table with a header row, an ASEG-GDF2 pair or a GeoTIFF. Areas and transects in GeoJSON belong to --support, --strips or --profiles.`,
+    {place: {file}},
+  );
+}
+
+/** For the delimiter; quoted line breaks cut it short, which does no harm. */
+function firstLineOf(text: string): string {
   const end = text.search(/[\r\n]/);
   return end < 0 ? text : text.slice(0, end);
 }

@@ -7,7 +7,7 @@ import {MOST_POINTS, type ThinnedLine, thinnedValue} from "./thinned-line.ts";
 
 interface NeighbourPair {
   readonly group: string;
-  /** In the order of their offset from the axis. */
+  /** In the order of the lines. */
   readonly lines: readonly [string, string];
   /** Between their mean offsets, m. */
   readonly distance: number;
@@ -44,6 +44,7 @@ const LEAST_POINTS = 20;
 /** Lines looked past for a neighbour that shares some chainage. */
 const REACH = 4;
 
+/** @param lines in the order of the files, in which the pairs are given, too */
 export function neighbours(lines: readonly ThinnedLine[]): Neighbours {
   const groups = [...new Set(lines.map(({group}) => group))];
   const pairs: NeighbourPair[] = [];
@@ -69,7 +70,7 @@ export function neighbours(lines: readonly ThinnedLine[]): Neighbours {
   }
   const correlations = pairs.map((pair) => pair.correlation).filter((value) => !Number.isNaN(value));
   return {
-    pairs,
+    pairs: inOrder(pairs, lines),
     heading: {
       oppositePairs: opposite.length,
       opposite: median(opposite),
@@ -80,6 +81,32 @@ export function neighbours(lines: readonly ThinnedLine[]): Neighbours {
     words: inWords(correlations),
   };
 }
+
+/** By their earlier line, which stands first; the lines are told apart by group and name. */
+function inOrder(pairs: readonly NeighbourPair[], lines: readonly ThinnedLine[]): NeighbourPair[] {
+  const key = (group: string, id: string): string => `${group}/${id}`;
+  const places = new Map(lines.map(({group, id}, i) => [key(group, id), i]));
+  const place = ({group, lines: [first, second]}: NeighbourPair): readonly [number, number] => [
+    places.get(key(group, first))!,
+    places.get(key(group, second))!,
+  ];
+  return pairs
+    .map((pair) => {
+      const [first, second] = place(pair);
+      return first < second ? pair : turned(pair);
+    })
+    .sort((a, b) => {
+      const [one, other] = [place(a), place(b)];
+      return one[0] - other[0] || one[1] - other[1];
+    });
+}
+
+const turned = (pair: NeighbourPair): NeighbourPair => ({
+  ...pair,
+  lines: [pair.lines[1], pair.lines[0]],
+  // No negative zero.
+  difference: 0 - pair.difference,
+});
 
 function firstPair(first: ThinnedLine, others: readonly ThinnedLine[]): {pair: NeighbourPair} | undefined {
   for (const second of others) {

@@ -88,7 +88,10 @@ describe("a grid is refused", () => {
   });
 
   test("without a height, without a pixel, with columns, with two channels", async () => {
-    expect((await failure(() => open({clearance: undefined}))).code).toBe("height/none");
+    const high = await failure(() => open({clearance: undefined}));
+    expect(high.code).toBe("height/none");
+    expect(high.message).toMatch(/Give --clearance H .* or --elevation Z/);
+    expect(high.message).not.toMatch(/column/);
     expect((await failure(() => open({}, grid(GRID.map(() => NO))))).code).toBe("grid/empty");
     expect((await failure(() => open({columns: new Map([["value", "a"]])}))).code).toBe("grid/columns-asked");
     const two = [...settingsWith().channels, {role: "value.2", observable: "gravity", unit: undefined, noise: 1}];

@@ -33,6 +33,14 @@ const utf16 = (text: string): Uint8Array => new Uint8Array(Buffer.from(`\ufeff${
 
 const TABLES: readonly Bad[] = [
   {name: "empty file", file: "a.csv", content: "", status: 2, code: "table/empty-file", says: /a\.csv/},
+  {
+    name: "GeoJSON in place of a survey",
+    file: "zones.geojson",
+    content: '\n {\n  "type": "FeatureCollection", "features": []}',
+    status: 2,
+    code: "table/json",
+    says: /error: zones\.geojson · The file is JSON \(it begins with \{\).*--support, --strips or --profiles\. \[/,
+  },
   {name: "UTF-16 file", file: "a.csv", content: utf16(good), status: 2, code: "table/utf16", says: /UTF-8/},
   {
     name: "header only",

@@ -136,12 +136,14 @@ describe("continue over lines", () => {
     const before = readFileSync(join(out, "source.csv"), "utf8");
     const refused = await go("--regional", "0");
     expect(refused.status).toBe(2);
-    expect(flat(refused.err)).toMatch(/The folder holds another run \(regional was "1" and is "0"\)\. Give --replace/);
+    expect(flat(refused.err)).toMatch(
+      /The folder holds another run \(--regional was "1" and is "0"\)\. Give --replace/,
+    );
     expect(readFileSync(join(out, "source.csv"), "utf8")).toBe(before);
     expect((await go("--regional", "0", "--replace")).status).toBe(0);
     expect(readFileSync(join(out, "source.csv"), "utf8")).not.toBe(before);
     writeFileSync(survey, `${surveyText()}L1,600,30,0.1\n`);
-    expect(flat((await go("--regional", "0")).err)).toMatch(/\[out\/other-run\]/);
+    expect(flat((await go("--regional", "0")).err)).toMatch(/\("lines\.csv" has changed since\).*\[out\/other-run\]/);
   });
 });
 
@@ -190,6 +192,33 @@ describe("continue over a grid", () => {
     expect(JSON.parse(result.out)).toMatchObject({pixels: 192, noise_nT: expect.closeTo(1, 12)});
     expect(contents(out)).toContain("source_columnwise.tif");
     expect(table(out, "lines.csv")).toHaveLength(12);
+  });
+
+  test("strips of lines are refused, with the way to lines", async () => {
+    const out = join(temporaryFolder(), "out");
+    const ring = [
+      [147, -27.1],
+      [147.01, -27.1],
+      [147.01, -27.2],
+      [147, -27.1],
+    ];
+    const pit = {type: "Feature", properties: {name: "pit"}, geometry: {type: "Polygon", coordinates: [ring]}};
+    const file = fileWith("pits.geojson", JSON.stringify(pit));
+    const grid = fileWith("grid.tif", gridBytes());
+    const go = (...more: string[]) => run(["continue", grid, ...GRID, ...more, "--out", out]);
+    for (const [more, named] of [
+      [["--strip", "dyke=0:100"], '--strip ("dyke")'],
+      [["--strips", file], '--strips ("pit")'],
+    ] as const) {
+      const {status, out: printed, err} = await go(...more);
+      expect({status, printed}).toEqual({status: 2, printed: ""});
+      expect(flat(err)).toContain(`error: ${named} asks for means along a line`);
+      expect(flat(err)).toMatch(/--profiles FILE\.geojson or --every N\. \[option\/lines-only\]/);
+      expect(contents(out)).toEqual([]);
+    }
+    // Lines taken out of the grid have strips.
+    expect((await go("--strip", "dyke=0:100", "--every", "2")).status).not.toBe(2);
+    expect(table(out, "strips.csv").map(({strip}) => strip)).toEqual(["dyke", "dyke", "dyke"]);
   });
 
   test("a raster of someone else is refused before the work", async () => {

@@ -12,12 +12,26 @@ describe("inspect", () => {
     expect(out).toMatch(/^L1 +G1 +60 +0 +0 +590 +10\.0 +0 /m);
     expect(out).toMatch(/readings mGal +noise mGal/);
     expect(out).toMatch(/^L1 +30 +0\.33 /m);
-    expect(out).toMatch(/^L1 +L2 +0 +0 +590 +0\.\d\d? /m);
+    expect(out).toMatch(/^L1 +L2 +0 +0 +590 +0\.\d\d /m);
+    expect(flat(out)).toMatch(/Median correlation of neighbours 0\.\d\d\. /);
     expect(flat(out)).toMatch(/terrain: The attraction of hills/);
     // Magnetic corrections do not concern gravity.
     expect(flat(out)).not.toMatch(/reference field:/);
     for (const line of out.split("\n")) expect(line.length).toBeLessThanOrEqual(100);
     expect(flat(err)).toMatch(/Columns: .*value from "gravity" \(recognised\)/);
+  });
+
+  test("explains once why noise may be partly signal, and not where it is sound", async () => {
+    const meaning = /partly signal\?: stations are farther apart than a tenth of the height/g;
+    // 10 m apart: more than a tenth of 30 m, less than one of 300 m.
+    const survey = fileWith("lines.csv", surveyText(["L1", "L2"], 2000));
+    const low = (await run(["inspect", survey, "--observable", "gravity"])).out;
+    expect(low.match(/partly signal\?$/gm)).toHaveLength(2);
+    expect(flat(low).match(meaning)).toHaveLength(1);
+    const higher = fileWith("lines.csv", surveyText(["L1", "L2"], 2000).replaceAll(",30,", ",300,"));
+    const high = (await run(["inspect", higher, "--observable", "gravity"])).out;
+    expect(high.match(/sound$/gm)).toHaveLength(2);
+    expect(high).not.toMatch(/partly signal/);
   });
 
   test("needs no observable and no height: says so, and shows no unit and no height that nobody gave", async () => {
@@ -81,7 +95,10 @@ describe("inspect", () => {
     const {status, out, err} = await run(["inspect", fileWith("grid.tif", gridBytes(24, 30))]);
     expect(status).toBe(0);
     expect(flat(err)).toMatch(/Grid of 24 × 30 pixels/);
-    expect(out).toMatch(/^The first 12 of 30 lines; --json gives all\.$/m);
+    expect(out).toMatch(/^The first 12 of 30 rows; --json gives all\.$/m);
+    expect(out).not.toMatch(/partly signal/);
+    const columns = await run(["inspect", fileWith("grid.tif", gridBytes(24, 30)), "--profiles", "columns"]);
+    expect(columns.out).toMatch(/^The first 12 of 24 columns; --json gives all\.$/m);
     expect(out).toMatch(/not known$/m);
     expect(JSON.parse((await run(["inspect", fileWith("grid.tif", gridBytes()), "--json"])).out).lines).toHaveLength(5);
   });

@@ -62,10 +62,12 @@ describe("the program", () => {
     expect(err).toMatch(/"contniue" is no command\. Nearest is continue;/);
   });
 
-  test("no survey named", async () => {
-    const {status, err} = await run(["inspect"]);
+  test.each(["inspect", "continue"])("no survey named: %s", async (name) => {
+    const {status, err} = await run([name]);
     expect(status).toBe(2);
-    expect(flat(err)).toMatch(/No survey is named.*groundward inspect lines\.csv.*groundward inspect --help/);
+    expect(flat(err)).toMatch(
+      new RegExp(`No survey is named.*groundward ${name} lines\\.csv.*groundward ${name} --help`),
+    );
   });
 
   test("with --json an error is one JSON object a line", async () => {

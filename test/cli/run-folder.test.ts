@@ -4,7 +4,8 @@ import {readFileSync, writeFileSync} from "node:fs";
 import {join} from "node:path";
 import {describe, expect, test} from "vitest";
 import {nodeHost} from "../../cli/host.ts";
-import {openRunFolder, type RunIdentity} from "../../cli/run-folder.ts";
+import type {RunIdentity} from "../../cli/run-difference.ts";
+import {openRunFolder} from "../../cli/run-folder.ts";
 import type {FileDigest} from "../../lib/products/record.ts";
 import {contents, temporaryFolder} from "./harness.ts";
 
@@ -58,7 +59,7 @@ describe("a run's folder", () => {
     await expect(wholeRun(out, identity(2), {"source.csv": "new"})).rejects.toMatchObject({
       code: "out/other-run",
       exitStatus: 2,
-      message: expect.stringMatching(/noise was "1" and is "2".*--replace/),
+      message: expect.stringMatching(/--noise was "1" and is "2".*--replace/),
     });
     await expect(wholeRun(out, identity(1, "bb"), {"source.csv": "new"})).rejects.toMatchObject({
       code: "out/other-run",

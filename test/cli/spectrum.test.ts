@@ -37,7 +37,8 @@ describe("spectrum", () => {
     const {out} = await spectrum("--support", "-1:1", "--height", "1", "--count", "4");
     const lines = out.trimEnd().split("\n");
     expect(lines).toHaveLength(2 + 4 + 1);
-    expect(lines[2]).toMatch(/^ *1 +0\.\d{12} /);
+    expect(lines[0]).toMatch(/^mode +eigenvalue +rounded$/);
+    expect(lines[2]).toMatch(/^ *1 +0\.\d{12} +\d\.\d{3}e[+-]\d+$/);
     expect(lines.at(-1)).toMatch(/^\d+ modes above/);
     for (const line of lines) expect(line.length).toBeLessThanOrEqual(100);
   });
@@ -62,7 +63,17 @@ describe("spectrum", () => {
       ["--support", "--json", "--height", "1"],
       /--support has no value: --json follows/,
     ],
-    ["an operand", ["--support", "0:1", "--height", "1", "extra"], /too many arguments/],
+    [
+      "an operand",
+      ["--support", "0:1", "--height", "1", "extra"],
+      /takes options only, but got "extra"\. Leave it out.*--help/,
+    ],
+    [
+      "an option at the end without its value",
+      ["--height", "1", "--support"],
+      /--support has no value\. Write it as --support <A:B>\./,
+    ],
+    ["no options at all", [], /--support is missing.*--support -400:400/],
   ];
   test.each(refused)("refuses %s with exit status 2, a cure and no output", async (_, args, message) => {
     const {status, out, err} = await spectrum(...args);

@@ -178,6 +178,17 @@ describe("what is refused", () => {
       if (row !== undefined) expect(found.row).toBe(row);
     });
 
+  test.each(['{"type": "Feature"}', "\ufeff\n {\r\n  }", "[\n{}]", "[[1, 2], [3, 4]]", "[]"])(
+    "JSON: %j",
+    async (text) => {
+      expect((await failure(() => open(text))).code).toBe("table/json");
+    },
+  );
+
+  test("but not a header in brackets", async () => {
+    expect((await open("[m],{nT}\n1,2\n")).header).toEqual(["[m]", "{nT}"]);
+  });
+
   test("a ragged row far down is refused when it is reached", async () => {
     const table = await open(`x,y\n${"1,2\n".repeat(80_000)}3\n`);
     const found = await failure(() => contents(table));

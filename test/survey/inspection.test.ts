@@ -9,14 +9,17 @@ import {normals} from "./normals.ts";
 const LINES = 6;
 const STATIONS = 200;
 
-/** Lines along x, 100 m apart, 5 m steps, alternately flown; `reading` in mGal of line, x and way. */
-function survey(reading: (line: number, x: number, way: 1 | -1, i: number) => number, height = 60) {
+/** Lines along x, `apart` m apart towards north (negative: south), 5 m steps, alternately flown; `reading` in mGal of line, x and way. */
+function survey(
+  reading: (line: number, x: number, way: 1 | -1, i: number) => number,
+  {height = 60, apart = 100}: {height?: number; apart?: number} = {},
+) {
   const rows = ["line,x,y,value"];
   for (let l = 0; l < LINES; ++l)
     for (let i = 0; i < STATIONS; ++i) {
       const way = l % 2 === 0 ? 1 : -1;
       const x = way > 0 ? i * 5 : (STATIONS - 1 - i) * 5;
-      rows.push(`L${l},${x},${l * 100},${reading(l, x, way, i)}`);
+      rows.push(`L${l},${x},${l * apart},${reading(l, x, way, i)}`);
     }
   return openDelimitedSurvey([memorySource(rows.join("\n"))], settingsWith({clearance: height}));
 }
@@ -53,7 +56,7 @@ describe("inspection", () => {
       [60, true],
       [40, false],
     ] as const) {
-      const found = await inspectSurvey(await survey(reading, height));
+      const found = await inspectSurvey(await survey(reading, {height}));
       for (const line of found.lines) {
         expect(line.channels[0]!.noiseMeaningful).toBe(meaningful);
         // 196 correlated differences: a relative standard error of some 17 %, and 3 of them.
@@ -73,6 +76,22 @@ describe("inspection", () => {
     expect(correlation).toBeCloseTo(1, 9);
     expect(pairs[0]!.distance).toBeCloseTo(100, 9);
     expect(words).toMatch(/read alike \(5 pairs/);
+  });
+
+  test("pairs lines in the order of the files, whichever way their offsets grow", async () => {
+    // Each line reads 1 mGal more than the one before, and those flown along the axis 0.7 mGal more.
+    const reading = (l: number, x: number, way: number) => Math.sin(x / 90) + l + (way > 0 ? 0.7 : 0);
+    const up = (await inspectSurvey(await survey(reading))).neighbours!;
+    const down = (await inspectSurvey(await survey(reading, {apart: -100}))).neighbours!;
+    for (const {pairs} of [up, down]) {
+      expect(pairs.map(({lines}) => lines)).toEqual([0, 1, 2, 3, 4].map((l) => [`L${l}`, `L${l + 1}`]));
+      pairs.forEach(({distance, difference}, i) => {
+        expect(distance).toBeCloseTo(100, 9);
+        // Second less first.
+        expect(difference).toBeCloseTo(i % 2 === 0 ? 0.3e-5 : 1.7e-5, 12);
+      });
+    }
+    expect(down.heading).toEqual(up.heading);
   });
 
   test("says so when neighbours do not read alike", async () => {

@@ -1,0 +1,41 @@
+/**
+ * Speed and memory of the program as a user meets it: `npm run bench`, or with names of cases `npm run bench -- line`.
+ * Needs Debian's python3-numpy and python3-scipy. Exit status 1 where a target is missed.
+ */
+import {mkdirSync, mkdtempSync, rmSync, writeFileSync} from "node:fs";
+import {tmpdir} from "node:os";
+import {gridCase} from "./grid-case.ts";
+import {lineCase} from "./line-case.ts";
+import {BENCH_FOLDER} from "./measured.ts";
+import {machineLines, resultsText, type Told, tableOf} from "./results.ts";
+import {startCase} from "./start-case.ts";
+
+const CASES = [lineCase, gridCase, startCase];
+
+const asked = process.argv.slice(2);
+const unknown = asked.find((name) => !CASES.some((each) => each.name === name));
+if (unknown !== undefined) {
+  console.error(
+    `There is no case ${unknown}. Give some of ${CASES.map(({name}) => name).join(", ")}, or none for all.`,
+  );
+  process.exit(2);
+}
+const chosen = asked.length === 0 ? CASES : CASES.filter(({name}) => asked.includes(name));
+const folder = mkdtempSync(`${tmpdir()}/groundward-bench-`);
+try {
+  const told: Told[] = [];
+  for (const bench of chosen) {
+    console.error(`${bench.title} …`);
+    mkdirSync(`${folder}/${bench.name}`);
+    told.push({bench, result: bench.run(`${folder}/${bench.name}`)});
+  }
+  const date = new Date();
+  console.log(machineLines(date).join("\n"));
+  console.log(`\n${tableOf(told)}\n`);
+  for (const {bench, result} of told) console.log(`${bench.title}\n  ${result.notes.join("\n  ")}\n`);
+  // Only a full run is kept, so that all figures of the page are of one day and machine.
+  if (chosen.length === CASES.length) writeFileSync(`${BENCH_FOLDER}/results.md`, resultsText(told, date));
+  if (told.some(({result}) => result.figures.some(({met}) => met === false))) process.exitCode = 1;
+} finally {
+  rmSync(folder, {recursive: true, force: true});
+}
