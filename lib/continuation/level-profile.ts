@@ -1,4 +1,5 @@
 /** The field carried to a level. */
+import type {Dimension} from "../quantities.ts";
 
 /** Metres above the boundary, or above the ground under each station. */
 export type LevelSetting =
@@ -12,6 +13,9 @@ export const levelLabel = (level: LevelSetting): string =>
 /** Field at every station of a line, in the order of the stations; SI, m. */
 export interface LevelProfile {
   readonly setting: LevelSetting;
+  /** Name of what is given, and its dimension. */
+  readonly quantity: string;
+  readonly dimension: Dimension;
   /** Above the boundary, m. */
   readonly height: Float64Array;
   readonly value: Float64Array;

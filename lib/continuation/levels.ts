@@ -1,51 +1,106 @@
 /** The field on the levels that were asked for, at every station, with its interval. */
-import {ModelError} from "../errors.ts";
-import type {Support} from "../geometry/interval.ts";
+import {InputError, ModelError} from "../errors.ts";
+import {boundaryAt} from "../geometry/boundary-line.ts";
 import {lengthOf} from "../geometry/interval.ts";
 import {stretchAt} from "../inverse/averages.ts";
-import type {IntervalSolver} from "../inverse/intervals.ts";
+import type {Interval, IntervalSolver} from "../inverse/intervals.ts";
 import type {Resolution} from "../inverse/nouns.ts";
+import type {Continuum} from "../operators/continuum.ts";
 import {fieldAt, meanOver} from "../operators/functional.ts";
 import type {Panels} from "../operators/panels.ts";
+import type {EffectiveDirection} from "../potential/effective-direction.ts";
+import type {Response} from "../potential/kernel.ts";
+import type {LevelQuantity} from "../potential/level-quantity.ts";
+import type {SourceLaw} from "../potential/observable.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import {levelRowInto} from "./field-on-level.ts";
 import {type LevelProfile, type LevelSetting, levelLabel} from "./level-profile.ts";
 
+/** What a level is computed from. */
+export interface LevelQuestion {
+  readonly conditioned: ConditionedLine;
+  readonly panels: Panels;
+  readonly density: Float64Array;
+  readonly continuum: Continuum;
+  readonly solver: IntervalSolver;
+  readonly resolution: Resolution;
+  readonly quantity: LevelQuantity;
+}
+
 /**
- * Value: the field of the one source. Interval: of the field at that point; on the boundary itself, of the average of
- * f over at least the resolution length, since a point of f is bounded by no norm. Off the support f is zero.
+ * Value: the field of the one source. Interval: of the field at that point; on a flat boundary itself, of the average of
+ * f over at least the resolution length, since a point of f is bounded by no norm. Off the support f is zero. An
+ * amplitude, and the limit on a boundary that slopes, have no interval.
  *
- * @throws {ModelError} `level/no-ground` for a level above a ground that is not known, `level/below-boundary`
+ * @throws {InputError} `level/wrong-observable`, `direction/not-given`
+ * @throws {ModelError} `level/no-ground` for a level above a ground that is not known, `level/below-boundary`, `level/on-boundary`
  */
-export function continueField(
-  setting: LevelSetting,
-  conditioned: ConditionedLine,
-  panels: Panels,
-  density: Float64Array,
-  solver: IntervalSolver,
-  resolution: Resolution,
-  support: Support,
-): LevelProfile {
+export function continueField(setting: LevelSetting, question: LevelQuestion): LevelProfile {
+  const {conditioned, panels, density, continuum, solver, resolution, quantity} = question;
+  const {support, boundary} = continuum;
+  const {observable} = conditioned.channels[0].channel;
   const {chainage} = conditioned.line.stations;
   const height = levelHeights(setting, conditioned);
+  const responses = responsesOf(quantity, observable.source.method, conditioned.direction);
   const row = new Float64Array(panels.count);
   const value = new Float64Array(chainage.length);
-  const lower = new Float64Array(chainage.length);
-  const upper = new Float64Array(chainage.length);
+  const lower = new Float64Array(chainage.length).fill(Number.NaN);
+  const upper = new Float64Array(chainage.length).fill(Number.NaN);
   const averagedOver = new Float64Array(chainage.length).fill(Number.NaN);
   for (let i = 0; i < chainage.length; ++i) {
     const x = chainage[i];
-    const z = height[i];
-    levelRowInto(row, 0, panels, x, z);
-    for (let j = 0; j < panels.count; ++j) value[i] += row[j] * density[j];
-    const stretch = z === 0 ? stretchAt(panels, resolution, x) : undefined;
-    if (z === 0 && stretch === undefined) continue;
-    const answer = solver.interval(stretch === undefined ? fieldAt(x, z, support) : meanOver(stretch, support));
+    const y = boundaryAt(boundary, x);
+    value[i] = lengthOfParts(
+      responses.map((response) => {
+        levelRowInto(row, 0, panels, x, y, height[i], response);
+        let sum = 0;
+        for (let j = 0; j < panels.count; ++j) sum += row[j] * density[j];
+        return sum;
+      }),
+    );
+    const [response] = responses;
+    if (responses.length > 1 || (height[i] === 0 && boundary !== undefined)) continue;
+    let answer: Interval;
+    if (height[i] > 0) answer = solver.interval(fieldAt(x, y + height[i], response, continuum));
+    else {
+      const stretch = stretchAt(panels, resolution, x);
+      if (stretch !== undefined) averagedOver[i] = lengthOf(stretch);
+      answer = stretch === undefined ? {value: 0, halfWidth: 0} : solver.interval(meanOver(stretch, support));
+    }
     lower[i] = answer.value - answer.halfWidth;
     upper[i] = answer.value + answer.halfWidth;
-    if (stretch !== undefined) averagedOver[i] = lengthOf(stretch);
   }
-  return {setting, height, value, lower, upper, averagedOver};
+  return {
+    setting,
+    quantity: quantity.name,
+    dimension: quantity.dimension(observable.source),
+    height,
+    value,
+    lower,
+    upper,
+    averagedOver,
+  };
+}
+
+const lengthOfParts = (parts: readonly number[]): number => (parts.length === 1 ? parts[0] : Math.hypot(...parts));
+
+/** @throws {InputError} `level/wrong-observable`, `direction/not-given` */
+export function responsesOf(
+  quantity: LevelQuantity,
+  method: SourceLaw["method"],
+  direction: EffectiveDirection | undefined,
+): readonly Response[] {
+  if (quantity.method !== undefined && quantity.method !== method)
+    throw new InputError(
+      "level/wrong-observable",
+      `--level-observable ${quantity.name} is ${quantity.method}, but the readings are ${method}. Ask for a ${method} one.`,
+    );
+  if (quantity.needsDirection && direction === undefined)
+    throw new InputError(
+      "direction/not-given",
+      `--level-observable ${quantity.name} needs the direction of the Earth's field. Give --inclination and --declination, or --date.`,
+    );
+  return quantity.responses(direction);
 }
 
 /** Height of a level above the boundary at every station, m. */

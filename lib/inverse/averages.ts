@@ -2,7 +2,7 @@
 import type {Interval, Support} from "../geometry/interval.ts";
 import {lengthOf} from "../geometry/interval.ts";
 import {densityAt, meanOver} from "../operators/functional.ts";
-import type {Panels} from "../operators/panels.ts";
+import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
 import type {IntervalSolver} from "./intervals.ts";
 import type {PanelAverages, Resolution} from "./nouns.ts";
 
@@ -19,7 +19,8 @@ export function resolutionOf(
   multiplier: number,
   stations: Float64Array,
 ): Resolution {
-  const local = panels.centre.map((x) => 1 / solver.resolvingPower(densityAt(x), multiplier));
+  const boundary = boundaryOfPanels(panels);
+  const local = panels.centre.map((x) => 1 / solver.resolvingPower(densityAt(x, boundary), multiplier));
   const above = Float64Array.from([...stations].flatMap((x) => localAt(panels, local, x)?.length ?? [])).sort();
   const lengths = above.length > 0 ? above : Float64Array.from(local).sort();
   return {length: lengths[lengths.length >> 1], local};
@@ -57,13 +58,14 @@ export function averagesOn(
   resolution: Resolution,
   support: Support,
 ): PanelAverages {
+  const boundary = boundaryOfPanels(panels);
   const value = new Float64Array(panels.count);
   const lower = new Float64Array(panels.count);
   const upper = new Float64Array(panels.count);
   const averagedOver = new Float64Array(panels.count);
   for (let j = 0; j < panels.count; ++j) {
     const stretch = stretchAt(panels, resolution, panels.centre[j])!;
-    const answer = solver.interval(meanOver(stretch, support));
+    const answer = solver.interval(meanOver(stretch, support, boundary));
     value[j] = answer.value;
     lower[j] = answer.value - answer.halfWidth;
     upper[j] = answer.value + answer.halfWidth;

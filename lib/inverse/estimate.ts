@@ -1,26 +1,39 @@
 /** The source at the chosen multiplier, and what it leaves unexplained. */
 import {applyInto, type ForwardOperator} from "../operators/forward.ts";
+import type {Readings} from "../operators/readings.ts";
 import {projectOutInPlace, type RegionalBasis} from "../operators/regional.ts";
 import type {Solver} from "../solvers/solver.ts";
-import type {BoundChoice, SourceEstimate} from "./nouns.ts";
+import type {BoundChoice, ChannelFit, SourceEstimate} from "./nouns.ts";
 
 /** @param values readings, SI; the regional is what of them the source leaves inside the span of `basis` */
 export function estimateSource(
   solver: Solver,
   choice: BoundChoice,
   operator: ForwardOperator,
+  readings: Readings,
   basis: RegionalBasis,
   values: Float64Array,
 ): SourceEstimate {
   const density = solver.estimate(choice.multiplier);
   const field = applyInto(new Float64Array(values.length), operator, density);
   const left = values.map((value, i) => value - field[i]);
-  const residual = projectOutInPlace(Float64Array.from(left), basis);
+  const whitened = left.map((value, i) => value / readings.noise[i]);
+  const residual = projectOutInPlace(whitened, basis).map((value, i) => value * readings.noise[i]);
+  const channels: ChannelFit[] = [];
+  for (let from = 0; from < readings.count; ) {
+    let to = from;
+    while (to < readings.count && readings.channel[to] === readings.channel[from]) ++to;
+    channels.push({
+      field: field.slice(from, to),
+      regional: left.slice(from, to).map((value, i) => value - residual[from + i]),
+      residual: residual.slice(from, to),
+    });
+    from = to;
+  }
   return {
     density,
-    field,
-    regional: left.map((value, i) => value - residual[i]),
-    residual,
+    channels,
+    readings: readings.count,
     misfit: solver.misfit(choice.multiplier),
     norm: solver.norm(choice.multiplier),
     degreesOfFreedom: solver.degreesOfFreedom(choice.multiplier),

@@ -18,6 +18,7 @@
  * the line, RᵀW = 1, and s and b follow exactly; see `regional-reader.ts`.
  */
 
+import {boundaryAt} from "../geometry/boundary-line.ts";
 import {matVecInto, multiplyTransposedInto} from "../numeric/matmul.ts";
 import {foldedNormalQuantile} from "../numeric/normal.ts";
 import {minimise} from "../numeric/roots.ts";
@@ -87,7 +88,7 @@ export function intervalSolver(
   confidence: number,
   layout: "by size" | "whole" | "windows" = "by size",
 ): IntervalSolver {
-  const heights = Float64Array.from(continuum.z).sort();
+  const heights = continuum.z.map((_, i) => heightOf(continuum, i)).sort();
   const height = heights[heights.length >> 1];
   const whole =
     layout === "whole" ||
@@ -220,7 +221,7 @@ export function intervalSolver(
         from: functional.from + (length * k) / pieces,
         to: functional.from + (length * (k + 1)) / pieces,
       };
-      const part = meanOver(piece, continuum.support);
+      const part = meanOver(piece, continuum.support, continuum.boundary);
       const window = windowFor(part);
       return {window, eta: seenBy(window, part)};
     });
@@ -294,9 +295,12 @@ function shortest(width: (logA: number) => number, bound: number): number {
   return minimise(width, unit + Math.log(A_RANGE[0]), unit + Math.log(A_RANGE[1]), 5e-3).x;
 }
 
+/** Height of reading i above the boundary under it, m. */
+const heightOf = ({boundary, x, z}: Continuum, i: number): number => z[i] - boundaryAt(boundary, x[i]);
+
 /** Sorted stations within a margin of [left, right], at least a few dozen where there are. */
 function stationsAround(continuum: Continuum, left: number, right: number, scale: number): readonly [number, number] {
-  const {x, z, count} = continuum;
+  const {x, count} = continuum;
   const margin = (from: number, to: number): readonly [number, number] => {
     let first = 0;
     while (first < count && x[first] < from) ++first;
@@ -306,7 +310,7 @@ function stationsAround(continuum: Continuum, left: number, right: number, scale
   };
   let [first, last] = margin(left - WINDOW_MARGIN * scale, right + WINDOW_MARGIN * scale);
   let highest = scale;
-  for (let i = first; i < last; ++i) highest = Math.max(highest, z[i]);
+  for (let i = first; i < last; ++i) highest = Math.max(highest, heightOf(continuum, i));
   if (highest > scale) [first, last] = margin(left - WINDOW_MARGIN * highest, right + WINDOW_MARGIN * highest);
   const middle = 0.5 * (left + right);
   while (last - first < Math.min(count, LEAST_STATIONS)) {

@@ -28,16 +28,23 @@ export interface BoundChoice {
   readonly notices: readonly Notice[];
 }
 
+/** One channel explained; entries align with the stations, SI. */
+export interface ChannelFit {
+  /** What the sensor would read of the source. */
+  readonly field: Float64Array;
+  readonly regional: Float64Array;
+  /** Readings less field less regional. */
+  readonly residual: Float64Array;
+}
+
 /** The source and what it explains. */
 export interface SourceEstimate {
   /** f on the panels, SI. */
   readonly density: Float64Array;
-  /** Field of the source at the stations, SI. */
-  readonly field: Float64Array;
-  /** Regional at the stations, SI. */
-  readonly regional: Float64Array;
-  /** Readings less field less regional, SI. */
-  readonly residual: Float64Array;
+  /** What it explains of each channel, in the order of the line's. */
+  readonly channels: readonly ChannelFit[];
+  /** Readings of all channels. */
+  readonly readings: number;
   readonly misfit: number;
   readonly norm: number;
   readonly degreesOfFreedom: number;

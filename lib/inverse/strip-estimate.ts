@@ -1,7 +1,7 @@
 /** Mean of f over a strip, from the interval estimate and from the one source. */
 import {clip, type Support, totalLength} from "../geometry/interval.ts";
 import {meanOver} from "../operators/functional.ts";
-import type {Panels} from "../operators/panels.ts";
+import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
 import type {IntervalSolver} from "./intervals.ts";
 import {partsOf, type Strip, type StripEstimate} from "./nouns.ts";
 
@@ -13,7 +13,7 @@ export function stripEstimate(
   support: Support,
 ): StripEstimate {
   const stretches = partsOf(strip);
-  const {value, halfWidth} = solver.interval(meanOver(strip, support, stretches));
+  const {value, halfWidth} = solver.interval(meanOver(strip, support, boundaryOfPanels(panels), stretches));
   let integral = 0;
   for (let j = 0; j < panels.count; ++j)
     for (const part of clip({from: panels.from[j], to: panels.to[j]}, stretches))

@@ -3,92 +3,113 @@
  *
  * Panels a quarter of the height wide fit data well, but the part of a source that averages away inside them
  * still counts as bias. Here inner products of readings are integrals by Gauss–Legendre nodes on elements that
- * are short near the stations and long far from them, and responses to functionals are closed forms.
+ * are short near the sensors and long far from them, and responses to functionals are closed forms.
  */
+import {type BoundaryLine, boundaryAt, breaksWithin} from "../geometry/boundary-line.ts";
 import type {Support} from "../geometry/interval.ts";
-import {gaussLegendre} from "../numeric/quadrature.ts";
-import {supportLogarithm} from "../potential/gram.ts";
-import {poissonKernel} from "../potential/poisson.ts";
+import {gaussLegendre, type QuadratureRule} from "../numeric/quadrature.ts";
+import {kernelAt} from "../potential/kernel.ts";
+import {logarithmOver, type Pole} from "../potential/pair.ts";
+import {pick, type Readings} from "./readings.ts";
 
-/** Stations in increasing chainage and the support below them; noise whitens every response. */
-export interface Continuum {
+/** Readings in increasing chainage and the support below them; noise whitens every response. */
+export interface Continuum extends Readings {
   readonly support: Support;
-  readonly count: number;
-  readonly x: Float64Array;
-  readonly z: Float64Array;
-  /** L_S(x + iz) of `potential/gram.ts` at every station. */
-  readonly logRe: Float64Array;
-  readonly logIm: Float64Array;
-  /** Standard deviation of the readings, SI. */
-  readonly noise: number;
-  /** `order[k]` is the place in the line of the k-th station from the left. */
-  readonly order: Int32Array;
+  /** Undefined for a flat one at z = 0. */
+  readonly boundary: BoundaryLine | undefined;
+  /** Every reading as a pole, for closed forms on a flat boundary; empty on any other. */
+  readonly poles: readonly Pole[];
+  /** `place[k]` is the place among the readings given of the k-th from the left. */
+  readonly place: Int32Array;
 }
 
-export function continuumOf(x: Float64Array, z: Float64Array, support: Support, noise: number): Continuum {
-  const order = Int32Array.from(x.keys()).sort((i, j) => x[i] - x[j] || i - j);
-  const sorted = (values: Float64Array): Float64Array => Float64Array.from(order, (i) => values[i]);
-  const xs = sorted(x);
-  const zs = sorted(z);
-  const logRe = new Float64Array(x.length);
-  const logIm = new Float64Array(x.length);
-  for (let i = 0; i < x.length; ++i) {
-    const {re, im} = supportLogarithm(support, xs[i], zs[i]);
-    logRe[i] = re;
-    logIm[i] = im;
-  }
-  return {support, count: x.length, x: xs, z: zs, logRe, logIm, noise, order};
+export function continuumOf(readings: Readings, support: Support, boundary?: BoundaryLine): Continuum {
+  const {x} = readings;
+  const place = Int32Array.from(x.keys()).sort((i, j) => x[i] - x[j] || i - j);
+  const sorted = pick(readings, place);
+  const poles = boundary === undefined ? Array.from(sorted.x, (_, i) => poleOf(support, sorted, i)) : [];
+  return {...sorted, support, boundary, poles, place};
+}
+
+function poleOf(support: Support, {x, z, aRe, aIm, order}: Readings, i: number): Pole {
+  const [logRe, logIm, slopeRe, slopeIm] = logarithmOver(support, x[i], z[i]);
+  return {x: x[i], z: z[i], aRe: aRe[i], aIm: aIm[i], order: order[i], logRe, logIm, slopeRe, slopeIm};
 }
 
 /** Nodes and weights that integrate products of responses over the support. */
 export interface Nodes {
   readonly count: number;
   readonly at: Float64Array;
+  /** Height of the boundary there, m. */
+  readonly y: Float64Array;
   readonly rootWeight: Float64Array;
 }
 
-/** Nodes an element. */
-const ORDER = 16;
+/** A place above the boundary near which nodes must lie close. */
+export interface Place {
+  readonly x: number;
+  readonly z: number;
+}
+
 /**
- * Length of an element over its distance from the nearest station. At 2 the kernels' poles lie on the Bernstein
- * ellipse of ρ = 1 + √2, so that products are integrated to about 32 ρ^(−32) = 2e-11, their poles being double (Trefethen, Approximation Theory
- * and Approximation Practice (2013), ch. 19, from memory).
+ * Length of an element over its distance from the nearest sensor. At 2 the kernels' poles lie on the Bernstein
+ * ellipse of ρ = 1 + √2, so that products are integrated to about ρ^(−32) = 6e-13 by 16 nodes (Trefethen,
+ * Approximation Theory and Approximation Practice (2013), ch. 19, from memory). Products of two gradients, whose poles
+ * are of order 4, to 3e-9; on slopes the poles lie nearer, by cos θ, and a little more is lost.
  */
 const REACH = 2;
-
+/** Nodes for elements up to this share of their distance long, to the same accuracy. */
+const ORDERS = [
+  [0.25, 5],
+  [0.5, 7],
+  [1, 10],
+  [REACH, 16],
+] as const;
 /** Halvings that fix an element's length: to 1 % of what they began with. */
 const BISECTIONS = 7;
 
-/** Nodes for the stations `first … last − 1`. */
-export function nodesFor(continuum: Continuum, first: number, last: number): Nodes {
-  const rule = gaussLegendre(ORDER);
+/** Nodes for the readings `first … last − 1`, and for `also` where a point is asked about. */
+export function nodesFor(continuum: Continuum, first: number, last: number, also?: Place): Nodes {
+  const rules = new Map<number, QuadratureRule>(ORDERS.map(([, order]) => [order, gaussLegendre(order)]));
   const at: number[] = [];
   const rootWeight: number[] = [];
+  const far = (a: number, b: number): number => distance(continuum, first, last, a, b, also);
   for (const {from, to} of continuum.support) {
+    const breaks = [...breaksWithin(continuum.boundary, from, to), to];
     let left = from;
-    while (left < to) {
-      const right = longestElement(continuum, first, last, left, to);
-      // What would be left over as a sliver is shared between two equal elements.
-      const rest = to - right;
-      const end = rest > 0 && rest < right - left ? Math.min(right, 0.5 * (left + to)) : right;
-      const half = 0.5 * (end - left);
-      for (let k = 0; k < ORDER; ++k) {
-        at.push(left + half * (1 + rule.nodes[k]));
-        rootWeight.push(Math.sqrt(half * rule.weights[k]));
+    for (const stop of breaks)
+      while (left < stop) {
+        const right = longestElement(far, left, stop);
+        // What would be left over as a sliver is shared between two equal elements.
+        const rest = stop - right;
+        const end = rest > 0 && rest < right - left ? Math.min(right, 0.5 * (left + stop)) : right;
+        const share = (end - left) / far(left, end);
+        const rule = rules.get((ORDERS.find(([most]) => share <= most) ?? ORDERS[3])[1])!;
+        const half = 0.5 * (end - left);
+        for (let k = 0; k < rule.nodes.length; ++k) {
+          at.push(left + half * (1 + rule.nodes[k]));
+          rootWeight.push(Math.sqrt(half * rule.weights[k]));
+        }
+        left = end;
       }
-      left = end;
-    }
   }
-  return {count: at.length, at: Float64Array.from(at), rootWeight: Float64Array.from(rootWeight)};
+  const places = Float64Array.from(at);
+  return {
+    count: at.length,
+    at: places,
+    y: places.map((x) => boundaryAt(continuum.boundary, x)),
+    rootWeight: Float64Array.from(rootWeight),
+  };
 }
 
-/** The end of the longest element from `left` on that is no longer than REACH times its distance from the stations. */
-function longestElement(continuum: Continuum, first: number, last: number, left: number, to: number): number {
-  const allowed = (right: number): boolean => right - left <= REACH * distance(continuum, first, last, left, right);
-  let out = Math.min(to, left + REACH * distance(continuum, first, last, left, left));
+/** The end of the longest element from `left` on that is no longer than REACH times its distance from the sensors. */
+function longestElement(far: (a: number, b: number) => number, left: number, to: number): number {
+  const allowed = (right: number): boolean => right - left <= REACH * far(left, right);
+  let out = Math.min(to, left + REACH * far(left, left));
   if (allowed(out)) return out;
-  let inside = left + REACH * distance(continuum, first, last, left, out);
-  for (let step = 0; step < BISECTIONS; ++step) {
+  let inside = left + REACH * far(left, out);
+  // On, if need be, until there is an element at all: at the foot of a cliff that overtops a sensor.
+  for (let step = 0; step < BISECTIONS || !(inside > left); ++step) {
     const middle = 0.5 * (inside + out);
     if (allowed(middle)) inside = middle;
     else out = middle;
@@ -96,38 +117,52 @@ function longestElement(continuum: Continuum, first: number, last: number, left:
   return inside;
 }
 
-/** Least distance between the stations `first … last − 1` and the stretch [a, b] of the boundary, m. */
-function distance(continuum: Continuum, first: number, last: number, a: number, b: number): number {
+/** Least distance between the sensors `first … last − 1` (and `also`) and the stretch [a, b] of the boundary, m. */
+function distance(continuum: Continuum, first: number, last: number, a: number, b: number, also?: Place): number {
+  const top = Math.max(boundaryAt(continuum.boundary, a), boundaryAt(continuum.boundary, b));
   let least = Infinity;
+  const {x, z} = continuum;
   for (let i = first; i < last; ++i) {
-    const x = continuum.x[i];
-    const across = x < a ? a - x : x > b ? x - b : 0;
-    const d2 = across * across + continuum.z[i] * continuum.z[i];
+    const across = x[i] < a ? a - x[i] : x[i] > b ? x[i] - b : 0;
+    const above = z[i] - top;
+    const d2 = across * across + (above > 0 ? above * above : 0);
     if (d2 < least) least = d2;
+  }
+  if (also !== undefined) {
+    const across = also.x < a ? a - also.x : also.x > b ? also.x - b : 0;
+    const above = Math.max(also.z - top, 0);
+    least = Math.min(least, across * across + above * above);
   }
   return Math.sqrt(least);
 }
+
+/** Whitened response of reading i at a node. */
+const responseAt = (continuum: Continuum, nodes: Nodes, i: number, k: number): number =>
+  kernelAt(
+    continuum.aRe[i],
+    continuum.aIm[i],
+    continuum.order[i],
+    nodes.at[k] - continuum.x[i],
+    continuum.z[i] - nodes.y[k],
+  ) / continuum.noise[i];
 
 /** (last − first) × nodes, row-major: whitened responses at the nodes times the root of their weights. */
 export function nodeMatrix(continuum: Continuum, nodes: Nodes, first: number, last: number): Float64Array {
   const matrix = new Float64Array((last - first) * nodes.count);
   for (let i = first; i < last; ++i) {
     const row = (i - first) * nodes.count;
-    for (let k = 0; k < nodes.count; ++k)
-      matrix[row + k] =
-        (poissonKernel(nodes.at[k] - continuum.x[i], continuum.z[i]) * nodes.rootWeight[k]) / continuum.noise;
+    for (let k = 0; k < nodes.count; ++k) matrix[row + k] = responseAt(continuum, nodes, i, k) * nodes.rootWeight[k];
   }
   return matrix;
 }
 
-/** G R for `terms` vectors over all stations (terms × count, row-major), G the whitened Gram matrix; no matrix is stored. */
+/** G R for `terms` vectors over all readings (terms × count, row-major), G the whitened Gram matrix; no matrix is stored. */
 export function gramTimes(continuum: Continuum, vectors: Float64Array, terms: number): Float64Array {
   const nodes = nodesFor(continuum, 0, continuum.count);
   const result = new Float64Array(terms * continuum.count);
   const row = new Float64Array(continuum.count);
   for (let k = 0; k < nodes.count; ++k) {
-    for (let i = 0; i < continuum.count; ++i)
-      row[i] = (poissonKernel(nodes.at[k] - continuum.x[i], continuum.z[i]) * nodes.rootWeight[k]) / continuum.noise;
+    for (let i = 0; i < continuum.count; ++i) row[i] = responseAt(continuum, nodes, i, k) * nodes.rootWeight[k];
     for (let t = 0; t < terms; ++t) {
       const start = t * continuum.count;
       let dot = 0;
@@ -144,10 +179,8 @@ export function responseNormSquared(continuum: Continuum, weights: Float64Array)
   let total = 0;
   for (let k = 0; k < nodes.count; ++k) {
     let sum = 0;
-    for (let i = 0; i < continuum.count; ++i)
-      sum += weights[i] * poissonKernel(nodes.at[k] - continuum.x[i], continuum.z[i]);
-    const term = (sum * nodes.rootWeight[k]) / continuum.noise;
-    total += term * term;
+    for (let i = 0; i < continuum.count; ++i) sum += weights[i] * responseAt(continuum, nodes, i, k);
+    total += (sum * nodes.rootWeight[k]) ** 2;
   }
   return total;
 }

@@ -2,20 +2,21 @@
  * Numbers asked of f: a mean over stretches of the boundary, or the field at a point above it. Each knows its own
  * norm in L²(S) and, exactly, what every reading has in common with it.
  */
+import {type BoundaryLine, boundaryAt, breaksWithin} from "../geometry/boundary-line.ts";
 import {clip, type Interval, type Support, totalLength} from "../geometry/interval.ts";
-import {gramEntry, supportLogarithm} from "../potential/gram.ts";
-import {harmonicMeasure, poissonKernel} from "../potential/poisson.ts";
-import type {Continuum} from "./continuum.ts";
+import {amplitudeIm, amplitudeRe, kernelAt, kernelOverPiece, type Response} from "../potential/kernel.ts";
+import {logarithmOver, type Pole, pairOver} from "../potential/pair.ts";
+import {type Continuum, type Nodes, nodesFor} from "./continuum.ts";
 
 export interface Functional {
-  /** Where it looks, m of chainage: windows of stations are chosen around it. */
+  /** Where it looks, m of chainage: windows of readings are chosen around it. */
   readonly from: number;
   readonly to: number;
   /** How far it spreads beyond that: the height of the point, m. */
   readonly spread: number;
   /** ‖q‖² in L²(S), 1/m; infinite for a point of the boundary. */
   readonly normSquared: number;
-  /** Writes ⟨p_i, q⟩, whitened, for the stations `first … last − 1` to the head of `target`. */
+  /** Writes ⟨p_i, q⟩, whitened, for the readings `first … last − 1` to the head of `target`. */
   respondInto(target: Float64Array, continuum: Continuum, first: number, last: number): Float64Array;
 }
 
@@ -23,39 +24,88 @@ export interface Functional {
  * Mean of f over `interval`; outside the support f is zero, and counts as zero.
  * @param stretches where the mean is over parts of the interval only: these
  */
-export function meanOver(interval: Interval, support: Support, stretches: Support = [interval]): Functional {
+export function meanOver(
+  interval: Interval,
+  support: Support,
+  boundary?: BoundaryLine,
+  stretches: Support = [interval],
+): Functional {
   const parts = stretches.flatMap((stretch) => clip(stretch, support));
   const length = totalLength(stretches);
   const inside = parts.reduce((sum, part) => sum + part.to - part.from, 0);
+  const pieces = parts.flatMap(({from, to}) => {
+    const stops = [from, ...breaksWithin(boundary, from, to), to];
+    return stops.slice(1).map((end, k) => {
+      const start = stops[k];
+      return {a: start, ya: boundaryAt(boundary, start), b: end, yb: boundaryAt(boundary, end)};
+    });
+  });
   return {
     from: interval.from,
     to: interval.to,
     spread: 0,
     normSquared: inside / (length * length),
     respondInto(target, continuum, first, last) {
-      const scale = 1 / (length * continuum.noise);
       for (let i = first; i < last; ++i) {
+        const {x, z, aRe, aIm, order} = continuum;
         let sum = 0;
-        for (const part of parts) sum += harmonicMeasure(continuum.x[i], continuum.z[i], part.from, part.to);
-        target[i - first] = sum * scale;
+        for (const {a, ya, b, yb} of pieces)
+          sum += kernelOverPiece(aRe[i], aIm[i], order[i], a - x[i], z[i] - ya, b - x[i], z[i] - yb);
+        target[i - first] = sum / (length * continuum.noise[i]);
       }
       return target;
     },
   };
 }
 
-/** Field of f at height z > 0 above chainage x: q = P_z(x − ·) on the support. */
-export function fieldAt(x: number, z: number, support: Support): Functional {
-  const point = supportLogarithm(support, x, z);
+/**
+ * What a sensor of the given response would read of f at height z above chainage x. On a flat boundary in closed form;
+ * on any other by nodes that lie close under the point too.
+ */
+export function fieldAt(x: number, z: number, response: Response, continuum: Continuum): Functional {
+  const aRe = amplitudeRe(response);
+  const aIm = amplitudeIm(response);
+  const {order} = response;
+  const above = z - boundaryAt(continuum.boundary, x);
+  if (continuum.boundary === undefined) {
+    const [logRe, logIm, slopeRe, slopeIm] = logarithmOver(continuum.support, x, z);
+    const point: Pole = {x, z, aRe, aIm, order, logRe, logIm, slopeRe, slopeIm};
+    return {
+      from: x,
+      to: x,
+      spread: above,
+      normSquared: pairOver(continuum.support, point, point),
+      respondInto(target, {support, poles, noise}, first, last) {
+        for (let i = first; i < last; ++i) target[i - first] = pairOver(support, poles[i], point) / noise[i];
+        return target;
+      },
+    };
+  }
+  const weightsOn = (nodes: Nodes): Float64Array =>
+    nodes.at.map((at, k) => kernelAt(aRe, aIm, order, at - x, z - nodes.y[k]) * nodes.rootWeight[k]);
+  const own = weightsOn(nodesFor(continuum, 0, 0, {x, z}));
   return {
     from: x,
     to: x,
-    spread: z,
-    normSquared: gramEntry(support, point, point),
-    respondInto(target, continuum, first, last) {
+    spread: above,
+    normSquared: own.reduce((sum, weight) => sum + weight * weight, 0),
+    respondInto(target, readings, first, last) {
+      const nodes = nodesFor(readings, first, last, {x, z});
+      const weights = weightsOn(nodes);
       for (let i = first; i < last; ++i) {
-        const station = {x: continuum.x[i], z: continuum.z[i], re: continuum.logRe[i], im: continuum.logIm[i]};
-        target[i - first] = gramEntry(support, station, point) / continuum.noise;
+        let sum = 0;
+        for (let k = 0; k < nodes.count; ++k)
+          sum +=
+            weights[k] *
+            nodes.rootWeight[k] *
+            kernelAt(
+              readings.aRe[i],
+              readings.aIm[i],
+              readings.order[i],
+              nodes.at[k] - readings.x[i],
+              readings.z[i] - nodes.y[k],
+            );
+        target[i - first] = sum / readings.noise[i];
       }
       return target;
     },
@@ -63,14 +113,19 @@ export function fieldAt(x: number, z: number, support: Support): Functional {
 }
 
 /** f itself at a point of the boundary: not bounded by any norm, but it has an averaging kernel. */
-export const densityAt = (x: number): Functional => ({
-  from: x,
-  to: x,
-  spread: 0,
-  normSquared: Infinity,
-  respondInto(target, continuum, first, last) {
-    for (let i = first; i < last; ++i)
-      target[i - first] = poissonKernel(x - continuum.x[i], continuum.z[i]) / continuum.noise;
-    return target;
-  },
-});
+export const densityAt = (x: number, boundary?: BoundaryLine): Functional => {
+  const y = boundaryAt(boundary, x);
+  return {
+    from: x,
+    to: x,
+    spread: 0,
+    normSquared: Infinity,
+    respondInto(target, continuum, first, last) {
+      for (let i = first; i < last; ++i)
+        target[i - first] =
+          kernelAt(continuum.aRe[i], continuum.aIm[i], continuum.order[i], x - continuum.x[i], continuum.z[i] - y) /
+          continuum.noise[i];
+      return target;
+    },
+  };
+};

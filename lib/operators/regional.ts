@@ -1,6 +1,11 @@
-/** The regional polynomial as an orthonormal basis at the stations; it is projected out, not removed beforehand. */
+/**
+ * The regional polynomial as an orthonormal basis over the whitened readings; it is projected out, not removed
+ * beforehand. Every channel has a polynomial of its own: instruments differ in level and drift.
+ */
 
-/** `degree + 1` orthonormal rows of length `count`, row-major; no rows for degree −1. */
+import type {Readings} from "./readings.ts";
+
+/** `degree + 1` a channel: orthonormal rows of length `count`, row-major; no rows for degree −1. */
 export interface RegionalBasis {
   readonly terms: number;
   readonly count: number;
@@ -8,37 +13,46 @@ export interface RegionalBasis {
 }
 
 /**
- * Legendre polynomials on the span of the stations, orthonormalised by Gram–Schmidt done twice
- * (Giraud et al., "twice is enough", Numer. Math. 101 (2005) 87, from memory). A term that the stations cannot
- * tell from the lower ones is left out.
+ * Legendre polynomials on the span of the readings of each channel, orthonormalised by Gram–Schmidt done twice
+ * (Giraud et al., "twice is enough", Numer. Math. 101 (2005) 87, from memory). Noise is one number a channel, so that
+ * whitening does not change the span. A term that the readings cannot tell from the lower ones is left out.
  *
- * @param x chainage of the stations, m
  * @param degree −1 for none
  */
-export function regionalBasis(x: Float64Array, degree: number): RegionalBasis {
-  const count = x.length;
+export function regionalBasis(
+  {x, channel, count}: Pick<Readings, "x" | "channel" | "count">,
+  degree: number,
+): RegionalBasis {
   const rows: Float64Array[] = [];
-  let low = Infinity;
-  let high = -Infinity;
-  for (const chainage of x) {
-    low = Math.min(low, chainage);
-    high = Math.max(high, chainage);
-  }
-  const half = 0.5 * (high - low) || 1;
-  for (let term = 0; term <= degree; ++term) {
-    const row = x.map((chainage) => legendre(term, (chainage - 0.5 * (low + high)) / half));
-    const before = length(row);
-    for (let pass = 0; pass < 2; ++pass)
-      for (const earlier of rows) {
-        let dot = 0;
-        for (let i = 0; i < count; ++i) dot += row[i] * earlier[i];
-        for (let i = 0; i < count; ++i) row[i] -= dot * earlier[i];
-      }
-    const after = length(row);
-    // 1e-10 of its own length: far above rounding (ε√n), far below any real polynomial on distinct stations.
-    if (!(after > 1e-10 * before)) continue;
-    for (let i = 0; i < count; ++i) row[i] /= after;
-    rows.push(row);
+  const channels = channel.reduce((most, k) => Math.max(most, k), 0) + 1;
+  for (let k = 0; k < channels; ++k) {
+    let low = Infinity;
+    let high = -Infinity;
+    for (let i = 0; i < count; ++i) {
+      if (channel[i] !== k) continue;
+      low = Math.min(low, x[i]);
+      high = Math.max(high, x[i]);
+    }
+    const half = 0.5 * (high - low) || 1;
+    const own: Float64Array[] = [];
+    for (let term = 0; term <= degree; ++term) {
+      const row = x.map((chainage, i) =>
+        channel[i] === k ? legendre(term, (chainage - 0.5 * (low + high)) / half) : 0,
+      );
+      const before = length(row);
+      for (let pass = 0; pass < 2; ++pass)
+        for (const earlier of own) {
+          let dot = 0;
+          for (let i = 0; i < count; ++i) dot += row[i] * earlier[i];
+          for (let i = 0; i < count; ++i) row[i] -= dot * earlier[i];
+        }
+      const after = length(row);
+      // 1e-10 of its own length: far above rounding (ε√n), far below any real polynomial on distinct stations.
+      if (!(after > 1e-10 * before)) continue;
+      for (let i = 0; i < count; ++i) row[i] /= after;
+      own.push(row);
+    }
+    rows.push(...own);
   }
   const flat = new Float64Array(rows.length * count);
   rows.forEach((row, k) => {

@@ -3,6 +3,7 @@
  * plain Euclidean norms are the misfit and ‖f‖ in L². The regional is projected out on the way.
  */
 import type {ForwardOperator} from "./forward.ts";
+import type {Readings} from "./readings.ts";
 import {projectOutInPlace, projectOutOfColumnsInPlace, type RegionalBasis} from "./regional.ts";
 
 export interface WhitenedSystem {
@@ -17,26 +18,28 @@ export interface WhitenedSystem {
   readonly rootWidth: Float64Array;
 }
 
-/** @param noise standard deviation of every reading, SI */
+/** @param readings whose noise whitens; @param basis in whitened readings */
 export function whiten(
   operator: ForwardOperator,
+  readings: Readings,
   values: Float64Array,
-  noise: number,
   basis: RegionalBasis,
 ): WhitenedSystem {
   const columns = operator.panels.count;
   const rootWidth = operator.panels.width.map(Math.sqrt);
-  const scale = rootWidth.map((root) => 1 / (noise * root));
+  const scale = rootWidth.map((root) => 1 / root);
   const matrix = new Float64Array(operator.matrix.length);
-  for (let i = 0; i < operator.stations; ++i)
-    for (let j = 0; j < columns; ++j) matrix[i * columns + j] = operator.matrix[i * columns + j] * scale[j];
+  for (let i = 0; i < operator.readings; ++i) {
+    const inverse = 1 / readings.noise[i];
+    for (let j = 0; j < columns; ++j) matrix[i * columns + j] = operator.matrix[i * columns + j] * inverse * scale[j];
+  }
   projectOutOfColumnsInPlace(matrix, columns, basis);
-  return {rows: operator.stations, columns, matrix, data: whitenData(values, noise, basis), rootWidth};
+  return {rows: operator.readings, columns, matrix, data: whitenData(values, readings, basis), rootWidth};
 }
 
 /** Q d / σ. */
-export const whitenData = (values: Float64Array, noise: number, basis: RegionalBasis): Float64Array =>
+export const whitenData = (values: Float64Array, readings: Readings, basis: RegionalBasis): Float64Array =>
   projectOutInPlace(
-    values.map((value) => value / noise),
+    values.map((value, i) => value / readings.noise[i]),
     basis,
   );

@@ -8,4 +8,6 @@ export const fieldVertical = {
   source: MAGNETIC_LAYER,
   summary: "downward component of the anomalous magnetic field, positive down",
   anomalyLimit: {value: 5e-6, missing: "the removal of the reference field and of the daily variation"},
+  needsDirection: false,
+  response: () => ({re: 1, im: 0, order: 0}),
 } as const satisfies Observable;

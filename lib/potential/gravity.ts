@@ -8,4 +8,6 @@ export const gravity = {
   source: GRAVITY_LAYER,
   summary: "downward component of the anomalous attraction, positive down",
   anomalyLimit: {value: 1e-2, missing: "the normal gravity of the ellipsoid and the free-air or Bouguer reduction"},
+  needsDirection: false,
+  response: () => ({re: 1, im: 0, order: 0}),
 } as const satisfies Observable;

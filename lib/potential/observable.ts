@@ -1,9 +1,11 @@
 /**
  * What an instrument reads, as a linear functional of the boundary field f: every
  * observable is Re(α F) or Re(α F′) of the one analytic function F = P f + i Q f
- * above the boundary (Blakely, Potential Theory in Gravity and Magnetic Applications, 1995, ch. 12, from memory).
+ * above the boundary; see `kernel.ts`.
  */
 import type {Dimension} from "../quantities.ts";
+import type {EffectiveDirection} from "./effective-direction.ts";
+import type {Response} from "./kernel.ts";
 
 /** The law that turns the boundary field into sources. */
 export interface SourceLaw {
@@ -27,4 +29,8 @@ export interface Observable {
   readonly summary: string;
   /** A median beyond this, SI, is no anomaly; and the reduction that would be missing. */
   readonly anomalyLimit: {readonly value: number; readonly missing: string};
+  /** Whether the direction of the Earth's field along the line must be known. */
+  readonly needsDirection: boolean;
+  /** α and the order of the derivative. `direction` is there where `needsDirection` is true. */
+  response(direction: EffectiveDirection | undefined): Response;
 }

@@ -8,6 +8,7 @@ import {misfitLimit} from "../inverse/misfit-range.ts";
 import type {BoundChoice} from "../inverse/nouns.ts";
 import {doubt, isDoubtful, type Notice} from "../notice.ts";
 import {matVecInto} from "../numeric/matmul.ts";
+import {valuesOfLine} from "../operators/readings-of-line.ts";
 import {whitenData} from "../operators/whitened.ts";
 import {energyOutside, evidenceOf, modalSums} from "../solvers/spectral.ts";
 import {dataCoefficients} from "../spectral/singular-system.ts";
@@ -15,6 +16,7 @@ import {condition} from "../survey/condition.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {SurveyLine} from "../survey/line.ts";
 import type {LineRecord, Survey} from "../survey/survey.ts";
+import {effectiveDirectionOf} from "./direction-of-line.ts";
 import type {RowBand, RowOutcome, RowStudy} from "./outcome.ts";
 import {type RowAnswers, type RowGeometry, rowAnswers, rowGeometry} from "./row-geometry.ts";
 import type {Settings} from "./settings.ts";
@@ -83,7 +85,7 @@ function prepare(record: LineRecord, settings: Settings, zonesOf: ZonesOf): Prep
   const zones = zonesOf(record.line);
   const line = {...record.line, notices: [...record.line.notices, ...zones.notices]};
   try {
-    const first = condition(line, settings.model.boundary);
+    const first = condition(line, settings.model.boundary, effectiveDirectionOf(line, settings));
     const conditioned = {...first, notices: [...first.notices, ...cutNotices(first, zones.support)]};
     const pattern = patternOf(line, settings.model.support.length > 0);
     if (zones.support === undefined) return {line, conditioned, zones, key: pattern};
@@ -229,7 +231,10 @@ function answerRow(
   );
   const pixels = grid === undefined ? line.stations.count : grid.orientation === "rows" ? grid.width : grid.height;
   const band = ({fromModes, halfWidth}: RowAnswers["source"]): RowBand => {
-    const at = matVecInto(new Float64Array(line.stations.count), fromModes, weights, line.stations.count, modes.count);
+    const parts = fromModes.map((matrix) =>
+      matVecInto(new Float64Array(line.stations.count), matrix, weights, line.stations.count, modes.count),
+    );
+    const at = parts.length === 1 ? parts[0] : parts[0].map((_, i) => Math.hypot(...parts.map((part) => part[i])));
     const value = new Float64Array(pixels).fill(Number.NaN);
     const half = new Float64Array(pixels).fill(Number.NaN);
     for (let i = 0; i < at.length; ++i) {
@@ -261,7 +266,7 @@ function answerRow(
     norm: sums.norm(choice.multiplier),
     misfit,
     misfitExpected: data.length,
-    noise: conditioned.noise,
+    noise: conditioned.channels[0].noise,
     resolution: answers.resolution,
     degreesOfFreedom: sums.degreesOfFreedom(choice.multiplier),
     notices,
@@ -269,8 +274,8 @@ function answerRow(
 }
 
 /** A row's readings seen by the modes of its geometry: c_k, c_k², and the energy outside their span. */
-function onModes(conditioned: ConditionedLine, {modes, basis}: RowGeometry) {
-  const data = whitenData(conditioned.values, conditioned.noise, basis);
+function onModes(conditioned: ConditionedLine, {modes, basis, readings}: RowGeometry) {
+  const data = whitenData(valuesOfLine(conditioned), readings, basis);
   const coefficients = dataCoefficients(modes, data);
   const energies = coefficients.map((c) => c * c);
   return {data, coefficients, energies, outside: energyOutside(data, energies)};

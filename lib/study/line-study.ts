@@ -7,20 +7,25 @@ import {averagesOn, resolutionOf} from "../inverse/averages.ts";
 import {estimateSource} from "../inverse/estimate.ts";
 import {intervalSolver} from "../inverse/intervals.ts";
 import {multiplierForNorm} from "../inverse/multiplier-for.ts";
-import {partsOf, type Strip} from "../inverse/nouns.ts";
+import {partsOf, type SourceEstimate, type Strip} from "../inverse/nouns.ts";
 import {stripEstimate} from "../inverse/strip-estimate.ts";
 import {tradeoffCurve} from "../inverse/tradeoff.ts";
 import {notWhite, whiteness} from "../inverse/whiteness.ts";
 import {doubt, type Notice} from "../notice.ts";
 import {continuumOf} from "../operators/continuum.ts";
-import {forwardOperator} from "../operators/forward.ts";
-import {regionalBasis} from "../operators/regional.ts";
+import {type ForwardOperator, forwardOperator} from "../operators/forward.ts";
+import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
+import type {Readings} from "../operators/readings.ts";
+import {readingsOfLine, valuesOfLine} from "../operators/readings-of-line.ts";
+import {type RegionalBasis, regionalBasis} from "../operators/regional.ts";
 import {whiten, whitenData} from "../operators/whitened.ts";
+import {BOUNDARY_FIELD} from "../potential/level-quantity.ts";
 import type {Solver} from "../solvers/solver.ts";
 import {spectralSolver} from "../solvers/spectral.ts";
 import {condition} from "../survey/condition.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {SurveyLine} from "../survey/line.ts";
+import {effectiveDirectionOf} from "./direction-of-line.ts";
 import {feasibility} from "./feasibility.ts";
 import type {LineStudy} from "./outcome.ts";
 import type {Settings} from "./settings.ts";
@@ -34,15 +39,12 @@ import {zonesFor} from "./zones.ts";
  */
 export function studyLine(line: SurveyLine, settings: Settings, zones = zonesFor(settings)(line)): LineStudy {
   const {model, wanted} = settings;
-  const first = condition(line, model.boundary);
+  const direction = effectiveDirectionOf(line, settings);
+  const first = condition(line, model.boundary, direction);
   const support = supportOfLine(first, model, zones.support);
   const panels = panelsOfLine(first, support, model);
-  const operator = forwardOperator(line.stations.chainage, first.height, panels);
-  const regional = regionalBasis(line.stations.chainage, model.regional);
-  const {conditioned, solver} = settleNoise(
-    first,
-    spectralSolver(whiten(operator, first.values, first.noise, regional), regional.terms),
-  );
+  const {conditioned, readings, regional, operator, solver} = settled(first, panels, model.regional);
+  const values = valuesOfLine(conditioned);
   const strips = stripsOfLine(line, support, wanted.strips, zones.strips);
   const curve = tradeoffCurve(solver);
   const choice = settings.bound.choose({
@@ -54,19 +56,26 @@ export function studyLine(line: SurveyLine, settings: Settings, zones = zonesFor
   const feasible = feasibility(solver, choice, () =>
     widerMisfit(conditioned, support, settings, choice.basis === "given-bound" ? choice.bound : undefined),
   );
-  const estimate = estimateSource(solver, choice, operator, regional, conditioned.values);
+  const estimate = estimateSource(solver, choice, operator, readings, regional, values);
 
-  const continuum = continuumOf(line.stations.chainage, conditioned.height, support, conditioned.noise);
-  const sorted = regionalBasis(continuum.x, model.regional);
-  const readings = Float64Array.from(continuum.order, (i) => conditioned.values[i]);
-  const intervals = intervalSolver(
+  const continuum = continuumOf(readings, support, boundaryOfPanels(panels));
+  const sorted = regionalBasis(continuum, model.regional);
+  const data = whitenData(
+    Float64Array.from(continuum.place, (i) => values[i]),
     continuum,
     sorted,
-    whitenData(readings, conditioned.noise, sorted),
-    choice.bound,
-    wanted.confidence,
   );
+  const intervals = intervalSolver(continuum, sorted, data, choice.bound, wanted.confidence);
   const resolution = resolutionOf(intervals, panels, choice.multiplier, line.stations.chainage);
+  const question = {
+    conditioned,
+    panels,
+    density: estimate.density,
+    continuum,
+    solver: intervals,
+    resolution,
+    quantity: wanted.levelQuantity ?? BOUNDARY_FIELD,
+  };
   return {
     line,
     observable: line.channels[0].observable,
@@ -77,9 +86,7 @@ export function studyLine(line: SurveyLine, settings: Settings, zones = zonesFor
     estimate,
     resolution,
     averages: averagesOn(intervals, panels, resolution, support),
-    levels: wanted.levels.map((level) =>
-      continueField(level, conditioned, panels, estimate.density, intervals, resolution, support),
-    ),
+    levels: wanted.levels.map((level) => continueField(level, question)),
     strips: strips.map((strip) => stripEstimate(intervals, panels, estimate.density, strip, support)),
     confidence: wanted.confidence,
     notices: [
@@ -89,34 +96,49 @@ export function studyLine(line: SurveyLine, settings: Settings, zones = zonesFor
       ...conditioned.notices,
       ...choice.notices,
       ...feasible,
-      ...doubtsOfResidual(
-        Float64Array.from(continuum.order, (i) => estimate.residual[i]),
-        estimate.misfit,
-      ),
+      ...doubtsOfResidual(conditioned, estimate),
       ...doubtsOfStrips(strips, support),
     ],
   };
 }
 
+/** A line whose noise is settled, with its operator and solver. */
+interface Settled {
+  readonly conditioned: ConditionedLine;
+  readonly readings: Readings;
+  readonly regional: RegionalBasis;
+  readonly operator: ForwardOperator;
+  readonly solver: Solver;
+}
+
 /**
  * A noise taken from the record is raised where the readings show, by what no source explains, that their fourth
- * differences miss part of it.
+ * differences miss part of it. With several channels from the record all are raised alike.
  */
-function settleNoise(conditioned: ConditionedLine, solver: Solver): {conditioned: ConditionedLine; solver: Solver} {
-  if (conditioned.noiseFrom !== "record") return {conditioned, solver};
-  const apparent = apparentNoise(solver);
-  if (apparent === undefined || !(apparent.ratio > chanceRatio(solver.data))) return {conditioned, solver};
+function settled(first: ConditionedLine, panels: Panels, degree: number): Settled {
+  const readings = readingsOfLine(first);
+  const operator = forwardOperator(readings, panels);
+  const regional = regionalBasis(readings, degree);
+  const solver = spectralSolver(whiten(operator, readings, valuesOfLine(first), regional), regional.terms);
+  const apparent = first.channels.every(({noiseFrom}) => noiseFrom === "record") ? apparentNoise(solver) : undefined;
+  if (apparent === undefined || !(apparent.ratio > chanceRatio(solver.data)))
+    return {conditioned: first, readings, regional, operator, solver};
+  const {ratio} = apparent;
   const notice = doubt(
     "noise/raised",
-    `The fourth differences of the record give a noise that no source explains the rest by: it was raised ${apparent.ratio.toPrecision(3)} times. The noise is stronger in longer waves than white noise, or the ground is not two-dimensional. Give --noise if you know better.`,
+    `The fourth differences of the record give a noise that no source explains the rest by: it was raised ${ratio.toPrecision(3)} times. The noise is stronger in longer waves than white noise, or the ground is not two-dimensional. Give --noise if you know better.`,
   );
+  const conditioned = {
+    ...first,
+    channels: first.channels.map((channel) => ({...channel, noise: channel.noise * ratio})),
+    notices: [...first.notices, notice],
+  };
   return {
-    conditioned: {
-      ...conditioned,
-      noise: conditioned.noise * apparent.ratio,
-      notices: [...conditioned.notices, notice],
-    },
-    solver: solver.withNoise(apparent.ratio),
+    conditioned,
+    readings: readingsOfLine(conditioned),
+    regional,
+    operator,
+    solver: solver.withNoise(ratio),
   };
 }
 
@@ -131,24 +153,26 @@ function widerMisfit(conditioned: ConditionedLine, support: Support, settings: S
     else parts.push(next);
     return parts;
   }, []);
-  const {chainage} = conditioned.line.stations;
-  const panels = panelsOfLine(conditioned, joined, settings.model);
-  const operator = forwardOperator(chainage, conditioned.height, panels);
-  const basis = regionalBasis(chainage, settings.model.regional);
-  const solver = spectralSolver(whiten(operator, conditioned.values, conditioned.noise, basis), basis.terms);
+  const {solver} = settled(conditioned, panelsOfLine(conditioned, joined, settings.model), settings.model.regional);
   const multiplier = bound === undefined ? 0 : multiplierForNorm(solver, bound);
   return {metres, share: totalLength(joined) / totalLength(support) - 1, misfit: solver.misfit(multiplier)};
 }
 
-function doubtsOfResidual(residual: Float64Array, misfit: number): Notice[] {
-  const {excess, lagOne} = whiteness(residual);
-  if (!(excess > notWhite(residual.length, misfit))) return [];
-  return [
-    doubt(
-      "residual/not-white",
-      `The residuals are not white noise (neighbours correlate by ${lagOne.toFixed(2)}): either the readings' noise is correlated, or part of the anomaly is taken for noise. Intervals that count on white noise are too narrow by then. Look at the residual in the report; give the noise as it is at the wavelengths of the anomaly, or a wider --support.`,
-    ),
-  ];
+function doubtsOfResidual({line, channels}: ConditionedLine, estimate: SourceEstimate): Notice[] {
+  const order = Int32Array.from(line.stations.chainage.keys()).sort(
+    (i, j) => line.stations.chainage[i] - line.stations.chainage[j] || i - j,
+  );
+  return estimate.channels.flatMap(({residual}, k) => {
+    const {excess, lagOne} = whiteness(Float64Array.from(order, (i) => residual[i]));
+    if (!(excess > notWhite(residual.length, estimate.misfit / channels.length))) return [];
+    const which = channels.length > 1 ? ` of ${channels[k].channel.role}` : "";
+    return [
+      doubt(
+        "residual/not-white",
+        `The residuals${which} are not white noise (neighbours correlate by ${lagOne.toFixed(2)}): either the readings' noise is correlated, or part of the anomaly is taken for noise. Intervals that count on white noise are too narrow by then. Look at the residual in the report; give the noise as it is at the wavelengths of the anomaly, or a wider --support.`,
+      ),
+    ];
+  });
 }
 
 function doubtsOfStrips(strips: readonly Strip[], support: Support): Notice[] {

@@ -8,7 +8,9 @@ import type {Interval} from "../geometry/interval.ts";
 import type {MapArea} from "../geometry/map-area.ts";
 import type {Strip} from "../inverse/nouns.ts";
 import type {BoundRule} from "../inverse/rules/rule.ts";
+import type {LevelQuantity} from "../potential/level-quantity.ts";
 import type {BoundarySetting} from "../survey/boundary.ts";
+import type {FieldDirectionSetting} from "../survey/field-direction.ts";
 
 /** A stretch of chainage. */
 export interface ChainageZone extends Interval {
@@ -40,6 +42,8 @@ export interface WantedSettings {
   /** Default: level 0. */
   readonly levels: readonly LevelSetting[];
   readonly strips: readonly StripSetting[];
+  /** What is given on the levels; default: the boundary field, Re F. */
+  readonly levelQuantity?: LevelQuantity | undefined;
   /** Coverage of every interval; default 0.95. */
   readonly confidence: number;
   /** Products beside those that are always written, by their words; absent: none. */
@@ -48,6 +52,8 @@ export interface WantedSettings {
 
 export interface Settings {
   readonly acquisition: AcquisitionSettings;
+  /** Undefined where no observable needs it. */
+  readonly fieldDirection?: FieldDirectionSetting | undefined;
   readonly model: ModelSettings;
   /** Default: discrepancy. */
   readonly bound: BoundRule;

@@ -1,5 +1,6 @@
 /** The support and the panels of one line. */
 import {InputError} from "../errors.ts";
+import {boundaryAt} from "../geometry/boundary-line.ts";
 import {clip, type Support, supportOf} from "../geometry/interval.ts";
 import {unionOf} from "../geometry/track.ts";
 import {type Notice, remark} from "../notice.ts";
@@ -82,4 +83,12 @@ export function cutNotices(conditioned: ConditionedLine, area: Support | undefin
 
 /** Default panel: a quarter of the least height; see `panelsOn`. */
 export const panelsOfLine = (conditioned: ConditionedLine, support: Support, settings: ModelSettings): Panels =>
-  panelsOn(support, settings.panel ?? 0.25 * spanOf(conditioned.height).from);
+  panelsOn(support, settings.panel ?? 0.25 * leastHeight(conditioned), conditioned.boundaryLine);
+
+/** The lowest sensor of any channel over the boundary, m. */
+const leastHeight = ({line, boundaryLine, channels}: ConditionedLine): number =>
+  channels.reduce(
+    (least, {z}) =>
+      Math.min(least, spanOf(z.map((height, i) => height - boundaryAt(boundaryLine, line.stations.chainage[i]))).from),
+    Infinity,
+  );

@@ -1,31 +1,68 @@
 /** Heights above the boundary and one noise level: the line made ready for the operator. */
 import {InputError, ModelError} from "../errors.ts";
+import {type BoundaryLine, boundaryAt} from "../geometry/boundary-line.ts";
 import {doubt, type Notice, remark, standingDoubt} from "../notice.ts";
+import type {EffectiveDirection} from "../potential/effective-direction.ts";
 import type {BoundarySetting} from "./boundary.ts";
-import type {ConditionedLine} from "./conditioned.ts";
-import type {SurveyLine} from "./line.ts";
+import type {ConditionedChannel, ConditionedLine} from "./conditioned.ts";
+import type {Channel, SurveyLine} from "./line.ts";
 import {recordNoise} from "./record-noise.ts";
 
 /**
  * @param boundary undefined: the ground, where that is a boundary at all
- * @throws {InputError} `boundary/…` when the heights at hand do not place the boundary, `noise/…`
- * @throws {ModelError} `boundary/station-below` when a station lies on or below it
+ * @param direction of the Earth's field along the line, where an observable needs it
+ * @throws {InputError} `boundary/…` when the heights at hand do not place the boundary, `noise/…`, `direction/not-given`
+ * @throws {ModelError} `boundary/station-below` when a sensor lies on or below it
  */
-export function condition(line: SurveyLine, boundary: BoundarySetting | undefined): ConditionedLine {
-  const [channel] = line.channels;
-  if (channel === undefined) throw new InputError("line/no-channel", `Line ${line.id} holds no readings.`);
+export function condition(
+  line: SurveyLine,
+  boundary: BoundarySetting | undefined,
+  direction?: EffectiveDirection,
+): ConditionedLine {
+  if (line.channels.length === 0) throw new InputError("line/no-channel", `Line ${line.id} holds no readings.`);
   const notices: Notice[] = [];
   const placed = placeBoundary(line, boundary, notices);
-  placed.height.forEach((height, i) => {
-    if (!(height > 0))
-      throw new ModelError(
-        "boundary/station-below",
-        `The station in row ${line.stations.row[i]} of line ${line.id} lies ${height.toPrecision(4)} m above the boundary (${placed.words}); every station must lie above it. Lower the boundary with --boundary, or correct the heights.`,
-        {place: {file: line.file, row: line.stations.row[i]}},
+  const {chainage} = line.stations;
+  const channels = line.channels.map((channel): ConditionedChannel => {
+    const z = channel.above === undefined ? placed.z : placed.z.map((height, i) => height + channel.above![i]);
+    z.forEach((height, i) => {
+      const above = height - boundaryAt(placed.boundaryLine, chainage[i]);
+      if (!(above > 0))
+        throw new ModelError(
+          "boundary/station-below",
+          `The station in row ${line.stations.row[i]} of line ${line.id} lies ${above.toPrecision(4)} m above the boundary (${placed.words}); every station must lie above it. Lower the boundary with --boundary, or correct the heights.`,
+          {place: {file: line.file, row: line.stations.row[i]}},
+        );
+    });
+    const {observable} = channel;
+    if (observable.needsDirection && direction === undefined)
+      throw new InputError(
+        "direction/not-given",
+        `${observable.name} needs the direction of the Earth's field. Give --inclination and --declination, or --date.`,
       );
+    return {
+      channel,
+      response: observable.response(direction),
+      z,
+      noise: noiseOf(line, channel, notices),
+      noiseFrom: channel.noise === "record" ? "record" : "given",
+    };
   });
-  let noise: number;
-  if (channel.noise === "record") {
+  return {
+    line,
+    height: channels[0].z.map((z, i) => z - boundaryAt(placed.boundaryLine, chainage[i])),
+    boundaryLine: placed.boundaryLine,
+    groundHeight: placed.groundHeight,
+    boundary: placed.words,
+    channels,
+    direction,
+    notices,
+  };
+}
+
+function noiseOf(line: SurveyLine, channel: Channel, notices: Notice[]): number {
+  let {noise} = channel;
+  if (noise === "record") {
     const record = recordNoise(line.stations.chainage, channel.values);
     noise = record.sigma;
     if (!record.white)
@@ -35,26 +72,19 @@ export function condition(line: SurveyLine, boundary: BoundarySetting | undefine
           "The noise was taken from the fourth differences of the record, and these are not those of white noise: signal leaks into them or the noise is correlated. Give --noise.",
         ),
       );
-  } else noise = channel.noise;
+  }
   if (!(noise > 0))
     throw new InputError(
       "noise/not-positive",
       `The noise of line ${line.id} is ${noise}; it is a standard deviation and must be above zero. Give --noise.`,
     );
-  return {
-    line,
-    height: placed.height,
-    groundHeight: placed.groundHeight,
-    boundary: placed.words,
-    values: channel.values,
-    noise,
-    noiseFrom: channel.noise === "record" ? "record" : "given",
-    notices,
-  };
+  return noise;
 }
 
 interface PlacedBoundary {
-  readonly height: Float64Array;
+  /** Sensor above the datum of the section. */
+  readonly z: Float64Array;
+  readonly boundaryLine: BoundaryLine | undefined;
   readonly groundHeight: Float64Array | undefined;
   readonly words: string;
 }
@@ -70,7 +100,7 @@ function placeBoundary(line: SurveyLine, setting: BoundarySetting | undefined, n
           "The boundary lies below the ground in places: the result holds only if nothing between them is a source.",
         ),
       );
-    return {height: elevation!.map((z) => z - level), groundHeight: ofGround, words};
+    return {z: elevation!.map((z) => z - level), boundaryLine: undefined, groundHeight: ofGround, words};
   };
   const flatGround = (depth: number): PlacedBoundary => {
     notices.push(
@@ -80,7 +110,8 @@ function placeBoundary(line: SurveyLine, setting: BoundarySetting | undefined, n
       ),
     );
     return {
-      height: clearance!.map((c) => c + depth),
+      z: clearance!.map((c) => c + depth),
+      boundaryLine: undefined,
       groundHeight: new Float64Array(clearance!.length).fill(depth),
       words: depth > 0 ? `${depth} m below ground taken as flat` : "the ground, taken as flat",
     };
@@ -88,6 +119,24 @@ function placeBoundary(line: SurveyLine, setting: BoundarySetting | undefined, n
   const lowest = (values: Float64Array): number => values.reduce((least, value) => Math.min(least, value), Infinity);
   const highest = (values: Float64Array): number => values.reduce((most, value) => Math.max(most, value), -Infinity);
 
+  if (setting?.kind === "ground") {
+    const {depth} = setting;
+    if (elevation === undefined || ground === undefined)
+      throw new InputError(
+        "boundary/no-ground",
+        `--boundary ground-${depth} follows the ground, but line ${line.id} does not give both the sensor's elevation and the ground. Give a ground column, or a clearance beside the elevation.`,
+      );
+    const level = lowest(ground) - depth;
+    return {
+      z: elevation.map((z) => z - level),
+      boundaryLine: boundaryUnder(
+        line.stations.chainage,
+        ground.map((g) => g - depth - level),
+      ),
+      groundHeight: new Float64Array(ground.length).fill(depth),
+      words: `${depth} m below the ground, following it`,
+    };
+  }
   if (setting?.kind === "elevation") {
     if (elevation === undefined)
       throw new InputError(
@@ -122,4 +171,23 @@ function placeBoundary(line: SurveyLine, setting: BoundarySetting | undefined, n
     "boundary/not-given",
     `Line ${line.id} gives the sensor's elevation but neither ground nor clearance. Say where the boundary lies: --boundary Z.`,
   );
+}
+
+/** The broken line through the heights at the stations, in increasing chainage; stations at one chainage give their mean. */
+function boundaryUnder(chainage: Float64Array, heights: Float64Array): BoundaryLine {
+  const order = Int32Array.from(chainage.keys()).sort((i, j) => chainage[i] - chainage[j]);
+  const x: number[] = [];
+  const y: number[] = [];
+  let shared = 0;
+  for (const i of order) {
+    if (x.length > 0 && chainage[i] - x[x.length - 1] <= 1e-6) {
+      ++shared;
+      y[y.length - 1] += (heights[i] - y[y.length - 1]) / (shared + 1);
+    } else {
+      shared = 0;
+      x.push(chainage[i]);
+      y.push(heights[i]);
+    }
+  }
+  return {x: Float64Array.from(x), y: Float64Array.from(y)};
 }

@@ -32,6 +32,8 @@ export interface Channel {
   readonly values: Float64Array;
   /** Standard deviation of the noise, SI, or `record`: from the fourth differences of the record itself. */
   readonly noise: number | "record";
+  /** This sensor above the one that the stations' heights belong to, m; undefined where it is that one. */
+  readonly above?: Float64Array | undefined;
 }
 
 export interface SurveyLine {

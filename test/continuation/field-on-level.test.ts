@@ -1,11 +1,15 @@
 /** The field of a density on panels at any height: exact over panels, continuous down to the boundary. */
 import {describe, expect, test} from "vitest";
 import {levelRowInto} from "../../lib/continuation/field-on-level.ts";
+import {boundaryAt} from "../../lib/geometry/boundary-line.ts";
 import type {Support} from "../../lib/geometry/interval.ts";
 import {gaussLegendre} from "../../lib/numeric/quadrature.ts";
 import {type Panels, panelsOn} from "../../lib/operators/panels.ts";
+import {amplitudeIm, amplitudeRe, kernelAt} from "../../lib/potential/kernel.ts";
 import {harmonicMeasure, poissonKernel} from "../../lib/potential/poisson.ts";
 import {absoluteClose} from "../harness/assert-close.ts";
+import {VERTICAL} from "../harness/interval-case.ts";
+import {evenly} from "../harness/synthetic-line.ts";
 
 const parts: Support = [
   {from: -20, to: 40},
@@ -15,7 +19,7 @@ const panels = panelsOn(parts, 3);
 const density = panels.centre.map((x) => Math.cos(x / 13) + 0.02 * x);
 
 function field(at: Panels, f: Float64Array, x: number, z: number): number {
-  const row = levelRowInto(new Float64Array(at.count), 0, at, x, z);
+  const row = levelRowInto(new Float64Array(at.count), 0, at, x, 0, z, VERTICAL);
   return row.reduce((sum, entry, j) => sum + entry * f[j], 0);
 }
 
@@ -118,7 +122,7 @@ describe("the field on a level", () => {
 
   test("writes its own stretch of the target only", () => {
     const target = new Float64Array(panels.count + 2).fill(9);
-    levelRowInto(target, 1, panels, 3, 0);
+    levelRowInto(target, 1, panels, 3, 0, 0, VERTICAL);
     expect([target[0], target.at(-1)]).toEqual([9, 9]);
     absoluteClose(
       target.slice(1, -1).reduce((sum, entry) => sum + entry, 0),
@@ -126,5 +130,99 @@ describe("the field on a level", () => {
       1e-15,
       "shares of two neighbours",
     );
+  });
+
+  test.each([
+    {re: 0, im: 1, order: 0},
+    {re: 0.6, im: -0.8, order: 0},
+    {re: 0, im: -1, order: 1},
+    {re: 0.7, im: 0.4, order: 1},
+  ] as const)(
+    "is that of the broken line for any reading, on level ground and over a hill: $re + i $im, order $order",
+    (response) => {
+      const rule = gaussLegendre(16);
+      const hill = {x: Float64Array.of(-25, 0, 22, 80), y: Float64Array.of(0, 3, 9, 2)};
+      for (const boundary of [undefined, hill]) {
+        const ground = panelsOn(parts, 3, boundary);
+        for (const [x, above] of [
+          [-21, 0.4],
+          [3.2, 1.3],
+          [23, 0.3],
+          [45, 1],
+          [60.5, 1.4],
+        ] as const) {
+          const z = boundaryAt(boundary, x) + above;
+          let want = 0;
+          let size = 0;
+          for (let j = 0; j < ground.count; ++j)
+            for (const [a, b] of [
+              [ground.from[j], ground.centre[j]],
+              [ground.centre[j], ground.to[j]],
+            ]) {
+              // Elements of a sixtieth of half a panel, the nearest pole 0.3 off.
+              const half = (b - a) / 120;
+              for (let e = 0; e < 60; ++e)
+                for (let k = 0; k < 16; ++k) {
+                  const t = a + half * (2 * e + 1 + rule.nodes[k]);
+                  const y = ground.yFrom[j] + ((t - ground.from[j]) / 3) * (ground.yTo[j] - ground.yFrom[j]);
+                  const term =
+                    half *
+                    rule.weights[k] *
+                    brokenLine(ground, density, t) *
+                    kernelAt(amplitudeRe(response), amplitudeIm(response), response.order, t - x, z - y);
+                  want += term;
+                  size += Math.abs(term);
+                }
+            }
+          const row = levelRowInto(
+            new Float64Array(ground.count),
+            0,
+            ground,
+            x,
+            boundaryAt(boundary, x),
+            above,
+            response,
+          );
+          const got = row.reduce((sum, entry, j) => sum + entry * density[j], 0);
+          // The hill's corners lie inside panels; panels are straight, so a sensor may stand lower over them than over it.
+          absoluteClose(got / size, want / size, 1e-11, "ε times the distance in half panels, 30");
+        }
+      }
+    },
+  );
+});
+
+describe("on a boundary that rises and falls, level 0", () => {
+  const hillAt = (x: number): number => 8 * Math.exp(-((x / 20) ** 2));
+  const hill = {x: evenly(-100, 100, 401), y: evenly(-100, 100, 401).map(hillAt)};
+  const smooth = (x: number): number => Math.exp(-((x / 30) ** 2)) * (1 + 0.3 * Math.sin(x / 9));
+  const read = (ground: Panels, x: number, above: number): number =>
+    levelRowInto(new Float64Array(ground.count), 0, ground, x, boundaryAt(hill, x), above, VERTICAL).reduce(
+      (sum, entry, j) => sum + entry * smooth(ground.centre[j]),
+      0,
+    );
+  const [ground, fine] = [1, 0.125].map((width) => panelsOn([{from: -90, to: 90}], width, hill));
+
+  test("is the limit from above everywhere, at edges of panels too, and not the density", () => {
+    let farthest = 0;
+    for (let x = -60; x <= 60; x += 0.5) {
+      // Over eight times finer panels, from three heights well above their corners, by the parabola through them.
+      const want = 3 * read(fine, x, 0.25) - 3 * read(fine, x, 0.5) + read(fine, x, 0.75);
+      const on = read(ground, x, 0);
+      absoluteClose(
+        on,
+        want,
+        0.008,
+        "what a bend of 0.04 a metre adds over a straight panel, f κ w/2π = 0.0068, and some",
+      );
+      farthest = Math.max(farthest, Math.abs(on - smooth(x)));
+    }
+    expect(farthest).toBeGreaterThan(0.1);
+  });
+
+  test("on flat ground is the density between panel centres, as without a broken line", () => {
+    const level = panelsOn(parts, 3, {x: Float64Array.of(-30, 20, 90), y: Float64Array.of(0, 0, 0)});
+    for (const x of [-20, -18.5, -17, 1, 39, 40, 52])
+      absoluteClose(field(level, density, x, 0), field(panels, density, x, 0), 1e-12, "other panels add nothing");
   });
 });

@@ -1,9 +1,16 @@
 /** The solver of intervals for stations, support and noise given as numbers; the walk of lib/study without a survey. */
+import type {BoundaryLine} from "../../lib/geometry/boundary-line.ts";
 import type {Support} from "../../lib/geometry/interval.ts";
 import {type IntervalSolver, intervalSolver} from "../../lib/inverse/intervals.ts";
 import {continuumOf} from "../../lib/operators/continuum.ts";
+import {type Functional, fieldAt} from "../../lib/operators/functional.ts";
+import {type Readings, readingsOf, verticalReadings} from "../../lib/operators/readings.ts";
 import {regionalBasis} from "../../lib/operators/regional.ts";
 import {whitenData} from "../../lib/operators/whitened.ts";
+import type {Response} from "../../lib/potential/kernel.ts";
+
+/** The downward component. */
+export const VERTICAL: Response = {re: 1, im: 0, order: 0};
 
 export interface IntervalCase {
   readonly x: Float64Array;
@@ -15,13 +22,25 @@ export interface IntervalCase {
   readonly confidence?: number;
   readonly values?: Float64Array;
   readonly layout?: "by size" | "whole" | "windows";
+  /** What was read, where it is not the downward component at (x, z). */
+  readonly readings?: Readings;
+  readonly boundary?: BoundaryLine;
 }
 
 export function intervalsOf(given: IntervalCase): IntervalSolver {
   const {x, z, support, noise, bound, degree = 1, confidence = 0.95, layout = "by size"} = given;
-  const continuum = continuumOf(x, z, support, noise);
-  const basis = regionalBasis(continuum.x, degree);
-  const values = given.values ?? new Float64Array(x.length);
-  const readings = Float64Array.from(continuum.order, (i) => values[i]);
-  return intervalSolver(continuum, basis, whitenData(readings, noise, basis), bound, confidence, layout);
+  const continuum = continuumOf(given.readings ?? verticalReadings(x, z, noise), support, given.boundary);
+  const basis = regionalBasis(continuum, degree);
+  const values = given.values ?? new Float64Array(continuum.count);
+  const readings = Float64Array.from(continuum.place, (i) => values[i]);
+  return intervalSolver(continuum, basis, whitenData(readings, continuum, basis), bound, confidence, layout);
 }
+
+/** What a sensor would read at a point above a flat boundary, or another. */
+export const readAt = (
+  x: number,
+  z: number,
+  support: Support,
+  response: Response = VERTICAL,
+  boundary?: BoundaryLine,
+): Functional => fieldAt(x, z, response, continuumOf(readingsOf([]), support, boundary));

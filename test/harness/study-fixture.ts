@@ -13,6 +13,7 @@ import {doubt, type Notice, remark} from "../../lib/notice.ts";
 import {seededRandom} from "../../lib/numeric/random.ts";
 import {panelsOn} from "../../lib/operators/panels.ts";
 import {fieldVertical} from "../../lib/potential/field-vertical.ts";
+import {BOUNDARY_FIELD} from "../../lib/potential/level-quantity.ts";
 import type {Observable} from "../../lib/potential/observable.ts";
 import type {RunFrame} from "../../lib/products/product.ts";
 import type {LineOutcome, LineStudy, RowBand, RowOutcome} from "../../lib/study/outcome.ts";
@@ -171,6 +172,8 @@ export function lineStudy(options: FixtureOptions = {}): LineStudy {
     const width = chainage.map((_, i) => 0.055 * strength * Math.exp(-above[i]! / 3));
     return {
       setting,
+      quantity: BOUNDARY_FIELD.name,
+      dimension: BOUNDARY_FIELD.dimension(observable.source),
       height: above,
       value,
       lower: value.map((v, i) => v - width[i]!),
@@ -197,16 +200,26 @@ export function lineStudy(options: FixtureOptions = {}): LineStudy {
       line,
       height,
       groundHeight: ground.map((z) => z - boundary),
+      boundaryLine: undefined,
       boundary: "flat, at elevation 40 m",
-      values,
-      noise,
-      noiseFrom: "given",
+      channels: [
+        {channel: line.channels[0], response: observable.response(undefined), z: height, noise, noiseFrom: "given"},
+      ],
+      direction: undefined,
       notices: [],
     },
     panels,
     curve: diagonalCurve(multiplier, misfit, norm),
     choice,
-    estimate: {density, field, regional, residual, misfit, norm, degreesOfFreedom: 31.4, modes: 88},
+    estimate: {
+      density,
+      channels: [{field, regional, residual}],
+      readings: count,
+      misfit,
+      norm,
+      degreesOfFreedom: 31.4,
+      modes: 88,
+    },
     resolution: {length: 5.1, local: over},
     averages: {
       value: average,
@@ -269,7 +282,14 @@ export function surveyFixture(options: Partial<Survey> = {}): Survey {
 }
 
 export function frameFixture(options: Partial<RunFrame> = {}): RunFrame {
-  return {survey: surveyFixture(), observable: fieldVertical, levels: LEVELS, confidence: 0.95, ...options};
+  return {
+    survey: surveyFixture(),
+    observable: fieldVertical,
+    levels: LEVELS,
+    quantity: BOUNDARY_FIELD,
+    confidence: 0.95,
+    ...options,
+  };
 }
 
 export function settingsFixture(options: Partial<Settings> = {}): Settings {
@@ -291,6 +311,7 @@ export function settingsFixture(options: Partial<Settings> = {}): Settings {
       channels: [{role: "value", observable: "field-vertical", unit: "nT", noise: 0.4}],
       profiles: "rows",
     },
+    fieldDirection: undefined,
     model: {
       boundary: {kind: "elevation", elevation: 40},
       support: [{from: -30, to: 250, group: undefined}],
@@ -304,7 +325,7 @@ export function settingsFixture(options: Partial<Settings> = {}): Settings {
         throw new Error("a product must not choose a bound");
       },
     },
-    wanted: {levels: LEVELS, strips: STRIPS, confidence: 0.95},
+    wanted: {levels: LEVELS, levelQuantity: BOUNDARY_FIELD, strips: STRIPS, confidence: 0.95},
     processing: "daily variation removed by base station; heading corrected",
     ...options,
   };

@@ -4,6 +4,7 @@ import type {Strip} from "../../lib/inverse/nouns.ts";
 import {discrepancy} from "../../lib/inverse/rules/discrepancy.ts";
 import {normalDeviates, seededRandom} from "../../lib/numeric/random.ts";
 import {gravity} from "../../lib/potential/gravity.ts";
+import {BOUNDARY_FIELD, type LevelQuantity} from "../../lib/potential/level-quantity.ts";
 import type {Observable} from "../../lib/potential/observable.ts";
 import type {Settings} from "../../lib/study/settings.ts";
 import type {SurveyLine} from "../../lib/survey/line.ts";
@@ -69,6 +70,9 @@ export interface PlainSettings {
   readonly levels?: readonly LevelSetting[];
   readonly strips?: readonly Strip[];
   readonly confidence?: number;
+  readonly levelQuantity?: LevelQuantity;
+  readonly fieldDirection?: Settings["fieldDirection"];
+  readonly boundary?: Settings["model"]["boundary"];
 }
 
 export const plainSettings = (own: PlainSettings = {}): Settings => ({
@@ -86,11 +90,13 @@ export const plainSettings = (own: PlainSettings = {}): Settings => ({
     channels: [],
     profiles: "rows",
   },
-  model: {boundary: undefined, support: own.support ?? [], panel: own.panel, regional: own.regional ?? 1},
+  fieldDirection: own.fieldDirection,
+  model: {boundary: own.boundary, support: own.support ?? [], panel: own.panel, regional: own.regional ?? 1},
   bound: own.bound ?? discrepancy,
   wanted: {
     levels: own.levels ?? [{kind: "above-boundary", height: 0}],
     strips: own.strips ?? [],
+    levelQuantity: own.levelQuantity ?? BOUNDARY_FIELD,
     confidence: own.confidence ?? 0.95,
   },
   processing: undefined,

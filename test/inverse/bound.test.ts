@@ -10,6 +10,7 @@ import {tradeoffCurve} from "../../lib/inverse/tradeoff.ts";
 import {normalDeviates, seededRandom} from "../../lib/numeric/random.ts";
 import {applyInto, forwardOperator} from "../../lib/operators/forward.ts";
 import {panelsOn} from "../../lib/operators/panels.ts";
+import {verticalReadings} from "../../lib/operators/readings.ts";
 import {projectOutInPlace, regionalBasis} from "../../lib/operators/regional.ts";
 import {whiten} from "../../lib/operators/whitened.ts";
 import type {Solver} from "../../lib/solvers/solver.ts";
@@ -23,14 +24,14 @@ const NOISE = 0.02;
 /** A bump on 100:140, where the support from `from` to 240 may miss it, seen from 10 m, plus a slope; stations 0 to 240 every 4 m. */
 function bumpLine({strength = 1, seed = 1, from = 0} = {}) {
   const x = evenly(0, 240, 61);
-  const heights = new Float64Array(61).fill(10);
-  const all = forwardOperator(x, heights, panelsOn([{from: 0, to: 240}], 2.5));
+  const readings = verticalReadings(x, new Float64Array(61).fill(10), NOISE);
+  const all = forwardOperator(readings, panelsOn([{from: 0, to: 240}], 2.5));
   const truth = all.panels.centre.map((t) => (t > 100 && t < 140 ? strength : 0));
   const clean = applyInto(new Float64Array(61), all, truth);
   const values = normalDeviates(seededRandom(seed), 61).map((e, i) => clean[i] + NOISE * e + 0.3 - 0.001 * x[i]);
-  const basis = regionalBasis(x, 1);
-  const operator = forwardOperator(x, heights, panelsOn([{from, to: 240}], 2.5));
-  return {operator, basis, values, solver: spectralSolver(whiten(operator, values, NOISE, basis), 2)};
+  const basis = regionalBasis(readings, 1);
+  const operator = forwardOperator(readings, panelsOn([{from, to: 240}], 2.5));
+  return {readings, operator, basis, values, solver: spectralSolver(whiten(operator, readings, values, basis), 2)};
 }
 
 const question = (solver: Solver, lines = 1) => ({solver, supportLength: 240, lines, largestNorm: solver.norm});
@@ -51,13 +52,13 @@ describe("the multiplier for a norm", () => {
 
   test("does so whatever the unit of the readings", () => {
     // Multipliers run from 1e-40 to 1e40 with the units; one near 1, whose logarithm is 0, is no special case.
-    const {operator, basis, values} = bumpLine();
+    const {readings, operator, basis, values} = bumpLine();
     for (const unit of [1e-14, 1e-9, 1e-5, 1, 1e7, 1e14]) {
       const scaled = spectralSolver(
         whiten(
           operator,
+          {...readings, noise: readings.noise.map((sigma) => sigma * unit)},
           values.map((v) => v * unit),
-          NOISE * unit,
           basis,
         ),
         2,
@@ -109,10 +110,10 @@ describe("a given bound", () => {
   });
 
   test("that is active is met, and stands as given", () => {
-    const {solver, operator, basis, values} = bumpLine();
+    const {solver, readings, operator, basis, values} = bumpLine();
     const choice = boundRuleNamed("norm:4", 1).choose(question(solver));
     expect([choice.active, choice.basis, choice.bound, choice.notices.length]).toEqual([true, "given-bound", 4, 0]);
-    const estimate = estimateSource(solver, choice, operator, basis, values);
+    const estimate = estimateSource(solver, choice, operator, readings, basis, values);
     const norm = Math.sqrt(estimate.density.reduce((sum, f, j) => sum + f * f * operator.panels.width[j], 0));
     absoluteClose(norm / 4, 1, 1e-9, "the promise");
     absoluteClose(estimate.norm / 4, 1, 1e-9, "the promise");
@@ -159,7 +160,7 @@ describe("the discrepancy rule", () => {
   });
 
   test("says when there is nothing but noise, and still assumes what could hide in it", () => {
-    const {solver, operator, basis, values} = bumpLine({strength: 0, seed: 3});
+    const {solver, readings, operator, basis, values} = bumpLine({strength: 0, seed: 3});
     expect(solver.misfit(Infinity)).toBeLessThan(misfitTarget(61));
     const choice = discrepancy.choose(question(solver));
     expect(choice.multiplier).toBe(Infinity);
@@ -167,7 +168,7 @@ describe("the discrepancy rule", () => {
     expect(choice.bound).toBeGreaterThan(0);
     // A source whose response just reaches the spread 2√(2N) of the noise has this norm along the strongest mode.
     absoluteClose(choice.bound / (2 * Math.sqrt((2 * Math.sqrt(122)) / solver.largest)), 1, 1e-14, "rounding");
-    const estimate = estimateSource(solver, choice, operator, basis, values);
+    const estimate = estimateSource(solver, choice, operator, readings, basis, values);
     expect(estimate.density.every((f) => f === 0)).toBe(true);
     expect(estimate.norm).toBe(0);
   });
@@ -184,9 +185,11 @@ describe("the discrepancy rule", () => {
 
 describe("the estimate", () => {
   test("splits the readings into field, regional and residual, and its misfit is theirs", () => {
-    const {solver, operator, basis, values} = bumpLine();
+    const {solver, readings, operator, basis, values} = bumpLine();
     const choice = discrepancy.choose(question(solver));
-    const {density, field, regional, residual, misfit, norm} = estimateSource(solver, choice, operator, basis, values);
+    const {density, channels, misfit, norm} = estimateSource(solver, choice, operator, readings, basis, values);
+    expect(channels.length).toBe(1);
+    const [{field, regional, residual}] = channels;
     let squares = 0;
     values.forEach((value, i) => {
       absoluteClose(field[i] + regional[i] + residual[i], value, 1e-14, "rounding");

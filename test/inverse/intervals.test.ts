@@ -6,16 +6,22 @@ import {foldedNormalQuantile} from "../../lib/numeric/normal.ts";
 import {gaussLegendre} from "../../lib/numeric/quadrature.ts";
 import {normalDeviates, seededRandom} from "../../lib/numeric/random.ts";
 import {forwardOperator} from "../../lib/operators/forward.ts";
-import {densityAt, type Functional, fieldAt, meanOver} from "../../lib/operators/functional.ts";
+import {densityAt, type Functional, meanOver} from "../../lib/operators/functional.ts";
 import {panelsOn} from "../../lib/operators/panels.ts";
+import {readingsOf, verticalReadings} from "../../lib/operators/readings.ts";
 import {regionalBasis} from "../../lib/operators/regional.ts";
 import {whiten} from "../../lib/operators/whitened.ts";
+import {amplitudeIm, amplitudeRe, kernelAt, type Response} from "../../lib/potential/kernel.ts";
 import {poissonKernel} from "../../lib/potential/poisson.ts";
 import {singularSystem} from "../../lib/spectral/singular-system.ts";
 import {absoluteClose} from "../harness/assert-close.ts";
-import {type IntervalCase, intervalsOf} from "../harness/interval-case.ts";
+import {type IntervalCase, intervalsOf, readAt, VERTICAL} from "../harness/interval-case.ts";
 import {referenceTable} from "../harness/reference-table.ts";
 import {evenly} from "../harness/synthetic-line.ts";
+
+const ALONG: Response = {re: 0, im: 1, order: 0};
+const GRADIENT: Response = {re: 0, im: -1, order: 1};
+const SLANTING: Response = {re: 0.7, im: 0.4, order: 0};
 
 /** Four Gauss nodes on every half metre: enough for heights of metres and strips from metre to metre. */
 function fineNodes(support: Support) {
@@ -94,7 +100,7 @@ describe("half-widths in the continuum", () => {
         bound: Number(row.bound),
         degree: Number(row.degree),
         confidence: Number(row.level),
-      }).interval(row.kind === "mean" ? meanOver({from: first, to: second}, support) : fieldAt(first, second, support));
+      }).interval(row.kind === "mean" ? meanOver({from: first, to: second}, support) : readAt(first, second, support));
       // `a` is found to half a per cent, of which the width, flat there, feels 1e-5; modes left out cost below 1e-4.
       // A strip that is hardly seen would have it beyond 400/M², where the search ends, and gains 4e-4 by it.
       const hardlySeen = row.first === "400";
@@ -147,7 +153,7 @@ describe("half-widths are what they say: cv(b/s)·s of their own weights", () =>
     const given: IntervalCase = {...line, support: parts, degree, layout};
     const asked = [
       [meanOver({from: 240, to: 300}, parts), meanAs(240, 300)],
-      [fieldAt(331, 4, parts), fieldAs(331, 4)],
+      [readAt(331, 4, parts), fieldAs(331, 4)],
       // Longer than two windows: a sum of pieces.
       [meanOver({from: 100, to: 500}, parts), meanAs(100, 500)],
     ] as const;
@@ -230,12 +236,54 @@ describe("coverage", () => {
     }
   });
 
+  test.each([
+    {name: "the field along the line, read down", asked: {re: 0, im: 1, order: 0}, read: [VERTICAL]},
+    {name: "the downward component, read along and as gradient", asked: VERTICAL, read: [ALONG, GRADIENT]},
+    {name: "a slanting gradient, read as a slanting field", asked: {re: 0.6, im: 0.5, order: 1}, read: [SLANTING]},
+  ] as const)("of a level is the stated 95 per cent for its worst source: $name", ({asked, read}) => {
+    const [x, z] = [evenly(0, 600, 41), new Float64Array(41).fill(20)];
+    const readings = readingsOf(
+      read.map((response) => ({x, z, response, noise: response.order === 0 ? 0.005 : 0.005 / 20})),
+    );
+    const {count, noise} = readings;
+    const given: IntervalCase = {...PLAIN, x: readings.x, z: readings.z, readings, degree: 1};
+    const point = readAt(310, 8, PLAIN.support, asked);
+    const [weights] = weightsOf(given, [point]);
+    const {at, weight} = fineNodes(PLAIN.support);
+    const kernel = ({re, im, order}: Response, s: number, drop: number): number =>
+      kernelAt(amplitudeRe({re, im, order}), amplitudeIm({re, im, order}), order, s, drop);
+    const q = at.map((t) => kernel(asked, t - 310, 8));
+    // r = q − Σ c_i p_i: the source M r/‖r‖ is wrong by all of the bias.
+    const responses = Array.from({length: count}, (_, i) =>
+      at.map((t) => kernelAt(readings.aRe[i], readings.aIm[i], readings.order[i], t - readings.x[i], readings.z[i])),
+    );
+    const rest = q.map((value, k) => value - responses.reduce((sum, p, i) => sum + weights[i] * p[k], 0));
+    const norm = Math.sqrt(rest.reduce((sum, r, k) => sum + r * r * weight[k], 0));
+    const f = rest.map((r, k) => (weight[k] * PLAIN.bound * r) / norm);
+    const clean = responses.map((p) => dot(p, f));
+    const truth = dot(q, f);
+    const {halfWidth} = intervalsOf(given).interval(point);
+    // The width is that of these weights: s and b by sums that know nothing of modes.
+    const deviation = Math.sqrt(weights.reduce((sum, c, i) => sum + (c * noise[i]) ** 2, 0));
+    const bias = PLAIN.bound * norm;
+    absoluteClose(halfWidth / (foldedNormalQuantile(bias / deviation, 0.95) * deviation), 1, 1e-6, "quadrature");
+    const random = seededRandom(12);
+    let inside = 0;
+    for (let draw = 0; draw < DRAWS; ++draw) {
+      let value = 0;
+      for (let i = 0; i < count; ++i) value += weights[i] * (clean[i] + noise[i] * random.normal());
+      if (Math.abs(value - truth) <= halfWidth) ++inside;
+    }
+    absoluteClose(inside / DRAWS, 0.95, ERROR, "three standard errors of 2,000 draws");
+  });
+
   test("would be far less if panels a quarter of the height wide stood for the continuum", () => {
     // What averages away inside a panel is bias too: about 0.55 of such intervals cover, as computed elsewhere.
     const {x, z, support, noise, bound} = PLAIN;
-    const operator = forwardOperator(x, z, panelsOn(support, 5));
+    const readingsAt = verticalReadings(x, z, noise);
+    const operator = forwardOperator(readingsAt, panelsOn(support, 5));
     const {panels} = operator;
-    const system = whiten(operator, new Float64Array(151), noise, regionalBasis(x, -1));
+    const system = whiten(operator, readingsAt, new Float64Array(151), regionalBasis(readingsAt, -1));
     const modes = singularSystem(system.matrix, 151, panels.count);
     const q = panels.centre.map(
       (_, j) =>
@@ -283,10 +331,10 @@ describe("on a long line, windows of stations", () => {
   const functionals = (support: Support): Functional[] => [
     meanOver({from: 400, to: 420}, support),
     meanOver({from: 380, to: 580}, support),
-    fieldAt(401, 1, support),
-    fieldAt(401, 5, support),
-    fieldAt(401, 10, support),
-    fieldAt(30, 5, support),
+    readAt(401, 1, support),
+    readAt(401, 5, support),
+    readAt(401, 10, support),
+    readAt(30, 5, support),
   ];
 
   test.each(setUps.flatMap(([name, support, x]) => [-1, 0, 1].map((degree) => ({name, support, x, degree}))))(
@@ -337,7 +385,7 @@ describe("on a long line, windows of stations", () => {
     const windows = intervalsOf({...given, layout: "windows"});
     const whole = intervalsOf({...given, layout: "whole"});
     for (const at of [0, 119, 121, 300, 450, 700, 900]) {
-      const field = fieldAt(at, 5, support);
+      const field = readAt(at, 5, support);
       expect(bySize.interval(field)).toEqual(windows.interval(field));
       const [one, other] = [windows.interval(field), whole.interval(field)];
       expect(Math.abs(one.value - other.value)).toBeLessThan(one.halfWidth);

@@ -5,6 +5,7 @@ import {totalLength} from "../../lib/geometry/interval.ts";
 import {normalDeviates, seededRandom} from "../../lib/numeric/random.ts";
 import {adjointInto, applyInto, forwardOperator} from "../../lib/operators/forward.ts";
 import {panelsOn} from "../../lib/operators/panels.ts";
+import {verticalReadings} from "../../lib/operators/readings.ts";
 import {projectOutInPlace, projectOutOfColumnsInPlace, regionalBasis} from "../../lib/operators/regional.ts";
 import {whiten, whitenData} from "../../lib/operators/whitened.ts";
 import {harmonicMeasure} from "../../lib/potential/poisson.ts";
@@ -58,7 +59,7 @@ describe("the forward operator", () => {
   test("passes ⟨Ax, y⟩ = ⟨x, Aᵀy⟩ on random unions of intervals", () => {
     fc.assert(
       fc.property(unions, stations, metres(2, 60), fc.integer(), (support, {x, z}, width, seed) => {
-        const operator = forwardOperator(x, z, panelsOn(support, width));
+        const operator = forwardOperator(verticalReadings(x, z, 1), panelsOn(support, width));
         const f = deviates(operator.panels.count, seed);
         const d = deviates(x.length, seed + 1);
         const field = applyInto(new Float64Array(x.length), operator, f);
@@ -83,15 +84,16 @@ describe("the forward operator", () => {
         fc.integer(),
         (support, width, degree, seed) => {
           const x = evenly(-100, 500, 40);
-          const operator = forwardOperator(x, new Float64Array(40).fill(15), panelsOn(support, width));
-          const basis = regionalBasis(x, degree);
-          const system = whiten(operator, deviates(40, seed), 0.3, basis);
+          const readings = verticalReadings(x, new Float64Array(40).fill(15), 0.3);
+          const operator = forwardOperator(readings, panelsOn(support, width));
+          const basis = regionalBasis(readings, degree);
+          const system = whiten(operator, readings, deviates(40, seed), basis);
           const f = deviates(operator.panels.count, seed + 2);
           const d = deviates(40, seed + 3);
           const weighted = f.map((value, j) => value * system.rootWidth[j]);
           // (QA/σ√w)(√w f) = Q(Af)/σ, and its transpose on y is Aᵀ(Qy)/(σ√w).
           const field = applyInto(new Float64Array(40), operator, f);
-          const whitened = whitenData(field, 0.3, basis);
+          const whitened = whitenData(field, readings, basis);
           const back = adjointInto(new Float64Array(f.length), operator, projectOutInPlace(d.slice(), basis));
           let forward = 0;
           for (let i = 0; i < 40; ++i) {
@@ -114,7 +116,7 @@ describe("the forward operator", () => {
   test("sees a constant density on the support as its harmonic measure", () => {
     fc.assert(
       fc.property(unions, stations, metres(2, 60), (support, {x, z}, width) => {
-        const operator = forwardOperator(x, z, panelsOn(support, width));
+        const operator = forwardOperator(verticalReadings(x, z, 1), panelsOn(support, width));
         const ones = new Float64Array(operator.panels.count).fill(1);
         applyInto(new Float64Array(x.length), operator, ones).forEach((field, i) => {
           const want = support.reduce((sum, {from, to}) => sum + harmonicMeasure(x[i], z[i], from, to), 0);
@@ -127,7 +129,10 @@ describe("the forward operator", () => {
 
   test("refuses a station on the boundary", () => {
     expect(() =>
-      forwardOperator(Float64Array.of(0, 5), Float64Array.of(3, 0), panelsOn([{from: 0, to: 1}], 1)),
+      forwardOperator(
+        verticalReadings(Float64Array.of(0, 5), Float64Array.of(3, 0), 1),
+        panelsOn([{from: 0, to: 1}], 1),
+      ),
     ).toThrow(expect.objectContaining({code: "potential/station-below-boundary"}));
   });
 });
@@ -139,11 +144,12 @@ describe("whitening", () => {
       {from: 40, to: 50},
     ];
     const x = evenly(-30, 60, 19);
-    const operator = forwardOperator(x, new Float64Array(19).fill(7), panelsOn(support, 4));
+    const noise = 0.02;
+    const readings = verticalReadings(x, new Float64Array(19).fill(7), noise);
+    const operator = forwardOperator(readings, panelsOn(support, 4));
     const {panels} = operator;
     const values = deviates(19, 3);
-    const noise = 0.02;
-    const system = whiten(operator, values, noise, regionalBasis(x, -1));
+    const system = whiten(operator, readings, values, regionalBasis(readings, -1));
     const f = deviates(panels.count, 4);
     let norm = 0;
     let inL2 = 0;
@@ -165,11 +171,14 @@ describe("whitening", () => {
   });
 });
 
+/** One channel read at these chainages. */
+const channelAt = (x: Float64Array) => verticalReadings(x, new Float64Array(x.length).fill(1), 1);
+
 describe("the regional", () => {
   const uneven = Float64Array.from({length: 57}, (_, i) => 5_000 + 9 * i + 3 * Math.sin(i));
 
   test.each([0, 1, 2, 3])("of degree %d is orthonormal and spans the polynomials", (degree) => {
-    const basis = regionalBasis(uneven, degree);
+    const basis = regionalBasis(channelAt(uneven), degree);
     expect(basis.terms).toBe(degree + 1);
     const row = (k: number) => basis.rows.subarray(k * basis.count, (k + 1) * basis.count);
     for (let k = 0; k <= degree; ++k)
@@ -188,7 +197,7 @@ describe("the regional", () => {
   });
 
   test("is projected out once for all: twice changes nothing", () => {
-    const basis = regionalBasis(uneven, 2);
+    const basis = regionalBasis(channelAt(uneven), 2);
     const once = projectOutInPlace(deviates(57, 8), basis);
     const twice = projectOutInPlace(once.slice(), basis);
     twice.forEach((value, i) => {
@@ -199,7 +208,7 @@ describe("the regional", () => {
   });
 
   test("leaves every column of a matrix as it leaves a vector", () => {
-    const basis = regionalBasis(uneven, 2);
+    const basis = regionalBasis(channelAt(uneven), 2);
     const matrix = deviates(57 * 3, 9);
     const columns = [0, 1, 2].map((j) =>
       projectOutInPlace(
@@ -213,9 +222,9 @@ describe("the regional", () => {
   });
 
   test("keeps no more terms than the stations can tell apart, and none for degree −1", () => {
-    expect(regionalBasis(uneven, -1).terms).toBe(0);
-    expect(regionalBasis(Float64Array.of(3, 3, 3), 1).terms).toBe(1);
-    expect(regionalBasis(Float64Array.of(3, 8, 3, 8), 3).terms).toBe(2);
-    expect(regionalBasis(Float64Array.of(7), 2).terms).toBe(1);
+    expect(regionalBasis(channelAt(uneven), -1).terms).toBe(0);
+    expect(regionalBasis(channelAt(Float64Array.of(3, 3, 3)), 1).terms).toBe(1);
+    expect(regionalBasis(channelAt(Float64Array.of(3, 8, 3, 8)), 3).terms).toBe(2);
+    expect(regionalBasis(channelAt(Float64Array.of(7)), 2).terms).toBe(1);
   });
 });

@@ -87,9 +87,11 @@ test.each([
   absoluteClose(estimate.misfit / theirs.misfit, 1, 1e-9, because);
   absoluteClose(estimate.norm / theirs.norm, 1, 1e-9, because);
   const size = values.reduce((most, v) => Math.max(most, Math.abs(v)), 0);
-  estimate.regional.forEach((value, i) => {
+  expect(estimate.channels.length).toBe(1);
+  const [explained] = estimate.channels;
+  explained.regional.forEach((value, i) => {
     const [regional, field] = [theirs.regional[i], theirs.field[i]];
-    absoluteClose((value + estimate.field[i]) / size, (regional + field) / size, 1e-9, because);
+    absoluteClose((value + explained.field[i]) / size, (regional + field) / size, 1e-9, because);
     // A source that looks like a regional is such a mode as is left out below: the split moves by little of the noise.
     absoluteClose(value / noise, regional / noise, 1e-3, "modes left out, see below; 5e-5 measured");
   });

@@ -6,9 +6,9 @@ import {readFileSync} from "node:fs";
 import {describe, expect, test} from "vitest";
 import type {Support} from "../../lib/geometry/interval.ts";
 import {seededRandom} from "../../lib/numeric/random.ts";
-import {fieldAt, meanOver} from "../../lib/operators/functional.ts";
+import {meanOver} from "../../lib/operators/functional.ts";
 import {absoluteClose} from "../harness/assert-close.ts";
-import {intervalsOf} from "../harness/interval-case.ts";
+import {intervalsOf, readAt} from "../harness/interval-case.ts";
 import {runPython} from "../harness/python.ts";
 
 const REFERENCE = readFileSync(new URL("../reference/strip-intervals.py", import.meta.url), "utf8").replace(
@@ -65,7 +65,7 @@ interface SetUp {
 function ours(q: SetUp, layout: "whole" | "windows"): number {
   const support: Support = q.parts.map(([from, to]) => ({from, to}));
   const functional =
-    q.kind === "mean" ? meanOver({from: q.first, to: q.second}, support) : fieldAt(q.first, q.second, support);
+    q.kind === "mean" ? meanOver({from: q.first, to: q.second}, support) : readAt(q.first, q.second, support);
   const {x, z, noise, bound, degree, level} = q;
   return intervalsOf({
     x: Float64Array.from(x),

@@ -8,6 +8,7 @@ import {describe, expect, test} from "vitest";
 import {gaussLegendre} from "../../lib/numeric/quadrature.ts";
 import {applyInto, forwardOperator} from "../../lib/operators/forward.ts";
 import {panelsOn} from "../../lib/operators/panels.ts";
+import {verticalReadings} from "../../lib/operators/readings.ts";
 import {OBSERVABLES, observableNamed} from "../../lib/potential/catalogue.ts";
 import {fieldVertical} from "../../lib/potential/field-vertical.ts";
 import {gravity} from "../../lib/potential/gravity.ts";
@@ -20,7 +21,8 @@ const NANOTESLA = 1e-9;
 
 /** Gravity, m/s², at x of a layer of surface density σ from a to b, z below: seen by the operator. */
 function layer(sigma: number, a: number, b: number, z: number, x: number): number {
-  const operator = forwardOperator(Float64Array.of(x), Float64Array.of(z), panelsOn([{from: a, to: b}], (b - a) / 7));
+  const seen = verticalReadings(Float64Array.of(x), Float64Array.of(z), 1);
+  const operator = forwardOperator(seen, panelsOn([{from: a, to: b}], (b - a) / 7));
   const density = new Float64Array(operator.panels.count).fill(sigma / GRAVITY_LAYER.densityPerField);
   return applyInto(new Float64Array(1), operator, density)[0];
 }
@@ -139,7 +141,7 @@ test.each([
   [50, 164.0509362],
 ])("vertical dyke 40 m wide, top 50 m down, 2 A/m, vertical field: %d m off its middle", (x, want) => {
   const panels = panelsOn([{from: -20, to: 20}], 4);
-  const operator = forwardOperator(Float64Array.of(x), Float64Array.of(50), panels);
+  const operator = forwardOperator(verticalReadings(Float64Array.of(x), Float64Array.of(50), 1), panels);
   const density = new Float64Array(panels.count).fill(2 / MAGNETIC_LAYER.densityPerField);
   const field = applyInto(new Float64Array(1), operator, density)[0];
   // The figure took μ0 of CODATA 2022 to ten digits.

@@ -4,6 +4,7 @@ import {describe, expect, test} from "vitest";
 import {normalDeviates, seededRandom} from "../../lib/numeric/random.ts";
 import {forwardOperator} from "../../lib/operators/forward.ts";
 import {panelsOn} from "../../lib/operators/panels.ts";
+import {verticalReadings} from "../../lib/operators/readings.ts";
 import {regionalBasis} from "../../lib/operators/regional.ts";
 import {type WhitenedSystem, whiten} from "../../lib/operators/whitened.ts";
 import {spectralSolver} from "../../lib/solvers/spectral.ts";
@@ -24,7 +25,8 @@ function system(stations: number, width: number, degree: number, seed: number): 
     width,
   );
   const values = normalDeviates(seededRandom(seed), stations).map((e, i) => 0.05 * e + Math.cos(x[i] / 60));
-  return whiten(forwardOperator(x, z, panels), values, 0.05, regionalBasis(x, degree));
+  const readings = verticalReadings(x, z, 0.05);
+  return whiten(forwardOperator(readings, panels), readings, values, regionalBasis(readings, degree));
 }
 
 /** (BᵀB + α)⁻¹ Bᵀd with its misfit and norm, by a dense LU of ml-matrix. */

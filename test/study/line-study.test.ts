@@ -40,7 +40,7 @@ function answers(study: LineStudy, mirrored = false): number[] {
     ...[averages.value, averages.lower, averages.upper].flatMap(turned),
     ...study.levels.flatMap(({value, lower, upper}) => [...value, ...lower, ...upper]),
     ...study.strips.flatMap(({mean, lower, upper, plainMean}) => [mean, lower, upper, plainMean]),
-    ...estimate.residual,
+    ...estimate.channels.flatMap(({residual}) => [...residual]),
   ];
 }
 

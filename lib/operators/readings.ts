@@ -1,0 +1,72 @@
+/** What was read, as the operator sees it: one entry a reading, channel after channel. */
+import {amplitudeIm, amplitudeRe, type Response} from "../potential/kernel.ts";
+
+export interface Readings {
+  readonly count: number;
+  /** Chainage, m. */
+  readonly x: Float64Array;
+  /** Height above the datum that the boundary's heights count from (a flat boundary itself), m. */
+  readonly z: Float64Array;
+  /** κ(t) = Re[(aRe + i aIm)(ζ − w)^−(order + 1)]; see `potential/kernel.ts`. */
+  readonly aRe: Float64Array;
+  readonly aIm: Float64Array;
+  readonly order: Uint8Array;
+  /** Standard deviation of the noise, SI. */
+  readonly noise: Float64Array;
+  /** Place of the channel in the line. */
+  readonly channel: Uint8Array;
+}
+
+/** One channel's part. */
+export interface ChannelReadings {
+  readonly x: Float64Array;
+  readonly z: Float64Array;
+  readonly response: Response;
+  readonly noise: number;
+}
+
+export function readingsOf(channels: readonly ChannelReadings[]): Readings {
+  const count = channels.reduce((sum, {x}) => sum + x.length, 0);
+  const readings = {
+    count,
+    x: new Float64Array(count),
+    z: new Float64Array(count),
+    aRe: new Float64Array(count),
+    aIm: new Float64Array(count),
+    order: new Uint8Array(count),
+    noise: new Float64Array(count),
+    channel: new Uint8Array(count),
+  };
+  let at = 0;
+  channels.forEach(({x, z, response, noise}, channel) => {
+    const end = at + x.length;
+    readings.x.set(x, at);
+    readings.z.set(z, at);
+    readings.aRe.fill(amplitudeRe(response), at, end);
+    readings.aIm.fill(amplitudeIm(response), at, end);
+    readings.order.fill(response.order, at, end);
+    readings.noise.fill(noise, at, end);
+    readings.channel.fill(channel, at, end);
+    at = end;
+  });
+  return readings;
+}
+
+/** One channel of the downward component. */
+export const verticalReadings = (x: Float64Array, z: Float64Array, noise: number): Readings =>
+  readingsOf([{x, z, response: {re: 1, im: 0, order: 0}, noise}]);
+
+/** The readings in another order, or some of them. */
+export function pick(readings: Readings, order: Int32Array): Readings {
+  const of = (values: Float64Array): Float64Array => Float64Array.from(order, (i) => values[i]);
+  return {
+    count: order.length,
+    x: of(readings.x),
+    z: of(readings.z),
+    aRe: of(readings.aRe),
+    aIm: of(readings.aIm),
+    order: Uint8Array.from(order, (i) => readings.order[i]),
+    noise: of(readings.noise),
+    channel: Uint8Array.from(order, (i) => readings.channel[i]),
+  };
+}
