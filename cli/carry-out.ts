@@ -1,14 +1,13 @@
 /** The walk over the outcomes of a run: each goes to every product, to the result and to the doubts, and is forgotten. */
-import type {ReportableError} from "../lib/errors.ts";
+
 import type {IntervalBasis} from "../lib/inverse/nouns.ts";
+import {BOUNDARY_FIELD} from "../lib/potential/level-quantity.ts";
 import type {LineOutcome, RowOutcome} from "../lib/study/outcome.ts";
 import {type Doubts, doubtCollector} from "./doubts.ts";
+import {failureCollector} from "./failures.ts";
 import {progressOf} from "./progress.ts";
 import {type Counts, noOutcome, observableOf, type Run} from "./run.ts";
 import type {Work} from "./work.ts";
-
-/** Failures told in full to people; the ledger holds every one. */
-const FAILURES_TOLD = 10;
 
 export interface Summary {
   readonly counts: Counts;
@@ -28,11 +27,18 @@ export async function carryOut<Outcome extends LineOutcome | RowOutcome>(
   const doubts = doubtCollector();
   const bases = new Set<IntervalBasis>();
   const failed = new Set<number>();
-  const told: {readonly failure: ReportableError; readonly id: string}[] = [];
+  const failures = failureCollector(!form.json);
   const progress = progressOf(host, survey.lineCount, survey.grid?.orientation ?? "lines", form.json || form.quiet);
   doubts.add(survey.notices);
-  const {levels, confidence} = settings.wanted;
-  for (const product of products) await product.begin({survey, observable: observableOf(settings), levels, confidence});
+  const {levels, confidence, levelQuantity} = settings.wanted;
+  for (const product of products)
+    await product.begin({
+      survey,
+      observable: observableOf(settings),
+      levels,
+      quantity: levelQuantity ?? BOUNDARY_FIELD,
+      confidence,
+    });
   try {
     for await (const outcome of outcomes) {
       counts[outcome.status]++;
@@ -41,7 +47,7 @@ export async function carryOut<Outcome extends LineOutcome | RowOutcome>(
         bases.add(outcome.study.choice.basis);
       } else if (outcome.status === "failed") {
         failed.add(outcome.failure.exitStatus);
-        if (form.json || told.length < FAILURES_TOLD) told.push({failure: outcome.failure, id: outcome.id});
+        failures.add(outcome.failure, outcome.id);
       }
       result.add(outcome);
       for (const product of products) await product.take(outcome);
@@ -52,10 +58,11 @@ export async function carryOut<Outcome extends LineOutcome | RowOutcome>(
     progress.end();
   }
   for (const product of products) await product.end();
-  for (const {failure, id} of told) messages.error(failure, survey.lineCount > 1 ? id : undefined);
-  if (counts.failed > told.length)
-    messages.note(`${counts.failed - told.length} more failed; lines.csv names each with its reason.`);
+  const groups = failures.groups();
+  for (const {failure, count, firstLines} of groups)
+    messages.error(failure, survey.lineCount > 1 ? {count, firstLines} : undefined);
   const alike = counts.done + counts.doubtful === 0 && failed.size === 1;
+  if (!alike && groups.some(({count}) => count > 1)) messages.note("lines.csv names each line with its reason.");
   const status = alike ? [...failed][0]! : counts.failed > 0 ? 5 : 0;
   return {counts, status, keep: !alike, doubts, bases};
 }

@@ -51,10 +51,14 @@ export function doubtCollector(): Doubts {
   };
 }
 
+/** What stands before a message to say which lines it is about. */
+export function linesText({count, firstLines}: Pick<DoubtSummary, "count" | "firstLines">, noun = "line"): string {
+  if (count === 1) return `${noun} ${firstLines[0]} · `;
+  const more = count > firstLines.length ? ` and ${count - firstLines.length} more` : "";
+  return `${count} ${noun}s (${firstLines.join(", ")}${more}) · as on ${firstLines[0]}: `;
+}
+
 /** One kind of doubt for people. @param noun what it was raised on: `line`, `row` */
 export function doubtText({code, message, count, firstLines}: DoubtSummary, noun = "line"): string {
-  if (count === 0) return `${message} [${code}]`;
-  if (count === 1) return `${noun} ${firstLines[0]} · ${message} [${code}]`;
-  const more = count > firstLines.length ? ` and ${count - firstLines.length} more` : "";
-  return `${count} ${noun}s (${firstLines.join(", ")}${more}) · as on ${firstLines[0]}: ${message} [${code}]`;
+  return `${count === 0 ? "" : linesText({count, firstLines}, noun)}${message} [${code}]`;
 }

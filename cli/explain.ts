@@ -3,7 +3,7 @@ import type {Host} from "./nouns.ts";
 import {modelFrom} from "./options/assumed.ts";
 import {JOB_ENTRIES} from "./options/continue-options.ts";
 import {type Asked, allOf, type OptionEntry, oneOf} from "./options/entry.ts";
-import {acquisitionFrom} from "./options/measured.ts";
+import {acquisitionFrom, observableAsked} from "./options/measured.ts";
 import {settingsFrom} from "./options/settings.ts";
 import {wantedFrom} from "./options/wanted.ts";
 import {paragraph} from "./paragraph.ts";
@@ -35,7 +35,7 @@ export function explain(request: Request, host: Host): number {
 }
 
 function refuseBadSettings(asked: Asked): void {
-  if (oneOf(asked, "observable") !== undefined) settingsFrom(asked);
+  if (observableAsked(asked) !== undefined) settingsFrom(asked);
   else {
     // Without an observable the bound alone has no unit to be read in.
     acquisitionFrom(asked);

@@ -64,8 +64,8 @@ export function lineResult(observable: Observable, confidence: number): RunResul
       }
       const {study} = outcome;
       const {choice, estimate, conditioned, resolution} = study;
-      const expected = conditioned.values.length;
-      const noise = delivery.toReading(conditioned.noise);
+      const expected = estimate.readings;
+      const noise = delivery.toReading(conditioned.channels[0]!.noise);
       const norm = delivery.toNorm(estimate.norm);
       const bound = delivery.toNorm(choice.bound);
       const doubts = study.notices.filter(({weight}) => weight === "doubt");

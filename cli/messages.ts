@@ -1,5 +1,7 @@
 /** Errors for people and, with `--json`, for scripts; and what is said while the work goes on. */
 import {type Place, ReportableError} from "../lib/errors.ts";
+import {linesText} from "./doubts.ts";
+import type {FailureGroup} from "./failures.ts";
 import type {Host} from "./nouns.ts";
 import {paragraph} from "./paragraph.ts";
 import {printable} from "./printable.ts";
@@ -17,8 +19,8 @@ export interface Messages {
   note(text: string): void;
   /** A doubt; for people only, since with `--json` it stands in the result. */
   doubt(text: string): void;
-  /** @param subject what failed, when it is not the whole run */
-  error(error: ReportableError, subject?: string): void;
+  /** @param lines what failed, when it is not the whole run; scripts are told of the first */
+  error(error: ReportableError, lines?: Pick<FailureGroup, "count" | "firstLines">): void;
   /** Anything that is thrown and not reportable. */
   defect(error: unknown): void;
 }
@@ -34,7 +36,7 @@ export function messagesTo(host: Host, form: {readonly json: boolean; readonly q
     doubt: (text) => {
       if (!form.json && !form.quiet) say("doubt: ", text);
     },
-    error: ({code, message, place}, subject) => {
+    error: ({code, message, place}, lines) => {
       if (form.json)
         object({
           code,
@@ -42,12 +44,12 @@ export function messagesTo(host: Host, form: {readonly json: boolean; readonly q
           file: place?.file,
           row: place?.row,
           column: place?.column,
-          line: subject,
+          line: lines?.firstLines[0],
         });
       else
         say(
           "error: ",
-          `${place === undefined ? "" : `${placeText(place)} · `}${subject === undefined ? "" : `line ${printable(subject, 60)} · `}${message} [${code}]`,
+          `${place === undefined ? "" : `${placeText(place)} · `}${lines === undefined ? "" : linesText({...lines, firstLines: lines.firstLines.map((id) => printable(id, 60))})}${message} [${code}]`,
         );
     },
     defect: (error) => {

@@ -10,7 +10,13 @@ export interface RunIdentity {
 type Fields = Readonly<Record<string, unknown>>;
 
 /** Settings whose option is not simply their name with dashes. */
-const OPTION: Readonly<Record<string, string>> = {columns: "--column", levels: "--level", strips: "--strip"};
+const OPTION: Readonly<Record<string, string>> = {
+  columns: "--column",
+  levels: "--level",
+  levelQuantity: "--level-observable",
+  strips: "--strip",
+  fieldDirection: "--inclination, --declination or --date",
+};
 
 /** What a section of the settings is about. */
 const SECTION: Readonly<Record<string, string>> = {

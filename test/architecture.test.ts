@@ -113,9 +113,11 @@ function violations({path, text}: Source): string[] {
         (ts.isPropertyAssignment(parent) && parent.name === node) ||
         (ts.isPropertySignature(parent) && parent.name === node) ||
         ts.isJsxAttribute(parent);
-      // Date.UTC and Date.parse turn a calendar day into a number and ask no clock.
+      // Date.UTC, Date.parse and new Date(day) turn a calendar day into a number and ask no clock.
       const calendar =
-        node.text === "Date" && ts.isPropertyAccessExpression(parent) && /^(UTC|parse)$/.test(parent.name.text);
+        node.text === "Date" &&
+        ((ts.isPropertyAccessExpression(parent) && /^(UTC|parse)$/.test(parent.name.text)) ||
+          (ts.isNewExpression(parent) && (parent.arguments?.length ?? 0) > 0));
       if (!own && !calendar && OUTSIDE_WORLD.has(node.text)) found.push(`${path}: uses ${node.text}`);
       if (!own && node.text === "Math" && ts.isPropertyAccessExpression(parent) && parent.name.text === "random")
         found.push(`${path}: uses Math.random`);
@@ -196,7 +198,7 @@ describe("the checker itself finds", () => {
       `import type {Place} from "../errors.ts";`,
       `import {interval} from "../geometry/interval.ts";`,
       `import {own} from "./own.ts";`,
-      "const t = Date.UTC(2020, 1, 1);",
+      "const t = Date.UTC(2020, 1, 1); const d = new Date(t);",
       "const settings = {process: 1}; export const y = settings.process + Math.sqrt(2);",
     ].join("\n");
     expect(violations({path: "lib/study/a.ts", text})).toEqual([]);

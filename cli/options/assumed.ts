@@ -25,9 +25,9 @@ export const ASSUMED: OptionGroup = {
   entries: [
     {
       name: "boundary",
-      value: "Z|depth-D",
-      form: {number: ANY_NUMBER, pattern: `depth-${NUMBER_PATTERN}`},
-      help: "flat boundary with every source at or below it: at elevation Z metres, or D metres below the lowest ground under the line",
+      value: "Z|depth-D|ground-D",
+      form: {number: ANY_NUMBER, pattern: `(?:depth|ground)-${NUMBER_PATTERN}`},
+      help: "boundary with every source at or below it: flat at elevation Z metres, flat D metres below the lowest ground under the line, or following the ground D metres below it",
       default: {
         value: "the ground, taken as flat, where the sensor is known by clearance only; else it must be given",
         reason:
@@ -84,11 +84,13 @@ function boundaryFrom(text: string | undefined): BoundarySetting | undefined {
       kind: "depth",
       depth: numberFor("--boundary depth-", depth, DEPTH),
     };
+  const below = /^ground-(.*)$/.exec(text)?.[1];
+  if (below !== undefined) return {kind: "ground", depth: numberFor("--boundary ground-", below, DEPTH)};
   const elevation = numberIn(text);
   if (elevation === undefined)
     throw new InputError(
       "option/not-a-boundary",
-      `--boundary ${shown(text)} is not understood. Give an elevation in metres, for example --boundary -2000, or a depth below the lowest ground, for example --boundary depth-5.`,
+      `--boundary ${shown(text)} is not understood. Give an elevation in metres, for example --boundary -2000, a depth below the lowest ground, for example --boundary depth-5, or below the ground as it runs, for example --boundary ground-2.`,
     );
   return {kind: "elevation", elevation};
 }

@@ -6,11 +6,15 @@ import {type AcquisitionSettings, type ChannelSettings, ROLES} from "../../lib/a
 import {InputError} from "../../lib/errors.ts";
 import {OBSERVABLES, observableNamed} from "../../lib/potential/catalogue.ts";
 import {DELIVERY_UNIT, UNITS, unitFor} from "../../lib/quantities.ts";
+import type {FieldDirectionSetting} from "../../lib/survey/field-direction.ts";
 import {shown} from "../printable.ts";
 import {type Asked, allOf, type OptionGroup, oneOf} from "./entry.ts";
 import {isMapPath, type MapFiles, mapFileAt} from "./map-file.ts";
 import {ANY_NUMBER, type Need, NOT_NEGATIVE, numberFor, POSITIVE} from "./number.ts";
 
+const CHANNEL_PATTERN = "value(?:\\.\\d+)?=.+";
+const INCLINATION: Need = {...ANY_NUMBER, words: "degrees from -90 to 90", example: "65", least: -90, most: 90};
+const DECLINATION: Need = {...ANY_NUMBER, words: "degrees from -360 to 360", example: "3.5", least: -360, most: 360};
 const observables = OBSERVABLES.map(({name, summary}) => `${name}: ${summary}`).join("; ");
 const units = OBSERVABLES.map(
   ({name, dimension}) =>
@@ -141,20 +145,22 @@ export const MEASURED: OptionGroup = {
     {
       name: "observable",
       value: "KIND",
-      form: {words: OBSERVABLES.map(({name}) => name)},
-      help: `what the values are, as anomalies. ${observables}`,
+      repeated: true,
+      form: {words: OBSERVABLES.map(({name}) => name), pattern: CHANNEL_PATTERN},
+      help: `what the values are, as anomalies; value.2=KIND for a second channel, and so on. ${observables}`,
       required: "nothing in a file says reliably what its values are, and a wrong guess gives a wrong source",
     },
     {
       name: "unit",
       value: "U",
-      form: {words: UNITS.map(({symbol}) => symbol)},
+      repeated: true,
+      form: {words: UNITS.map(({symbol}) => symbol), pattern: CHANNEL_PATTERN},
       help: `unit of the values and of --noise. ${units}`,
       default: {
         value: "the first named for the observable",
         reason: "it is the unit in which answers are given",
         inForce: (asked) => {
-          const observable = OBSERVABLES.find(({name}) => name === oneOf(asked, "observable"));
+          const observable = OBSERVABLES.find(({name}) => name === observableAsked(asked));
           return observable && DELIVERY_UNIT[observable.dimension].symbol;
         },
       },
@@ -162,13 +168,34 @@ export const MEASURED: OptionGroup = {
     {
       name: "noise",
       value: "S|record",
-      form: {number: NOISE, words: ["record"]},
+      repeated: true,
+      form: {number: NOISE, words: ["record"], pattern: CHANNEL_PATTERN},
       help: "standard deviation of the noise; record: from fourth differences of the line itself, not possible for a grid",
       default: {
         value: "record for lines; a grid needs a number",
         reason:
           "fourth differences remove any cubic and leave white noise (a doubt is raised where it is not white); a grid is smooth by construction and shows none",
       },
+    },
+    {
+      name: "inclination",
+      value: "I",
+      form: {number: INCLINATION},
+      help: "of the Earth's field, degrees below the horizon, for observables that need its direction; with --declination",
+      default: {value: "none", reason: "only total-field kinds and the reduction to the pole need it"},
+    },
+    {
+      name: "declination",
+      value: "D",
+      form: {number: DECLINATION},
+      help: "of the Earth's field, degrees clockwise from true north",
+      default: {value: "none", reason: "as for the inclination"},
+    },
+    {
+      name: "date",
+      value: "YYYY-MM-DD",
+      help: "day of the survey: the direction of the field at the middle of each line by the World Magnetic Model, in place of --inclination and --declination",
+      default: {value: "none", reason: "a day cannot be guessed"},
     },
     {
       name: "processing",
@@ -190,7 +217,7 @@ function columnsFrom(asked: Asked): ReadonlyMap<string, string> {
         "option/not-a-pair",
         `--column ${shown(text)} is not ROLE=NAME. Give a role and the header of its column, for example --column value=residual.`,
       );
-    if (!(ROLES as readonly string[]).includes(role))
+    if (!(ROLES as readonly string[]).includes(role) && !/^(value|elevation|clearance)\.\d+$/.test(role))
       throw new InputError(
         "option/unknown-role",
         `--column ${shown(text)} names no role known here. Nearest is ${nearestName(role, ROLES)}; the roles are ${ROLES.join(", ")}.`,
@@ -224,21 +251,87 @@ function wordFor<W extends string>(
   return found;
 }
 
-/** The channel `value`; undefined where no observable was named. */
-function channelFrom(asked: Asked): ChannelSettings | undefined {
-  const observable = oneOf(asked, "observable");
-  const unit = oneOf(asked, "unit");
-  const text = oneOf(asked, "noise");
-  const noise = text === undefined || text === "record" ? text : numberFor("--noise", text, NOISE);
-  if (observable === undefined) return undefined;
-  if (observable.includes("="))
+/** What an option says of each channel: KIND alone is for `value`, `value.2=KIND` for another. */
+function byChannel(asked: Asked, name: string): ReadonlyMap<string, string> {
+  const found = new Map<string, string>();
+  for (const text of allOf(asked, name)) {
+    const [, role = "value", rest = text] = /^(value(?:\.\d+)?)=(.*)$/.exec(text) ?? [];
+    const earlier = found.get(role);
+    if (earlier !== undefined && earlier !== rest)
+      throw new InputError(
+        "option/given-twice",
+        `--${name} was given as "${earlier}" and as "${rest}" for ${role}, but takes one value a channel. Keep the one you mean.`,
+      );
+    found.set(role, rest);
+  }
+  return found;
+}
+
+/** The observable of the channel `value`, as it was asked. */
+export const observableAsked = (asked: Asked): string | undefined => byChannel(asked, "observable").get("value");
+
+/** Every channel, `value` first; none where no observable was named. */
+function channelsFrom(asked: Asked): readonly ChannelSettings[] {
+  const kinds = byChannel(asked, "observable");
+  const units = byChannel(asked, "unit");
+  const noises = byChannel(asked, "noise");
+  for (const [name, given] of [
+    ["unit", units],
+    ["noise", noises],
+  ] as const)
+    for (const role of given.keys())
+      if (role !== "value" && !kinds.has(role))
+        throw new InputError(
+          "option/no-channel",
+          `--${name} ${role}=${given.get(role)} belongs to a channel without an observable. Give --observable ${role}=KIND as well.`,
+        );
+  const noiseOf = (role: string): number | "record" | undefined => {
+    const text = noises.get(role);
+    return text === undefined || text === "record" ? text : numberFor("--noise", text, NOISE);
+  };
+  // Checked even where no observable was named.
+  noiseOf("value");
+  const roles = [...kinds.keys()].sort((a, b) => a.length - b.length || (a < b ? -1 : 1));
+  const channels = roles.map((role): ChannelSettings => {
+    const kind = observableNamed(kinds.get(role)!);
+    const unit = units.get(role);
+    if (unit !== undefined) unitFor(unit, kind.dimension);
+    return {role, observable: kind.name, unit, noise: noiseOf(role)};
+  });
+  const method = channels[0] && observableNamed(channels[0].observable).source.method;
+  for (const {role, observable} of channels)
+    if (observableNamed(observable).source.method !== method)
+      throw new InputError(
+        "option/two-methods",
+        `--observable ${role}=${observable} and the first channel measure different kinds of source. Gravity and magnetic readings take a run each.`,
+      );
+  return channels;
+}
+
+/** @throws {InputError} `option/direction`, `direction/date` is found when the field is asked for */
+export function fieldDirectionFrom(asked: Asked): FieldDirectionSetting | undefined {
+  const angle = (name: string, need: Need): number | undefined => {
+    const text = oneOf(asked, name);
+    return text === undefined ? undefined : numberFor(`--${name}`, text, need);
+  };
+  const inclination = angle("inclination", INCLINATION);
+  const declination = angle("declination", DECLINATION);
+  const date = oneOf(asked, "date");
+  if (date !== undefined) {
+    if (inclination !== undefined || declination !== undefined)
+      throw new InputError(
+        "option/direction",
+        "--date and --inclination or --declination both say the direction of the field. Keep the one you mean.",
+      );
+    return {kind: "date", date};
+  }
+  if (inclination === undefined && declination === undefined) return undefined;
+  if (inclination === undefined || declination === undefined)
     throw new InputError(
-      "option/one-channel",
-      `--observable ${shown(observable)} names a channel, but one channel of readings is used. Give the kind alone, for example --observable ${OBSERVABLES[0]!.name}.`,
+      "option/direction",
+      "--inclination and --declination belong together, and one is missing. Give both, or --date.",
     );
-  const kind = observableNamed(observable);
-  if (unit !== undefined) unitFor(unit, kind.dimension);
-  return {role: "value", observable, unit, noise};
+  return {kind: "angles", inclination, declination};
 }
 
 function profilesFrom(asked: Asked, maps: MapFiles | undefined): AcquisitionSettings["profiles"] {
@@ -257,7 +350,6 @@ export function acquisitionFrom(asked: Asked, maps?: MapFiles): AcquisitionSetti
     const text = oneOf(asked, name);
     return text === undefined ? undefined : numberFor(`--${name}`, text, need);
   };
-  const channel = channelFrom(asked);
   return {
     columns: columnsFrom(asked),
     clearance: number("clearance", NOT_NEGATIVE),
@@ -269,7 +361,7 @@ export function acquisitionFrom(asked: Asked, maps?: MapFiles): AcquisitionSetti
     crs: oneOf(asked, "crs"),
     outCrs: oneOf(asked, "out-crs"),
     split: wordFor(asked, "split", SPLITS),
-    channels: channel === undefined ? [] : [channel],
+    channels: channelsFrom(asked),
     profiles: profilesFrom(asked, maps),
     every: number("every", EVERY),
     sampling: wordFor(asked, "sampling", SAMPLING_NAMES),

@@ -5,7 +5,7 @@ import type {Settings} from "../../lib/study/settings.ts";
 import {boundFrom, modelFrom} from "./assumed.ts";
 import {type Asked, oneOf} from "./entry.ts";
 import type {MapFiles} from "./map-file.ts";
-import {acquisitionFrom} from "./measured.ts";
+import {acquisitionFrom, fieldDirectionFrom, observableAsked} from "./measured.ts";
 import {wantedFrom} from "./wanted.ts";
 
 /**
@@ -13,7 +13,7 @@ import {wantedFrom} from "./wanted.ts";
  * @throws {InputError} `option/missing` without an observable; `option/…`, `unit/…`, `observable/unknown`, `support/…`, `bound/…`
  */
 export function settingsFrom(asked: Asked, maps?: MapFiles): Settings {
-  const observable = oneOf(asked, "observable");
+  const observable = observableAsked(asked);
   if (observable === undefined)
     throw new InputError(
       "option/missing",
@@ -21,6 +21,7 @@ export function settingsFrom(asked: Asked, maps?: MapFiles): Settings {
     );
   return {
     acquisition: acquisitionFrom(asked, maps),
+    fieldDirection: fieldDirectionFrom(asked),
     model: modelFrom(asked, maps),
     bound: boundFrom(asked, observableNamed(observable)),
     wanted: wantedFrom(asked, maps),

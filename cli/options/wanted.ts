@@ -2,6 +2,7 @@
 import {type LevelSetting, levelLabel} from "../../lib/continuation/level-profile.ts";
 import {InputError} from "../../lib/errors.ts";
 import type {Strip} from "../../lib/inverse/nouns.ts";
+import {BOUNDARY_FIELD, LEVEL_QUANTITIES, levelQuantityNamed} from "../../lib/potential/level-quantity.ts";
 import {ALSO, type AlsoWord} from "../../lib/products/also.ts";
 import type {StripSetting, WantedSettings} from "../../lib/study/settings.ts";
 import {shown} from "../printable.ts";
@@ -34,6 +35,16 @@ export const WANTED: OptionGroup = {
       form: {number: LEVEL, pattern: `ground\\+${NUMBER_PATTERN}`},
       help: "field at L metres above the boundary, or D metres above the ground; 0 is the boundary itself",
       default: {value: DEFAULT_LEVEL, reason: "the boundary is where sources are told apart best"},
+    },
+    {
+      name: "level-observable",
+      value: "KIND",
+      form: {words: LEVEL_QUANTITIES.map(({name}) => name)},
+      help: `what is given on the levels. ${LEVEL_QUANTITIES.map(({name, summary}) => `${name}: ${summary}`).join("; ")}`,
+      default: {
+        value: BOUNDARY_FIELD.name,
+        reason: "it is what the source itself is given in, and has a value on the boundary",
+      },
     },
     {
       name: "strip",
@@ -128,6 +139,7 @@ export function wantedFrom(asked: Asked, maps?: MapFiles): WantedSettings {
   });
   const also = alsoFrom(asked);
   return {
+    levelQuantity: levelQuantityNamed(oneOf(asked, "level-observable") ?? BOUNDARY_FIELD.name),
     levels: levels.size === 0 ? [levelFrom(DEFAULT_LEVEL)] : [...levels.values()],
     strips,
     confidence: numberFor("--confidence", oneOf(asked, "confidence") ?? DEFAULT_CONFIDENCE, PROBABILITY),

@@ -14,7 +14,10 @@ export function askedColumns(
   channels: readonly ChannelPlan[],
 ): Map<string, number> {
   const file = head.name;
-  const roles: string[] = [...ROLES.filter((role) => role !== "value"), ...channels.map((channel) => channel.role)];
+  const roles: string[] = [
+    ...ROLES.filter((role) => role !== "value"),
+    ...channels.flatMap(({role}) => [role, ...ownHeights(role)]),
+  ];
   const asked = new Map<string, number>();
   for (const [role, name] of settings.columns) {
     if (!roles.includes(role)) {
@@ -22,7 +25,7 @@ export function askedColumns(
       const cure = role.startsWith("value.")
         ? `Say what it measures with --observable ${role}=KIND.`
         : second
-          ? "Channels whose sensor has a place of its own are not read; all sensors share one height."
+          ? `It belongs to a channel that was not asked for; give --observable value${role.slice(role.indexOf("."))}=KIND.`
           : `Did you mean ${nearestName(role, roles)}?`;
       throw new InputError(
         "column/unknown-role",
@@ -50,6 +53,12 @@ export function askedColumns(
     asked.set(role, index);
   }
   return asked;
+}
+
+/** Roles of the height of a channel's own sensor: none for the first, whose height is the stations'. */
+export function ownHeights(role: string): readonly string[] {
+  const number = role.slice("value".length);
+  return number === "" ? [] : [`elevation${number}`, `clearance${number}`];
 }
 
 /** A message stays a message, whatever stands in the header. */

@@ -69,6 +69,7 @@ export function assembleLine(
           observable: channel.observable,
           values: values.map((value) => value * channel.unit.factor),
           noise: channel.noise,
+          above: sensorAbove(run, channel.role),
         };
       }),
       file: run.file,
@@ -79,6 +80,18 @@ export function assembleLine(
       notices: notices.map((notice) => ({...notice, line: id})),
     },
   };
+}
+
+/** A second sensor over the first, where it has a height column of its own (`elevation.2`, `clearance.2`). */
+function sensorAbove(run: LineRun, role: string): Float64Array | undefined {
+  const number = role.slice("value".length);
+  if (number === "") return undefined;
+  for (const kind of ["elevation", "clearance"] as const) {
+    const own = run.columns.get(`${kind}${number}`);
+    const first = run.columns.get(kind);
+    if (own !== undefined && first !== undefined) return own.map((height, i) => height - first[i]!);
+  }
+  return undefined;
 }
 
 function chainageOf(run: LineRun, {group, coordinates}: Placing): Float64Array {

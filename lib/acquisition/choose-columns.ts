@@ -6,7 +6,7 @@ import {InputError} from "../errors.ts";
 import {type DecimalMark, parseCell} from "../formats/number-cell.ts";
 import {doubt, type Notice, remark} from "../notice.ts";
 import type {RoleChoice} from "../survey/survey.ts";
-import {askedColumns, listed} from "./asked-columns.ts";
+import {askedColumns, listed, ownHeights} from "./asked-columns.ts";
 import type {ChannelPlan} from "./channel-plan.ts";
 import {fieldName} from "./field-name.ts";
 import {fieldUnit, isOtherLength, ROLE_NAMES, type Role, VALUE_NAMES, WEAK_CHAINAGE} from "./header-names.ts";
@@ -102,7 +102,10 @@ export function chooseColumns(
   if (settings.split === "column" || (settings.split === undefined && has("line"))) take("line");
   if (settings.split === "auto" && has("time")) take("time");
   for (const role of ["elevation", "clearance", "ground"] as const) if (takesHeight(role)) take(role);
-  for (const channel of channels) takeValue(channel);
+  for (const channel of channels) {
+    takeValue(channel);
+    for (const role of ownHeights(channel.role)) takeOwnHeight(role);
+  }
   if (needed !== undefined)
     for (const role of needed)
       if (!choices.some((choice) => choice.role === role)) throw missing(role, "another file of the survey has one");
@@ -173,6 +176,21 @@ export function chooseColumns(
         ),
       );
     return false;
+  }
+
+  /** A column asked for or named as the role is spelt, where the stations have that kind of height in a column too. */
+  function takeOwnHeight(role: string): void {
+    const named = head.header.findIndex((name) => name.trim().toLowerCase() === role);
+    if (!asked.has(role) && named < 0) return;
+    const kind = role.slice(0, role.indexOf("."));
+    if (!choices.some((choice) => choice.role === kind))
+      throw new InputError(
+        "height/sensor-alone",
+        `${file}: ${role} says where a second sensor is, but the first has no column for ${kind}, so the distance between them is not known. Give --column ${kind}=NAME as well.`,
+        {place: {file, row: 1}},
+      );
+    if (!asked.has(role)) candidates.set(role, [named]);
+    take(role);
   }
 
   function takeValue(channel: ChannelPlan): void {

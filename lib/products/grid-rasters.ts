@@ -4,6 +4,7 @@
  */
 import {levelLabel} from "../continuation/level-profile.ts";
 import {type CogWriter, openCog} from "../formats/cog-write.ts";
+import {BOUNDARY_FIELD} from "../potential/level-quantity.ts";
 import {cautionSentence, ROW_BY_ROW} from "../report/cautions.ts";
 import {type Delivery, deliveryOf} from "../report/delivery.ts";
 import {levelWords} from "../report/level-words.ts";
@@ -16,6 +17,8 @@ import {type Transposition, transposition} from "./transposition.ts";
 
 interface Raster {
   readonly file: string;
+  /** Whether it is a level rather than the source. */
+  readonly level: boolean;
   readonly bandOf: (study: RowStudy) => RowBand;
   readonly writer: CogWriter;
   /** Between columns that come and rows that go; undefined where rows come. */
@@ -40,9 +43,10 @@ export function gridRasters(opening: Opening, place: GridPlace): RowProduct {
 
   /** Writes one row or column of every raster. */
   const put = async (study: RowStudy | undefined): Promise<void> => {
-    for (const {bandOf, writer, turned} of rasters) {
+    for (const {bandOf, writer, turned, level} of rasters) {
       const {value, halfWidth} = study === undefined ? nothing : bandOf(study);
-      const bands = [value.map(delivery.toField), halfWidth.map(delivery.toField)];
+      const delivered = level ? delivery.toLevel : delivery.toField;
+      const bands = [value.map(delivered), halfWidth.map(delivered)];
       if (turned === undefined) await writer.writeRows(bands, 1);
       else await turned.column(bands);
     }
@@ -57,7 +61,7 @@ export function gridRasters(opening: Opening, place: GridPlace): RowProduct {
       const {survey} = frame;
       if (survey.grid === undefined) throw new Error("rasters were asked for a survey that is no grid");
       grid = survey.grid;
-      delivery = deliveryOf(frame.observable);
+      delivery = deliveryOf(frame.observable, frame.quantity);
       const length = grid.orientation === "rows" ? grid.width : grid.height;
       const absent = new Float64Array(length).fill(Number.NaN);
       nothing = {value: absent, halfWidth: absent};
@@ -90,16 +94,23 @@ async function openRasters(
   const way = orientation === "rows" ? "row by row, two-dimensional" : "column by column, two-dimensional";
   const suffix = orientation === "rows" ? "rowwise" : "columnwise";
   const percent = percentText(frame.confidence).replace("\u202f", " ");
-  const one = async (file: string, what: string, bandOf: Raster["bandOf"]): Promise<Raster> => ({
+  const one = async (
+    file: string,
+    what: string,
+    level: boolean,
+    unit: string,
+    bandOf: Raster["bandOf"],
+  ): Promise<Raster> => ({
     file,
     bandOf,
+    level,
     writer: openCog(
       {
         width,
         height,
         bands: [
-          {description: `${what}, ${way}`, unit: delivery.field},
-          {description: `half-width of the ${percent} interval, ${way}`, unit: delivery.field},
+          {description: `${what}, ${way}`, unit},
+          {description: `half-width of the ${percent} interval, ${way}`, unit},
         ],
         georeference,
         nodataText,
@@ -109,12 +120,16 @@ async function openRasters(
     ),
     turned: orientation === "rows" ? undefined : transposition(width, height, 2, await openScratch()),
   });
-  const rasters = [await one(`source_${suffix}.tif`, "source on the boundary", (study) => study.source)];
+  const rasters = [
+    await one(`source_${suffix}.tif`, "source on the boundary", false, delivery.field, (study) => study.source),
+  ];
   for (const [k, level] of frame.levels.entries())
     rasters.push(
       await one(
         `level_${fileSafe(levelLabel(level))}_${suffix}.tif`,
-        `field ${levelWords(level).replace("\u2212", "-")}`,
+        `${frame.quantity === BOUNDARY_FIELD ? "field" : frame.quantity.name} ${levelWords(level).replace("\u2212", "-")}`,
+        true,
+        delivery.level,
         (study) => study.levels[k]!.band,
       ),
     );

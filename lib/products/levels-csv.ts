@@ -11,9 +11,9 @@ export function levelsCsv(sink: TextSink): LineProduct {
   const table: CsvTable = csvTable(sink);
   let delivery: Delivery;
   return {
-    begin: async ({observable}) => {
-      delivery = deliveryOf(observable);
-      const u = delivery.field;
+    begin: async ({observable, quantity}) => {
+      delivery = deliveryOf(observable, quantity);
+      const u = delivery.level;
       await table.row([
         "line",
         "row",
@@ -33,7 +33,7 @@ export function levelsCsv(sink: TextSink): LineProduct {
       const {line, levels, choice} = outcome.study;
       const {stations} = line;
       const id = csvCell(outcome.id);
-      const field = (si: number | undefined): string => csvNumber(delivery.toField(si!));
+      const field = (si: number | undefined): string => csvNumber(delivery.toLevel(si!));
       for (const level of levels)
         for (let i = 0; i < stations.count; ++i)
           await table.row([

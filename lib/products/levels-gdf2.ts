@@ -14,14 +14,14 @@ export async function levelsGdf2({openBytes, openScratch}: Opening): Promise<Lin
   let writer: Gdf2Writer;
   return {
     begin: async (frame) => {
-      delivery = deliveryOf(frame.observable);
+      delivery = deliveryOf(frame.observable, frame.quantity);
       writer = gdf2Writer(fieldsFor(frame, delivery), scratch);
     },
     line: async (outcome) => {
       if (!("study" in outcome)) return;
       const {line, levels, choice} = outcome.study;
       const {stations} = line;
-      const field = (si: number | undefined): number => delivery.toField(si!);
+      const field = (si: number | undefined): number => delivery.toLevel(si!);
       for (const level of levels)
         for (let i = 0; i < stations.count; ++i)
           await writer.row([

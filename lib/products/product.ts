@@ -3,6 +3,7 @@
  * Its bytes go to sinks that the caller opens, so that nothing here touches a disk.
  */
 import type {LevelSetting} from "../continuation/level-profile.ts";
+import type {LevelQuantity} from "../potential/level-quantity.ts";
 import type {Observable} from "../potential/observable.ts";
 import type {LineOutcome, RowOutcome} from "../study/outcome.ts";
 import type {Survey} from "../survey/survey.ts";
@@ -17,6 +18,8 @@ export interface RunFrame {
   readonly survey: Survey;
   readonly observable: Observable;
   readonly levels: readonly LevelSetting[];
+  /** What is given on them. */
+  readonly quantity: LevelQuantity;
   readonly confidence: number;
 }
 

@@ -2,6 +2,7 @@
  * record.json: all that repeats the run, in an order that never changes and without any clock time.
  * Settings stand as they are in force, lengths in metres and bounds as they were written.
  */
+import {BOUNDARY_FIELD} from "../potential/level-quantity.ts";
 import {cautionSentence, cautionsFor} from "../report/cautions.ts";
 import {INTERVAL_BASIS} from "../report/interval-basis.ts";
 import type {Settings, StripSetting, SupportSetting} from "../study/settings.ts";
@@ -37,9 +38,14 @@ export function recordJson(run: RecordInput): string {
     inputs: run.inputs.map(digest),
     settings: {
       acquisition: {...settings.acquisition, profiles: nameOf(settings.acquisition.profiles)},
+      fieldDirection: settings.fieldDirection,
       model: {...settings.model, support: settings.model.support.map(zoneText)},
       bound: settings.bound.text,
-      wanted: {...settings.wanted, strips: settings.wanted.strips.map(zoneText)},
+      wanted: {
+        ...settings.wanted,
+        levelQuantity: (settings.wanted.levelQuantity ?? BOUNDARY_FIELD).name,
+        strips: settings.wanted.strips.map(zoneText),
+      },
       processing: settings.processing,
     },
     survey: {

@@ -86,10 +86,10 @@ function take(page: Page, outcome: LineOutcome, index: number): void {
 
 /** The number of doubts; among equals, how far the misfit is from what the noise allows. */
 function gravityOf(outcome: Extract<LineOutcome, {status: "done" | "doubtful"}>): number {
-  const {notices, estimate, conditioned} = outcome.study;
+  const {notices, estimate} = outcome.study;
   const doubts = notices.filter((notice) => notice.weight === "doubt").length;
   if (doubts === 0) return 0;
-  const off = Math.abs(Math.log(estimate.misfit / conditioned.values.length));
+  const off = Math.abs(Math.log(estimate.misfit / estimate.readings));
   return doubts + (Number.isFinite(off) ? Math.min(0.9, off / 3) : 0.9);
 }
 

@@ -50,7 +50,7 @@ function grounds(study: LineStudy): string {
   const {choice, estimate, conditioned, observable, resolution} = study;
   const delivery = deliveryOf(observable);
   const basis = INTERVAL_BASIS[choice.basis];
-  const readings = conditioned.values.length;
+  const readings = estimate.readings;
   return `<div>${definitionList([
     ["Multiplier", figureText(delivery.toMultiplier(choice.multiplier))],
     ["Chosen by", `${nameText(choice.rule)}: ${messageText(choice.reason)}`],
@@ -60,8 +60,16 @@ function grounds(study: LineStudy): string {
     ],
     [
       "Noise",
-      `${figureText(delivery.toReading(conditioned.noise))} ${delivery.reading}, ${conditioned.noiseFrom === "given" ? "as given" : "from the record"}`,
+      `${figureText(delivery.toReading(conditioned.channels[0]!.noise))} ${delivery.reading}, ${conditioned.channels[0]!.noiseFrom === "given" ? "as given" : "from the record"}`,
     ],
+    ...(conditioned.direction === undefined
+      ? []
+      : [
+          [
+            "Earth's field along the line",
+            `effective inclination ${fixedText(conditioned.direction.inclination, 1)}°, β = ${fixedText(conditioned.direction.beta, 3)}`,
+          ] as const,
+        ]),
     ["Degrees of freedom", `${figureText(estimate.degreesOfFreedom)} used of ${countText(readings)}`],
     ["Resolution", `${metreText(resolution.length)} m`],
     ["Norm of the source", `${figureText(delivery.toNorm(estimate.norm))} ${delivery.field}·√m`],

@@ -38,7 +38,7 @@ export function lineRow(outcome: LineOutcome, index: number): LineRow {
       resolution: none,
     };
   }
-  const {line, panels, averages, estimate, conditioned, resolution, observable} = outcome.study;
+  const {line, panels, averages, estimate, resolution, observable} = outcome.study;
   const {toField} = deliveryOf(observable);
   let from = Number.POSITIVE_INFINITY;
   let to = Number.NEGATIVE_INFINITY;
@@ -65,7 +65,7 @@ export function lineRow(outcome: LineOutcome, index: number): LineRow {
             upper: toField(averages.upper[j]!),
             at: panels.centre[j]!,
           },
-    misfitRatio: estimate.misfit / conditioned.values.length,
+    misfitRatio: estimate.misfit / estimate.readings,
     resolution: resolution.length,
   };
 }

@@ -116,16 +116,42 @@ describe("continue over lines", () => {
     ]);
     expect(ledger[1]!["reason"]).toMatch(/boundary/);
     expect(flat(result.err)).toMatch(/error: lines\.csv:72 · line L2 · .*\[boundary\/station-below\]/);
+    expect(result.err).not.toMatch(/lines\.csv names/);
     expect(contents(out)).toEqual(LINE_FILES);
+  });
+
+  test("some failing alike: told once, with the way to the ledger", async () => {
+    const text = surveyText(["L1", "L2", "L3"]).replace("L1,100,30,", "L1,100,0,").replace("L3,200,30,", "L3,200,0,");
+    const survey = fileWith("lines.csv", text);
+    const result = await run(["continue", survey, ...SETTINGS, "--out", temporaryFolder()]);
+    expect(result.status).toBe(5);
+    expect(result.err.match(/boundary\/station-below/g)).toHaveLength(1);
+    expect(flat(result.err)).toMatch(/2 lines \(L1, L3\) · as on L1: .* lines\.csv names each line with its reason\./);
   });
 
   test("all failing alike: their own status, and no folder", async () => {
     const out = join(temporaryFolder(), "out");
-    const survey = fileWith("lines.csv", surveyText(["L1", "L2"]));
-    const result = await run(["continue", survey, ...SETTINGS, "--boundary", "5", "--elevation", "3", "--out", out]);
+    // Every line dips to the boundary at another station, so that place and figures differ.
+    const names = Array.from({length: 12}, (_, i) => `L${i + 1}`);
+    const dip = (text: string, name: string, i: number): string =>
+      text.replace(`${name},${100 + 10 * i},30,`, `${name},${100 + 10 * i},0,`);
+    const survey = fileWith("lines.csv", names.reduce(dip, surveyText(names)));
+    const result = await run(["continue", survey, ...SETTINGS, "--out", out]);
     expect(result.status).toBe(3);
     expect(result.out).toBe("");
     expect(contents(out)).toEqual([]);
+    // Told once, and of no ledger, since none is kept.
+    expect(result.err.match(/boundary\/station-below/g)).toHaveLength(1);
+    expect(flat(result.err)).toMatch(
+      /error: lines\.csv:12 · 12 lines \(L1, L2, L3, L4 and 8 more\) · as on L1: .*\[boundary\/station-below\]/,
+    );
+    expect(result.err).not.toMatch(/lines\.csv names/);
+    const scripts = await run(["continue", survey, ...SETTINGS, "--out", out, "--json"]);
+    const objects = scripts.err
+      .trimEnd()
+      .split("\n")
+      .map((line) => JSON.parse(line));
+    expect(objects.map(({line, row}) => [line, row])).toEqual(names.map((name, i) => [name, 12 + 61 * i]));
   });
 
   test("another run in the folder is refused with status 2 before any work, unless --replace", async () => {

@@ -33,7 +33,7 @@ describe("--explain", () => {
     const job = fileWith("survey.toml", JOB, folder);
     const settings = await explained("lines.csv", "--job", job, "--noise", "0.5", "--quiet");
     expect(settings.get("survey")).toMatchObject({value: ["lines.csv"], from: "option"});
-    expect(settings.get("noise")).toMatchObject({value: "0.5", from: "option"});
+    expect(settings.get("noise")).toMatchObject({value: ["0.5"], from: "option"});
     expect(settings.get("quiet")).toMatchObject({value: true, from: "option", default: false});
     expect(settings.get("level")).toMatchObject({value: ["0", "10"], from: "file", row: 4, default: "0"});
     expect(settings.get("replace")).toMatchObject({value: false, from: "file", row: 6});

@@ -182,10 +182,10 @@ describe("what is wrong in a job file is refused with file, row and column", () 
     },
     {
       name: "a list for one value",
-      rows: ["noise = [0.02]"],
+      rows: ["panel = [5]"],
       code: "job/wrong-type",
       row: 4,
-      says: /"noise" is a list/,
+      says: /"panel" is a list/,
     },
     {
       name: "a number for a text",

@@ -1,8 +1,10 @@
 /** Options to settings: what each accepts, and the message for what it refuses. */
+
 import {describe, expect, test} from "vitest";
 import type {Asked} from "../../cli/options/entry.ts";
 import {settingsFrom} from "../../cli/options/settings.ts";
 import {InputError} from "../../lib/errors.ts";
+import {BOUNDARY_FIELD} from "../../lib/potential/level-quantity.ts";
 
 /** `--name value` pairs after the observable that every run needs. */
 function asked(...pairs: readonly (readonly [string, string])[]): Asked {
@@ -40,7 +42,12 @@ describe("settings", () => {
     });
     expect(model).toEqual({boundary: undefined, support: [], panel: undefined, regional: 1});
     expect(bound.text).toBe("discrepancy");
-    expect(wanted).toEqual({levels: [{kind: "above-boundary", height: 0}], strips: [], confidence: 0.95});
+    expect(wanted).toEqual({
+      levelQuantity: BOUNDARY_FIELD,
+      levels: [{kind: "above-boundary", height: 0}],
+      strips: [],
+      confidence: 0.95,
+    });
     expect(processing).toBeUndefined();
   });
 
@@ -103,6 +110,7 @@ describe("settings", () => {
     });
     expect(bound.text).toBe("rms:0.5");
     expect(wanted).toEqual({
+      levelQuantity: BOUNDARY_FIELD,
       levels: [
         {kind: "above-boundary", height: 0},
         {kind: "above-ground", height: 10},
@@ -127,7 +135,7 @@ describe("settings", () => {
 
   test("the observable is never guessed", () => {
     expect(() => settingsFrom(new Map())).toThrow(
-      /--observable is missing.*gravity, field-vertical.*--observable gravity/,
+      /--observable is missing.*gravity, gravity-along.*field-vertical.*--observable gravity/,
     );
   });
 
@@ -151,7 +159,7 @@ describe("settings", () => {
     ["bound", "tight", /tight is not a bound known here.*rms:V, norm:V, discrepancy/],
     ["boundary", "deep", /--boundary "deep" is not understood.*-2000.*depth-5/],
     ["boundary", "depth--5", /--boundary depth- "-5" is out of range/],
-    ["boundary", "ground-5", /not understood/],
+    ["boundary", "ground-x", /--boundary ground- "x" is not a number/],
     ["regional", "4", /--regional "4" is not known.*none/],
     ["regional", "toString", /is not known/],
     ["panel", "0", /--panel "0" is out of range/],

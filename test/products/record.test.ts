@@ -59,6 +59,7 @@ test("the order in which settings were put together does not reach the bytes", (
     wanted: settings.wanted,
     processing: settings.processing,
     bound: settings.bound,
+    fieldDirection: settings.fieldDirection,
     acquisition: {...(acquisition as unknown as typeof settings.acquisition), columns},
     model: {regional, support, panel, boundary},
   };

@@ -6,6 +6,8 @@ import {quantileSorted} from "d3-array";
 import {scaleLinear} from "d3-scale";
 import type {Interval} from "../../geometry/interval.ts";
 import {partsOf, type Strip} from "../../inverse/nouns.ts";
+import {BOUNDARY_FIELD} from "../../potential/level-quantity.ts";
+import {DELIVERY_UNIT} from "../../quantities.ts";
 import type {LineStudy} from "../../study/outcome.ts";
 import {deliveryOf} from "../delivery.ts";
 import {nameText} from "../html.ts";
@@ -58,16 +60,18 @@ export function profileFigure(study: LineStudy): string {
 
   // Readings and fit.
   const {toReading, toField} = delivery;
-  const fit = estimate.field.map((value, i) => value + estimate.regional[i]!);
+  const [measuredBy] = conditioned.channels;
+  const [explained] = estimate.channels;
+  const fit = explained!.field.map((value, i) => value + explained!.regional[i]!);
   const readings = frameOf(HEIGHTS.readings, (t) =>
-    ordinate([...conditioned.values, ...fit, ...estimate.regional].map(toReading), t, HEIGHTS.readings),
+    ordinate([...measuredBy!.channel.values, ...fit, ...explained!.regional].map(toReading), t, HEIGHTS.readings),
   );
   const dotted = across.length <= (WIDTH - LEFT - RIGHT) / 2;
-  const measured = station(conditioned.values, readings.y, toReading);
+  const measured = station(measuredBy!.channel.values, readings.y, toReading);
   parts.push(
     stripNames(readings, strips),
     behind(readings),
-    curveMark("regional", across, station(estimate.regional, readings.y, toReading)),
+    curveMark("regional", across, station(explained!.regional, readings.y, toReading)),
     dotted ? dots(across, measured) : curveMark("trace", across, measured),
     curveMark("fit", across, station(fit, readings.y, toReading)),
     frameTitle(readings, `Readings and fit, ${delivery.reading}`, [
@@ -78,14 +82,14 @@ export function profileFigure(study: LineStudy): string {
   );
 
   // Residual, with twice the noise on either side.
-  const noise = toReading(conditioned.noise);
+  const noise = toReading(measuredBy!.noise);
   const residual = frameOf(HEIGHTS.residual, (t) =>
-    ordinate([...estimate.residual.map(toReading), -2.2 * noise, 2.2 * noise], t, HEIGHTS.residual),
+    ordinate([...explained!.residual.map(toReading), -2.2 * noise, 2.2 * noise], t, HEIGHTS.residual),
   );
   parts.push(
     behind(residual),
     boxMark("expected", LEFT, residual.y(2 * noise), residual.width, residual.y(-2 * noise) - residual.y(2 * noise)),
-    curveMark("trace", across, station(estimate.residual, residual.y, toReading)),
+    curveMark("trace", across, station(explained!.residual, residual.y, toReading)),
     frameTitle(residual, `Residual, ${delivery.reading}`, [
       {mark: "box", kind: "expected", text: `twice the noise, ± ${figureText(2 * noise, 2)} ${delivery.reading}`},
     ]),
@@ -127,16 +131,21 @@ export function profileFigure(study: LineStudy): string {
   // Levels.
   let lowest = source;
   for (const level of study.levels.slice(0, LEVELS_SHOWN)) {
-    const frame = frameOf(HEIGHTS.level, (t) =>
-      ordinate([0, ...level.lower, ...level.upper].map(toField), t, HEIGHTS.level),
-    );
+    const unit = DELIVERY_UNIT[level.dimension];
+    const toLevel = (si: number): number => si / unit.factor;
+    const drawn = [0, ...level.value, ...level.lower, ...level.upper].filter(Number.isFinite);
+    const frame = frameOf(HEIGHTS.level, (t) => ordinate(drawn.map(toLevel), t, HEIGHTS.level));
+    const bounded = level.lower.some(Number.isFinite);
+    const name = level.quantity === BOUNDARY_FIELD.name ? "Field" : level.quantity;
     parts.push(
       behind(frame),
-      bandMark("band", across, station(level.upper, frame.y, toField), station(level.lower, frame.y, toField)),
-      curveMark("average", across, station(level.value, frame.y, toField)),
-      frameTitle(frame, `Field ${levelWords(level.setting)}, ${delivery.field}`, [
+      bounded
+        ? bandMark("band", across, station(level.upper, frame.y, toLevel), station(level.lower, frame.y, toLevel))
+        : "",
+      curveMark("average", across, station(level.value, frame.y, toLevel)),
+      frameTitle(frame, `${name} ${levelWords(level.setting)}, ${unit.symbol}`, [
         {mark: "line", kind: "average", text: "field"},
-        {mark: "box", kind: "band", text: `${percentText(study.confidence)} interval`},
+        ...(bounded ? [{mark: "box", kind: "band", text: `${percentText(study.confidence)} interval`} as const] : []),
       ]),
     );
     lowest = frame;

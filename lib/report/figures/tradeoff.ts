@@ -24,7 +24,7 @@ export function tradeoffFigure(study: LineStudy): string {
     misfits.push(curve.misfit[k]!);
   }
   const chosen = {norm: delivery.toNorm(estimate.norm), misfit: estimate.misfit};
-  const expected = study.conditioned.values.length;
+  const expected = study.estimate.readings;
   const x = logScale([...norms, chosen.norm], LEFT, LEFT + INNER.width);
   const y = logScale([...misfits, chosen.misfit, expected], TOP + INNER.height, TOP);
   const title = `Misfit against norm of line ${nameText(study.line.id)}`;
