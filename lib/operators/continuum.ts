@@ -21,6 +21,8 @@ export interface Continuum extends Readings {
   readonly poles: readonly Pole[];
   /** `place[k]` is the place among the readings given of the k-th from the left. */
   readonly place: Int32Array;
+  /** What `sharedNodes` has made before, by the readings it is for. */
+  readonly shared: Map<string, SharedNodes>;
 }
 
 export function continuumOf(readings: Readings, support: Support, boundary?: BoundaryLine): Continuum {
@@ -28,7 +30,7 @@ export function continuumOf(readings: Readings, support: Support, boundary?: Bou
   const place = Int32Array.from(x.keys()).sort((i, j) => x[i] - x[j] || i - j);
   const sorted = pick(readings, place);
   const poles = boundary === undefined ? Array.from(sorted.x, (_, i) => poleOf(support, sorted, i)) : [];
-  return {...sorted, support, boundary, poles, place};
+  return {...sorted, support, boundary, poles, place, shared: new Map()};
 }
 
 function poleOf(support: Support, {x, z, aRe, aIm, order}: Readings, i: number): Pole {
@@ -43,6 +45,14 @@ export interface Nodes {
   /** Height of the boundary there, m. */
   readonly y: Float64Array;
   readonly rootWeight: Float64Array;
+  /** Length of the longest element, m. */
+  readonly longest: number;
+}
+
+/** Nodes for some readings, and what these respond there; see `nodeMatrix`. */
+export interface SharedNodes {
+  readonly nodes: Nodes;
+  readonly matrix: Float64Array;
 }
 
 /** A place above the boundary near which nodes must lie close. */
@@ -73,6 +83,7 @@ export function nodesFor(continuum: Continuum, first: number, last: number, also
   const rules = new Map<number, QuadratureRule>(ORDERS.map(([, order]) => [order, gaussLegendre(order)]));
   const at: number[] = [];
   const rootWeight: number[] = [];
+  let longest = 0;
   const far = (a: number, b: number): number => distance(continuum, first, last, a, b, also);
   for (const {from, to} of continuum.support) {
     const breaks = [...breaksWithin(continuum.boundary, from, to), to];
@@ -86,6 +97,7 @@ export function nodesFor(continuum: Continuum, first: number, last: number, also
         const share = (end - left) / far(left, end);
         const rule = rules.get((ORDERS.find(([most]) => share <= most) ?? ORDERS[3])[1])!;
         const half = 0.5 * (end - left);
+        longest = Math.max(longest, end - left);
         for (let k = 0; k < rule.nodes.length; ++k) {
           at.push(left + half * (1 + rule.nodes[k]));
           rootWeight.push(Math.sqrt(half * rule.weights[k]));
@@ -99,6 +111,7 @@ export function nodesFor(continuum: Continuum, first: number, last: number, also
     at: places,
     y: places.map((x) => boundaryAt(continuum.boundary, x)),
     rootWeight: Float64Array.from(rootWeight),
+    longest,
   };
 }
 
@@ -154,6 +167,31 @@ export function nodeMatrix(continuum: Continuum, nodes: Nodes, first: number, la
     for (let k = 0; k < nodes.count; ++k) matrix[row + k] = responseAt(continuum, nodes, i, k) * nodes.rootWeight[k];
   }
   return matrix;
+}
+
+/** Entries of a matrix that is worth remembering: 64 MB. A heuristic. */
+const REMEMBERED = 8e6;
+
+/** Nodes and responses of the readings `first … last − 1`, made once; undefined where they are too many to keep. */
+export function sharedNodes(continuum: Continuum, first: number, last: number): SharedNodes | undefined {
+  const key = `${first}-${last}`;
+  const {shared} = continuum;
+  const found = shared.get(key);
+  if (found !== undefined) {
+    // Asked for again, it is the youngest.
+    shared.delete(key);
+    shared.set(key, found);
+    return found;
+  }
+  // Every break begins an element of five nodes at least.
+  if ((last - first) * 5 * (continuum.boundary?.x.length ?? 0) > REMEMBERED) return undefined;
+  const nodes = nodesFor(continuum, first, last);
+  if ((last - first) * nodes.count > REMEMBERED) return undefined;
+  const made: SharedNodes = {nodes, matrix: nodeMatrix(continuum, nodes, first, last)};
+  // Two are enough: points are asked for along the line, each of its window and of the whole line.
+  if (shared.size > 1) shared.delete(shared.keys().next().value!);
+  shared.set(key, made);
+  return made;
 }
 
 /** G R for `terms` vectors over all readings (terms × count, row-major), G the whitened Gram matrix; no matrix is stored. */

@@ -4,9 +4,10 @@
  */
 import {type BoundaryLine, boundaryAt, breaksWithin} from "../geometry/boundary-line.ts";
 import {clip, type Interval, type Support, totalLength} from "../geometry/interval.ts";
+import {matVecInto} from "../numeric/matmul.ts";
 import {amplitudeIm, amplitudeRe, kernelAt, kernelOverPiece, type Response} from "../potential/kernel.ts";
 import {logarithmOver, type Pole, pairOver} from "../potential/pair.ts";
-import {type Continuum, type Nodes, nodesFor} from "./continuum.ts";
+import {type Continuum, type Nodes, nodesFor, sharedNodes} from "./continuum.ts";
 
 export interface Functional {
   /** Where it looks, m of chainage: windows of readings are chosen around it. */
@@ -90,6 +91,16 @@ export function fieldAt(x: number, z: number, response: Response, continuum: Con
     spread: above,
     normSquared: own.reduce((sum, weight) => sum + weight * weight, 0),
     respondInto(target, readings, first, last) {
+      // Elements no longer than the point is high keep their distance from it, on slopes up to 60°.
+      const shared = sharedNodes(readings, first, last);
+      if (shared !== undefined && above >= shared.nodes.longest)
+        return matVecInto(
+          target.subarray(0, last - first),
+          shared.matrix,
+          weightsOn(shared.nodes),
+          last - first,
+          shared.nodes.count,
+        );
       const nodes = nodesFor(readings, first, last, {x, z});
       const weights = weightsOn(nodes);
       for (let i = first; i < last; ++i) {

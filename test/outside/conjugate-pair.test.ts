@@ -39,8 +39,8 @@ describe.each([
     const ours = read(evenly(-300, 300, 601), along);
     const size = ours.reduce((most, v) => Math.max(most, Math.abs(v)), 0);
     expect(theirs.length).toBe(601);
-    // Sampling costs e^(−2π·20/1); repeats of the line every 65 km add their field, of no net source, a moment of 400 m² at most:
-    // 400/(π 65536²) = 3e-8, twice π²/6 of it.
+    // Sampling costs e^(−2π·20/1); repeats of the line every 65 km add their field, of no net source but a moment of 800 m²:
+    // 800/(π 65536²) = 6e-8 times π²/3, against a field of about one.
     ours.forEach((value, i) => {
       absoluteClose(theirs[i] / size, value / size, 5e-7, "repeats of the line in the discrete transform");
     });
