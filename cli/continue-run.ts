@@ -11,6 +11,7 @@ import type {Host} from "./nouns.ts";
 import {isOn, oneOf} from "./options/entry.ts";
 import {settingsFrom} from "./options/settings.ts";
 import {readMaps} from "./read-maps.ts";
+import {readTieFiles} from "./read-tie-files.ts";
 import {type Request, settled, surveyOf} from "./request.ts";
 import {type Counts, noOutcome, type Run} from "./run.ts";
 import {openRunFolder} from "./run-folder.ts";
@@ -26,7 +27,8 @@ export async function continueRun(request: Request, host: Host): Promise<number>
   const messages = messagesTo(host, form);
   const paths = surveyOf(request, "continue");
   const {maps, digests} = await readMaps(host, asked);
-  const settings = settled(request, (options) => settingsFrom(options, maps));
+  const known = await readTieFiles(host, asked);
+  const settings = settled(request, (options) => settingsFrom(options, maps, known.ties));
   const out = oneOf(asked, "out");
   if (out === undefined)
     throw new InputError(
@@ -38,7 +40,7 @@ export async function continueRun(request: Request, host: Host): Promise<number>
     const survey = await openSurvey(files, settings.acquisition);
     const inputs: FileDigest[] = [];
     for (const file of files) inputs.push(await digestOf(file));
-    inputs.push(...digests);
+    inputs.push(...digests, ...known.digests);
     if (job !== undefined) inputs.push(job.digest);
     for (const note of surveyNotes(survey)) messages.note(note);
     const read = host.now();

@@ -54,6 +54,11 @@ export async function gridWork({host, settings, survey, folder}: Run, file: Byte
       "option/lines-only",
       `--also ${also} writes tables of lines, but the survey is a grid, whose levels are rasters. Leave it out.`,
     );
+  if ((settings.model.ties ?? []).length > 0)
+    throw new InputError(
+      "option/lines-only",
+      "--tie holds lines to known readings, but the survey is a grid, whose rows share one operator. Take lines across it with --profiles FILE.geojson or --every N.",
+    );
   const products = await gridProducts(folder, {version: host.version, settings}, await openRaster(file));
   return {
     outcomes: studyGrid(survey, settings),

@@ -7,6 +7,7 @@ import type {Observable} from "../../lib/potential/observable.ts";
 import {DELIVERY_UNIT} from "../../lib/quantities.ts";
 import type {ModelSettings, SupportSetting} from "../../lib/study/settings.ts";
 import type {BoundarySetting} from "../../lib/survey/boundary.ts";
+import type {Tie} from "../../lib/survey/tie.ts";
 import {shown} from "../printable.ts";
 import {type Asked, allOf, type OptionGroup, oneOf} from "./entry.ts";
 import {intervalFor} from "./interval-text.ts";
@@ -62,6 +63,14 @@ export const ASSUMED: OptionGroup = {
       form: {words: Object.keys(REGIONALS), number: DEGREE},
       help: "degree of the polynomial estimated together with the source",
       default: {value: DEFAULT_REGIONAL, reason: "anomalies keep a level and a slope of unknown origin"},
+    },
+    {
+      name: "tie",
+      value: "FILE.csv",
+      repeated: true,
+      form: {path: true},
+      help: "known readings that the answer must meet, without regional: columns line, chainage (or x, y), elevation, value and, if wanted, tolerance (standard deviation, 0 or empty: exactly) and observable, values in mGal, E, nT or nT/m; on the boundary itself a tie is an average over the resolution length",
+      default: {value: "none", reason: "what is known at the ground is for the user to say"},
     },
     {
       name: "panel",
@@ -121,11 +130,12 @@ function regionalFrom(text: string): ModelSettings["regional"] {
  * @param maps files of polygons by their paths; undefined: they are left out
  * @throws {InputError} `option/…`, `support/…`, `polygon/…`
  */
-export function modelFrom(asked: Asked, maps?: MapFiles): ModelSettings {
+export function modelFrom(asked: Asked, maps?: MapFiles, ties?: readonly Tie[]): ModelSettings {
   const panel = oneOf(asked, "panel");
   return {
     boundary: boundaryFrom(oneOf(asked, "boundary")),
     support: supportsFrom(asked, maps),
+    ...(ties === undefined || ties.length === 0 ? {} : {ties}),
     panel: panel === undefined ? undefined : numberFor("--panel", panel, WIDTH),
     regional: regionalFrom(oneOf(asked, "regional") ?? DEFAULT_REGIONAL),
   };

@@ -2,6 +2,7 @@
 import {InputError} from "../../lib/errors.ts";
 import {OBSERVABLES, observableNamed} from "../../lib/potential/catalogue.ts";
 import type {Settings} from "../../lib/study/settings.ts";
+import type {Tie} from "../../lib/survey/tie.ts";
 import {boundFrom, modelFrom} from "./assumed.ts";
 import {type Asked, oneOf} from "./entry.ts";
 import type {MapFiles} from "./map-file.ts";
@@ -10,9 +11,10 @@ import {wantedFrom} from "./wanted.ts";
 
 /**
  * @param maps GeoJSON files by their paths; undefined: what they would add is left out
+ * @param ties of the files that --tie names
  * @throws {InputError} `option/missing` without an observable; `option/…`, `unit/…`, `observable/unknown`, `support/…`, `bound/…`
  */
-export function settingsFrom(asked: Asked, maps?: MapFiles): Settings {
+export function settingsFrom(asked: Asked, maps?: MapFiles, ties?: readonly Tie[]): Settings {
   const observable = observableAsked(asked);
   if (observable === undefined)
     throw new InputError(
@@ -22,7 +24,7 @@ export function settingsFrom(asked: Asked, maps?: MapFiles): Settings {
   return {
     acquisition: acquisitionFrom(asked, maps),
     fieldDirection: fieldDirectionFrom(asked),
-    model: modelFrom(asked, maps),
+    model: modelFrom(asked, maps, ties),
     bound: boundFrom(asked, observableNamed(observable)),
     wanted: wantedFrom(asked, maps),
     processing: oneOf(asked, "processing"),

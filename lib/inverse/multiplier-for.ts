@@ -1,5 +1,5 @@
 /** The multiplier at which a norm or a misfit takes a value: monotone functions, safeguarded Newton in ln α. */
-import {NumericalError} from "../errors.ts";
+import {ModelError, NumericalError} from "../errors.ts";
 import type {Solver} from "../solvers/solver.ts";
 
 const STEPS = 200;
@@ -10,10 +10,17 @@ const STEPS = 200;
  * Source: Reinsch, Numer. Math. 16 (1971) 451; Moré & Sorensen, SIAM J. Sci. Stat. Comput. 4 (1983) 553 (both from memory).
  *
  * @returns 0 when even α = 0 stays within the bound: the bound is not active
+ * @throws {ModelError} `bound/below-ties` when values met exactly need more than the bound
  * @throws {NumericalError} `bound/no-root`
  */
 export function multiplierForNorm(solver: Solver, bound: number): number {
   if (solver.norm(0) <= bound) return 0;
+  const least = solver.norm(Infinity);
+  if (!(least < bound))
+    throw new ModelError(
+      "bound/below-ties",
+      `The values to be met exactly need a source of ${(least / bound).toPrecision(4)} times the bound. Loosen --bound, or give the ties a tolerance.`,
+    );
   let low = Math.log(solver.least) - 40;
   let high = Math.log(solver.largest);
   while (solver.norm(Math.exp(high)) > bound) high += 5;

@@ -1,6 +1,6 @@
 /** The readings of a conditioned line, channel after channel. */
 import type {ConditionedLine} from "../survey/conditioned.ts";
-import {type Readings, readingsOf} from "./readings.ts";
+import {type ChannelReadings, type Readings, readingsOf} from "./readings.ts";
 
 export const readingsOfLine = ({line, channels}: ConditionedLine): Readings =>
   readingsOf(channels.map(({z, response, noise}) => ({x: line.stations.chainage, z, response, noise})));
@@ -14,4 +14,17 @@ export function valuesOfLine({channels}: ConditionedLine): Float64Array {
     at += channel.values.length;
   }
   return values;
+}
+
+/** A known reading at a point, beside the channels. */
+export type PointReading = Omit<ChannelReadings, "x" | "z"> & {readonly x: number; readonly z: number};
+
+/** The channels and known readings after them; those share one channel number, past the last of the line. */
+export function readingsWithPoints({line, channels}: ConditionedLine, points: readonly PointReading[]): Readings {
+  const readings = readingsOf([
+    ...channels.map(({z, response, noise}) => ({x: line.stations.chainage, z, response, noise})),
+    ...points.map(({x, z, response, noise}) => ({x: Float64Array.of(x), z: Float64Array.of(z), response, noise})),
+  ]);
+  readings.channel.fill(channels.length, readings.count - points.length);
+  return readings;
 }

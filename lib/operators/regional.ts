@@ -18,13 +18,14 @@ export interface RegionalBasis {
  * whitening does not change the span. A term that the readings cannot tell from the lower ones is left out.
  *
  * @param degree −1 for none
+ * @param channels that have a regional: the first so many; ties have none
  */
 export function regionalBasis(
   {x, channel, count}: Pick<Readings, "x" | "channel" | "count">,
   degree: number,
+  channels = channel.reduce((most, k) => Math.max(most, k), 0) + 1,
 ): RegionalBasis {
   const rows: Float64Array[] = [];
-  const channels = channel.reduce((most, k) => Math.max(most, k), 0) + 1;
   for (let k = 0; k < channels; ++k) {
     let low = Infinity;
     let high = -Infinity;

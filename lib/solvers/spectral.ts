@@ -7,10 +7,14 @@
  */
 import type {WhitenedSystem} from "../operators/whitened.ts";
 import {combineRight, modesAndCoefficients, USABLE} from "../spectral/singular-system.ts";
+import type {Constrained} from "./constraint.ts";
 import type {Solver} from "./solver.ts";
 
-/** @param taken terms of the regional that were projected out of the data */
-export function spectralSolver(system: WhitenedSystem, taken: number): Solver {
+/**
+ * @param taken terms of the regional that were projected out of the data
+ * @param tied what `system` was freed of, where values are met exactly
+ */
+export function spectralSolver(system: WhitenedSystem, taken: number, tied?: Constrained): Solver {
   const {modes, coefficients, rest} = modesAndCoefficients(system.matrix, system.rows, system.columns, system.data);
   const energies = coefficients.map((c) => c * c);
   const outside = energyOutside(system.data, energies);
@@ -20,8 +24,12 @@ export function spectralSolver(system: WhitenedSystem, taken: number): Solver {
     const shrink = 1 / (noise * noise);
     const eigenvalues = modes.eigenvalues.map((lambda) => lambda * shrink);
     const shrunk = energies.map((energy) => energy * shrink);
+    // Modes below the floor add Bᵀd⊥/α; near the floor itself they would be rounding, and are let go smoothly.
+    const floor = 10 * USABLE * (eigenvalues[0] ?? 0);
+    const below = rest.map((value) => value * shrink);
+    const sums = withBelow(modalSums(eigenvalues, shrunk, outside * shrink), below, floor);
     return {
-      ...modalSums(eigenvalues, shrunk, outside * shrink),
+      ...(tied === undefined ? sums : withLeast(sums, tied.leastNorm)),
       data: system.rows,
       unknowns: modes.columns,
       modes: modes.count,
@@ -31,17 +39,41 @@ export function spectralSolver(system: WhitenedSystem, taken: number): Solver {
           (c, k) => (Math.sqrt(eigenvalues[k]) * c) / noise / (eigenvalues[k] + multiplier),
         );
         const density = combineRight(modes, weights);
-        // Modes below the floor add Bᵀd⊥/α while α is above it; below, they would be rounding.
-        const floor = USABLE * eigenvalues[0];
-        if (multiplier > 10 * floor)
-          for (let j = 0; j < rest.length; ++j) density[j] += (rest[j] * shrink) / multiplier;
-        for (let j = 0; j < density.length; ++j) density[j] /= rootWidth[j];
+        for (let j = 0; j < below.length; ++j) density[j] += below[j] / (multiplier + floor);
+        for (let j = 0; j < density.length; ++j) density[j] = (density[j] + (tied?.least[j] ?? 0)) / rootWidth[j];
         return density;
       },
       withNoise: (factor) => withNoise(noise * factor),
     };
   };
   return withNoise(1);
+}
+
+/** Norms with what the modes below the floor add. */
+function withBelow(sums: Sums, below: Float64Array, floor: number): Sums {
+  const energy = below.reduce((sum, value) => sum + value * value, 0);
+  if (!(floor > 0)) return sums;
+  const norm = (multiplier: number): number =>
+    Math.hypot(sums.norm(multiplier), Math.sqrt(energy) / (multiplier + floor));
+  return {
+    ...sums,
+    norm,
+    normSlope: (multiplier) => {
+      const own = sums.norm(multiplier);
+      const slope = own > 0 ? own * sums.normSlope(multiplier) : 0;
+      return (slope - energy / (multiplier + floor) ** 3) / norm(multiplier);
+    },
+  };
+}
+
+/** Norms of u₀ + u′ from those of u′. */
+function withLeast(sums: Sums, least: number): Sums {
+  const norm = (multiplier: number): number => Math.hypot(sums.norm(multiplier), least);
+  return {
+    ...sums,
+    norm,
+    normSlope: (multiplier) => (sums.norm(multiplier) * sums.normSlope(multiplier)) / norm(multiplier),
+  };
 }
 
 /** ‖d⊥‖²: what of the data lies outside the modes. */
@@ -52,12 +84,10 @@ export function energyOutside(data: Float64Array, energies: Float64Array): numbe
   return Math.max(outside, 0);
 }
 
+type Sums = Pick<Solver, "largest" | "least" | "misfit" | "norm" | "normSlope" | "degreesOfFreedom">;
+
 /** What depends on the modes by their eigenvalues and energies c_k² alone. */
-export function modalSums(
-  eigenvalues: Float64Array,
-  energies: Float64Array,
-  outside: number,
-): Pick<Solver, "largest" | "least" | "misfit" | "norm" | "normSlope" | "degreesOfFreedom"> {
+export function modalSums(eigenvalues: Float64Array, energies: Float64Array, outside: number): Sums {
   const sum = (term: (lambda: number, energy: number) => number): number => {
     let total = 0;
     for (let k = eigenvalues.length - 1; k >= 0; --k) total += term(eigenvalues[k], energies[k]);

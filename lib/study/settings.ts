@@ -11,6 +11,7 @@ import type {BoundRule} from "../inverse/rules/rule.ts";
 import type {LevelQuantity} from "../potential/level-quantity.ts";
 import type {BoundarySetting} from "../survey/boundary.ts";
 import type {FieldDirectionSetting} from "../survey/field-direction.ts";
+import type {Tie} from "../survey/tie.ts";
 
 /** A stretch of chainage. */
 export interface ChainageZone extends Interval {
@@ -32,6 +33,8 @@ export interface ModelSettings {
   readonly boundary: BoundarySetting | undefined;
   /** Empty: the line and an apron of five median heights either side, since a source that far out adds a few per cent of its strength at most. */
   readonly support: readonly SupportSetting[];
+  /** Known readings that the answer must meet; absent: none. */
+  readonly ties?: readonly Tie[] | undefined;
   /** m; undefined: a quarter of the least height, see `panelsOn`. */
   readonly panel: number | undefined;
   /** Degree of the polynomial estimated together with the source, −1 for none; default 1: anomalies keep a level and a slope of unknown origin. */

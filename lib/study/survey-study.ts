@@ -10,10 +10,11 @@ import {zonesFor} from "./zones.ts";
 
 /**
  * Outcomes in the order of the files; a line that cannot be answered is an outcome too.
- * @throws {InputError} `support/needs-group`, before the first line; `zone/…`; `survey/all-skipped`, after the last
+ * @throws {InputError} `support/needs-group`, `tie/no-line`, before the first line; `zone/…`; `survey/all-skipped`, after the last
  */
 export async function* studySurvey(survey: Survey, settings: Settings): AsyncGenerator<LineOutcome> {
   checkGroups(survey, settings);
+  await checkTies(survey, settings);
   const zonesOf = zonesFor(settings);
   let skipped: ReportableError | undefined;
   let kept = 0;
@@ -41,6 +42,20 @@ export async function* studySurvey(survey: Survey, settings: Settings): AsyncGen
     }
   }
   if (kept === 0 && skipped !== undefined) throw allSkipped(skipped);
+}
+
+/** A tie of no line would be lost in silence. */
+async function checkTies(survey: Survey, {model}: Settings): Promise<void> {
+  if (model.ties === undefined || model.ties.length === 0) return;
+  const lines = new Set<string>();
+  for await (const record of survey.lines()) lines.add("failure" in record ? record.id : record.line.id);
+  const lost = model.ties.find(({line}) => !lines.has(line));
+  if (lost !== undefined)
+    throw new InputError(
+      "tie/no-line",
+      `The tie names line "${lost.line.slice(0, 60)}", which the survey does not have. Correct its line; groundward inspect lists them.`,
+      {place: lost.place},
+    );
 }
 
 const isChainage = <Z extends object>(zone: Z): zone is Extract<Z, ChainageZone> => !("area" in zone);

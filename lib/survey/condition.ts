@@ -52,6 +52,7 @@ export function condition(
     line,
     height: channels[0].z.map((z, i) => z - boundaryAt(placed.boundaryLine, chainage[i])),
     boundaryLine: placed.boundaryLine,
+    datum: placed.datum,
     groundHeight: placed.groundHeight,
     boundary: placed.words,
     channels,
@@ -85,6 +86,7 @@ interface PlacedBoundary {
   /** Sensor above the datum of the section. */
   readonly z: Float64Array;
   readonly boundaryLine: BoundaryLine | undefined;
+  readonly datum: number;
   readonly groundHeight: Float64Array | undefined;
   readonly words: string;
 }
@@ -100,7 +102,7 @@ function placeBoundary(line: SurveyLine, setting: BoundarySetting | undefined, n
           "The boundary lies below the ground in places: the result holds only if nothing between them is a source.",
         ),
       );
-    return {z: elevation!.map((z) => z - level), boundaryLine: undefined, groundHeight: ofGround, words};
+    return {z: elevation!.map((z) => z - level), boundaryLine: undefined, datum: level, groundHeight: ofGround, words};
   };
   const flatGround = (depth: number): PlacedBoundary => {
     notices.push(
@@ -112,6 +114,7 @@ function placeBoundary(line: SurveyLine, setting: BoundarySetting | undefined, n
     return {
       z: clearance!.map((c) => c + depth),
       boundaryLine: undefined,
+      datum: -depth,
       groundHeight: new Float64Array(clearance!.length).fill(depth),
       words: depth > 0 ? `${depth} m below ground taken as flat` : "the ground, taken as flat",
     };
@@ -129,6 +132,7 @@ function placeBoundary(line: SurveyLine, setting: BoundarySetting | undefined, n
     const level = lowest(ground) - depth;
     return {
       z: elevation.map((z) => z - level),
+      datum: level,
       boundaryLine: boundaryUnder(
         line.stations.chainage,
         ground.map((g) => g - depth - level),

@@ -23,6 +23,8 @@ export interface ConditionedLine {
   readonly boundaryLine: BoundaryLine | undefined;
   /** Height of the ground above the boundary under each station, m; undefined where the ground is not known. */
   readonly groundHeight: Float64Array | undefined;
+  /** Elevation of the datum of the section; less the depth of the boundary where heights count from ground taken as flat, m. */
+  readonly datum: number;
   /** The boundary in words, for report and record. */
   readonly boundary: string;
   /** At least one; the first is `value`. */

@@ -201,6 +201,7 @@ export function lineStudy(options: FixtureOptions = {}): LineStudy {
       height,
       groundHeight: ground.map((z) => z - boundary),
       boundaryLine: undefined,
+    datum: 0,
       boundary: "flat, at elevation 40 m",
       channels: [
         {channel: line.channels[0], response: observable.response(undefined), z: height, noise, noiseFrom: "given"},

@@ -1,0 +1,104 @@
+/** The ties of one line as the operator sees them. */
+
+import {levelRowInto} from "../continuation/field-on-level.ts";
+import {InputError} from "../errors.ts";
+import {boundaryAt} from "../geometry/boundary-line.ts";
+import type {Interval} from "../geometry/interval.ts";
+import type {Panels} from "../operators/panels.ts";
+import type {Response} from "../potential/kernel.ts";
+import type {ConditionedLine} from "../survey/conditioned.ts";
+import type {SurveyLine} from "../survey/line.ts";
+import type {Tie} from "../survey/tie.ts";
+
+export interface LineTie {
+  readonly tie: Tie;
+  readonly x: number;
+  /** Above the datum of the section, and above the boundary there, m. */
+  readonly z: number;
+  readonly above: number;
+  readonly response: Response;
+}
+
+/** A tie farther than this many heights from the line says nothing about it. */
+const REACH = 5;
+
+/** @throws {InputError} `tie/far`, `tie/below-boundary`, `tie/no-coordinates`, `tie/component-on-boundary`, `direction/not-given` */
+export function tiesOfLine(conditioned: ConditionedLine, ties: readonly Tie[]): readonly LineTie[] {
+  const {line, boundaryLine, datum, direction} = conditioned;
+  return ties
+    .filter((tie) => tie.line === line.id)
+    .map((tie) => {
+      const x = "chainage" in tie.at ? tie.at.chainage : chainageNear(line, tie, tie.at);
+      const heights = Float64Array.from(conditioned.height).sort();
+      const reach = REACH * heights[heights.length >> 1];
+      let nearest = Infinity;
+      for (const station of line.stations.chainage) nearest = Math.min(nearest, Math.abs(station - x));
+      if (!(nearest <= reach)) throw farFrom(line, tie, nearest, reach);
+      const z = tie.elevation - datum;
+      const above = z - boundaryAt(boundaryLine, x);
+      // A tie within a millimetre of the boundary is meant to lie on it.
+      if (!(above >= -1e-3))
+        throw new InputError(
+          "tie/below-boundary",
+          `The tie lies ${(-above).toPrecision(3)} m below the boundary (${conditioned.boundary}); it must lie on or above it. Lower the boundary or correct its elevation.`,
+          {place: tie.place},
+        );
+      if (tie.observable.needsDirection && direction === undefined)
+        throw new InputError(
+          "direction/not-given",
+          `A tie of ${tie.observable.name} needs the direction of the Earth's field. Give --inclination and --declination, or --date.`,
+          {place: tie.place},
+        );
+      const response = tie.observable.response(direction);
+      const onBoundary = above <= 1e-3;
+      if (onBoundary && !(response.order === 0 && response.im === 0))
+        throw new InputError(
+          "tie/component-on-boundary",
+          `A tie on the boundary itself can only be of the downward component; this one is of ${tie.observable.name}. Give one above the boundary.`,
+          {place: tie.place},
+        );
+      return {tie, x, z, above: onBoundary ? 0 : above, response};
+    });
+}
+
+const farFrom = (line: SurveyLine, tie: Tie, metres: number, reach: number): InputError =>
+  new InputError(
+    "tie/far",
+    `The tie lies ${metres.toPrecision(3)} m from the nearest station of line ${line.id}, beyond ${REACH} heights (${reach.toPrecision(3)} m), so that it says nothing about it. Correct its line or its place.`,
+    {place: tie.place},
+  );
+
+/** Chainage of the foot of the tie on the straight line through the two nearest stations. */
+function chainageNear({stations, id}: SurveyLine, tie: Tie, at: {readonly x: number; readonly y: number}): number {
+  const {x, y, chainage} = stations;
+  if (x === undefined || y === undefined)
+    throw new InputError(
+      "tie/no-coordinates",
+      `The tie is given by x, y, but line ${id} is known by its chainage only. Give the tie's chainage.`,
+      {place: tie.place},
+    );
+  const order = [...chainage.keys()].sort(
+    (i, j) => Math.hypot(x[i] - at.x, y[i] - at.y) - Math.hypot(x[j] - at.x, y[j] - at.y),
+  );
+  const a = order[0];
+  const b = order.find((i) => Math.abs(chainage[i] - chainage[a]) > 1e-6);
+  if (b === undefined) return chainage[a];
+  const [dx, dy] = [x[b] - x[a], y[b] - y[a]];
+  const share = ((at.x - x[a]) * dx + (at.y - y[a]) * dy) / (dx * dx + dy * dy);
+  const across = Math.abs((at.x - x[a]) * dy - (at.y - y[a]) * dx) / Math.hypot(dx, dy);
+  const along = chainage[a] + share * (chainage[b] - chainage[a]);
+  const scale = Math.abs(chainage[b] - chainage[a]) / Math.hypot(dx, dy);
+  // Off to the side counts as far away too.
+  return across * scale > 1e6 ? Number.NaN : along;
+}
+
+/** What each panel adds to the reading of a tie; on the boundary, the mean over `stretch`. */
+export function tieRow(panels: Panels, tie: LineTie, stretch: Interval | undefined): Float64Array {
+  const row = new Float64Array(panels.count);
+  if (stretch === undefined) return levelRowInto(row, 0, panels, tie.x, tie.z - tie.above, tie.above, tie.response);
+  for (let j = 0; j < panels.count; ++j) {
+    const inside = Math.min(panels.to[j], stretch.to) - Math.max(panels.from[j], stretch.from);
+    if (inside > 0) row[j] = (inside * tie.response.re) / (stretch.to - stretch.from);
+  }
+  return row;
+}
