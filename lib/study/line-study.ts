@@ -30,6 +30,7 @@ import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {SurveyLine} from "../survey/line.ts";
 import {effectiveDirectionOf} from "./direction-of-line.ts";
 import {feasibility} from "./feasibility.ts";
+import {gradientSignNotices} from "./gradient-sign.ts";
 import type {LineStudy} from "./outcome.ts";
 import type {Settings} from "./settings.ts";
 import {stripsOfLine} from "./strips-of-line.ts";
@@ -61,8 +62,11 @@ export function studyLine(line: SurveyLine, settings: Settings, zones = zonesFor
   const choice = namingTies(ties, () =>
     settings.bound.choose({solver, supportLength: totalLength(support), lines: 1, largestNorm: solver.norm}),
   );
-  const feasible = feasibility(solver, choice, () =>
-    widerMisfit(conditioned, support, settings, choice.basis === "given-bound" ? choice.bound : undefined),
+  const signs = gradientSignNotices(conditioned, panels, model.regional);
+  const feasible = blaming(signs, () =>
+    feasibility(solver, choice, () =>
+      widerMisfit(conditioned, support, settings, choice.basis === "given-bound" ? choice.bound : undefined),
+    ),
   );
   const estimate = estimateSource(solver, choice, operator, readings, regional, values);
 
@@ -112,6 +116,7 @@ export function studyLine(line: SurveyLine, settings: Settings, zones = zonesFor
       ...cutNotices(first, zones.support),
       ...conditioned.notices,
       ...choice.notices,
+      ...signs,
       ...feasible,
       ...doubtsOfResidual(conditioned, estimate),
       ...doubtsOfStrips(strips, support),
@@ -157,6 +162,19 @@ function pointOf({tie, x, z, above, response}: LineTie, {channels}: ConditionedL
   // A gradient in units of a field, or the other way: a height turns one into the other.
   const turned = noise * above ** (first.order - response.order);
   return {x, z, response, noise: tie.tolerance > 0 ? tie.tolerance : 1e-3 * turned};
+}
+
+/** Where nothing fits, a gradient that runs the wrong way is the first thing to look at. */
+function blaming<T>(signs: readonly Notice[], judge: () => T): T {
+  try {
+    return judge();
+  } catch (error) {
+    if (!(error instanceof ModelError) || signs.length === 0) throw error;
+    throw new ModelError(error.code, `${signs.map(({message}) => message).join(" ")} As it stands: ${error.message}`, {
+      place: error.place,
+      cause: error,
+    });
+  }
 }
 
 /** Says which ties cannot be met within the bound. */
