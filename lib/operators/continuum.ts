@@ -214,10 +214,23 @@ export function gramTimes(continuum: Continuum, vectors: Float64Array, terms: nu
 /** ‖Σ c_i p_i‖² in L²(S), for whitened responses p_i. */
 export function responseNormSquared(continuum: Continuum, weights: Float64Array): number {
   const nodes = nodesFor(continuum, 0, continuum.count);
+  const {x, z, aRe, aIm, order, count} = continuum;
+  const shares = weights.map((weight, i) => weight / continuum.noise[i]);
+  // One kind of kernel is the common case, and its loop the hot one.
+  const vertical = aRe.every((re) => re === 0) && order.every((m) => m === 0);
+  for (let i = 0; vertical && i < count; ++i) shares[i] *= -aIm[i];
   let total = 0;
   for (let k = 0; k < nodes.count; ++k) {
+    const at = nodes.at[k];
+    const y = nodes.y[k];
     let sum = 0;
-    for (let i = 0; i < continuum.count; ++i) sum += weights[i] * responseAt(continuum, nodes, i, k);
+    if (vertical)
+      for (let i = 0; i < count; ++i) {
+        const s = at - x[i];
+        const drop = z[i] - y;
+        sum += (shares[i] * drop) / (s * s + drop * drop);
+      }
+    else for (let i = 0; i < count; ++i) sum += shares[i] * kernelAt(aRe[i], aIm[i], order[i], at - x[i], z[i] - y);
     total += (sum * nodes.rootWeight[k]) ** 2;
   }
   return total;
