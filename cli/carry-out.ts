@@ -21,7 +21,7 @@ export interface Summary {
 
 export async function carryOut<Outcome extends LineOutcome | RowOutcome>(
   {host, survey, settings, messages, form}: Run,
-  {outcomes, products, result}: Work<Outcome>,
+  {outcomes, products, result, across}: Work<Outcome>,
 ): Promise<Summary> {
   const counts = noOutcome();
   const doubts = doubtCollector();
@@ -50,6 +50,7 @@ export async function carryOut<Outcome extends LineOutcome | RowOutcome>(
         failures.add(outcome.failure, outcome.id);
       }
       result.add(outcome);
+      across?.add(outcome);
       for (const product of products) await product.take(outcome);
       progress.step(outcome.id);
       await host.breathe();
@@ -57,7 +58,9 @@ export async function carryOut<Outcome extends LineOutcome | RowOutcome>(
   } finally {
     progress.end();
   }
-  for (const product of products) await product.end();
+  const notices = across?.notices() ?? [];
+  doubts.add(notices);
+  for (const product of products) await product.end(notices);
   const groups = failures.groups();
   for (const {failure, count, firstLines} of groups)
     messages.error(failure, survey.lineCount > 1 ? {count, firstLines} : undefined);

@@ -1,5 +1,6 @@
 /** `inspect` on files: opened as far as a look needs, walked once, and told. */
 
+import {effectiveDirectionOf} from "../lib/study/direction-of-line.ts";
 import {inspectSurvey} from "../lib/survey/inspection.ts";
 import {NOT_CORRECTED} from "../lib/survey/not-corrected.ts";
 import {doubtCollector, doubtText} from "./doubts.ts";
@@ -9,7 +10,7 @@ import {inspectionText} from "./inspection-text.ts";
 import {messagesTo} from "./messages.ts";
 import type {Host} from "./nouns.ts";
 import {openForInspection} from "./open-for-inspection.ts";
-import {acquisitionFrom} from "./options/measured.ts";
+import {acquisitionFrom, fieldDirectionFrom} from "./options/measured.ts";
 import {readMaps} from "./read-maps.ts";
 import {type Request, settled, surveyOf} from "./request.ts";
 import {surveyNotes} from "./survey-notes.ts";
@@ -20,9 +21,10 @@ export async function inspectRun(request: Request, host: Host): Promise<number> 
   const messages = messagesTo(host, form);
   const {maps} = await readMaps(host, request.asked);
   const settings = settled(request, (options) => acquisitionFrom(options, maps));
+  const fieldDirection = settled(request, fieldDirectionFrom);
   return withInputs(host, surveyOf(request, "inspect"), async (files) => {
     const {survey, filledIn, known} = await openForInspection(files, settings);
-    const inspected = await inspectSurvey(survey);
+    const inspected = await inspectSurvey(survey, (line) => effectiveDirectionOf(line, {fieldDirection}));
     const inspection = known.observable ? inspected : {...inspected, notCorrected: NOT_CORRECTED};
     const {lines, failures, notices} = inspection;
     const doubts = doubtCollector();

@@ -27,6 +27,7 @@ export function inspectionText(inspection: Inspection, known: Known): string {
   const most = kind === "grid" ? MOST_ROWS : MOST_LINES;
   const shown = lines.slice(0, most);
   const parts = [positions(shown), readings(shown, known)];
+  if (shown.some(({fieldAlong}) => fieldAlong !== undefined)) parts.push(directions(shown));
   if (shown.some(({channels}) => noiseWords(channels[0]) === PARTLY_SIGNAL)) parts.push(PARTLY_SIGNAL_MEANING);
   const noun = grid?.orientation.slice(0, -1) ?? "line";
   if (lines.length > most) parts.push(`The first ${most} of ${counted(lines.length, noun)}; --json gives all.\n`);
@@ -113,6 +114,22 @@ function readings(lines: readonly LineFigures[], known: Known): string {
     }),
   );
 }
+
+/** What of the Earth's field lies in the plane of each line. */
+function directions(lines: readonly LineFigures[]): string {
+  const table = textTable(
+    [left("line"), right("inclination along the line °"), right("β")],
+    lines.map(({id, fieldAlong}) => [
+      id,
+      fieldAlong === undefined ? "" : fieldAlong.inclination.toFixed(1),
+      fieldAlong === undefined ? "" : fieldAlong.beta.toFixed(3),
+    ]),
+  );
+  return `${table}${paragraph("", DIRECTION_MEANING, WIDTH, "")}`;
+}
+
+const DIRECTION_MEANING =
+  "The Earth's field seen along each line, towards increasing chainage: its inclination there, and β, the part of it that lies in the plane of the line. A total-field sensor reads β times the sources' field along it; near 0 it reads nothing of them.";
 
 const PARTLY_SIGNAL = "partly signal?";
 const PARTLY_SIGNAL_MEANING = paragraph(

@@ -2,9 +2,11 @@
 import {InputError} from "../lib/errors.ts";
 import type {ByteSource} from "../lib/formats/byte-source.ts";
 import {openRaster} from "../lib/formats/geotiff-read.ts";
+import type {Notice} from "../lib/notice.ts";
 import {GRID_PRODUCTS, gridProducts, lineProductKinds, lineProducts} from "../lib/products/catalogue.ts";
 import type {RunFrame} from "../lib/products/product.ts";
 import {studyGrid} from "../lib/study/grid-study.ts";
+import {neighbouringStrips} from "../lib/study/neighbouring-strips.ts";
 import type {LineOutcome, RowOutcome} from "../lib/study/outcome.ts";
 import type {Settings} from "../lib/study/settings.ts";
 import {studySurvey} from "../lib/study/survey-study.ts";
@@ -19,9 +21,11 @@ export interface Work<Outcome> {
   readonly products: readonly {
     begin(frame: RunFrame): Promise<void>;
     take(outcome: Outcome): Promise<void>;
-    end(): Promise<void>;
+    end(across: readonly Notice[]): Promise<void>;
   }[];
   readonly result: RunResult<Outcome>;
+  /** What only several outcomes together can tell. */
+  readonly across: {add(outcome: Outcome): void; notices(): readonly Notice[]} | undefined;
 }
 
 export async function lineWork({host, settings, survey, folder}: Run): Promise<Work<LineOutcome>> {
@@ -31,9 +35,10 @@ export async function lineWork({host, settings, survey, folder}: Run): Promise<W
     products: products.map((product) => ({
       begin: (frame) => product.begin(frame),
       take: (outcome) => product.line(outcome),
-      end: () => product.end(),
+      end: (across) => product.end(across),
     })),
     result: lineResult(observableOf(settings), settings.wanted.confidence),
+    across: neighbouringStrips(settings.wanted.confidence),
   };
 }
 
@@ -68,6 +73,7 @@ export async function gridWork({host, settings, survey, folder}: Run, file: Byte
       end: () => product.end(),
     })),
     result: gridResult(observableOf(settings)),
+    across: undefined,
   };
 }
 

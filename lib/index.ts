@@ -17,6 +17,7 @@ export {INTERVAL_BASIS} from "./report/interval-basis.ts";
 export {countUsableModes, poissonSpectrum} from "./spectral/poisson-spectrum.ts";
 export {studyGrid} from "./study/grid-study.ts";
 export {studyLine} from "./study/line-study.ts";
+export {type AcrossLines, neighbouringStrips} from "./study/neighbouring-strips.ts";
 export type {LineOutcome, LineStudy, RowOutcome, RowStudy} from "./study/outcome.ts";
 export type {Settings} from "./study/settings.ts";
 export {studySurvey} from "./study/survey-study.ts";

@@ -19,6 +19,7 @@ const DEFAULT_REGIONAL = "1";
 const DEFAULT_BOUND = "discrepancy";
 const DEPTH: Need = {...NOT_NEGATIVE, words: "a depth, 0 or above", example: "5"};
 const DEGREE: Need = {words: "a whole number from 0 to 3", example: DEFAULT_REGIONAL, least: 0, most: 3, whole: true};
+const STRIKE: Need = {...ANY_NUMBER, words: "degrees from -360 to 360", example: "30", least: -360, most: 360};
 const WIDTH: Need = {...POSITIVE, words: "a width in metres above 0", example: "5"};
 
 export const ASSUMED: OptionGroup = {
@@ -63,6 +64,13 @@ export const ASSUMED: OptionGroup = {
       form: {words: Object.keys(REGIONALS), number: DEGREE},
       help: "degree of the polynomial estimated together with the source",
       default: {value: DEFAULT_REGIONAL, reason: "anomalies keep a level and a slope of unknown origin"},
+    },
+    {
+      name: "strike",
+      value: "A",
+      form: {number: STRIKE},
+      help: "azimuth that the sources run along, degrees clockwise from true north, where lines do not cross them squarely: distances are scaled by the sine of the angle between, which must be 30 degrees at least; --bound norm and totals are counted square to the strike",
+      default: {value: "square to each line", reason: "lines are laid across what they look for"},
     },
     {
       name: "tie",
@@ -132,9 +140,11 @@ function regionalFrom(text: string): ModelSettings["regional"] {
  */
 export function modelFrom(asked: Asked, maps?: MapFiles, ties?: readonly Tie[]): ModelSettings {
   const panel = oneOf(asked, "panel");
+  const strike = oneOf(asked, "strike");
   return {
     boundary: boundaryFrom(oneOf(asked, "boundary")),
     support: supportsFrom(asked, maps),
+    ...(strike === undefined ? {} : {strike: numberFor("--strike", strike, STRIKE)}),
     ...(ties === undefined || ties.length === 0 ? {} : {ties}),
     panel: panel === undefined ? undefined : numberFor("--panel", panel, WIDTH),
     regional: regionalFrom(oneOf(asked, "regional") ?? DEFAULT_REGIONAL),

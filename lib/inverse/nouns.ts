@@ -81,8 +81,18 @@ export interface StripEstimate {
   readonly mean: number;
   readonly lower: number;
   readonly upper: number;
+  /** Its length square to the strike of the sources, m; absent: its length on the line. */
+  readonly across?: number;
   /** The mean of the one source on the panels. */
   readonly plainMean: number;
+}
+
+/** What further channels add to the first. */
+export interface ChannelGain {
+  /** Their roles: `value.2` … */
+  readonly further: readonly string[];
+  /** Resolution of the first channel alone, m; Infinity where it resolves nothing. */
+  readonly without: number;
 }
 
 /** The resolution of the estimate. */

@@ -3,6 +3,7 @@
  * Its bytes go to sinks that the caller opens, so that nothing here touches a disk.
  */
 import type {LevelSetting} from "../continuation/level-profile.ts";
+import type {Notice} from "../notice.ts";
 import type {LevelQuantity} from "../potential/level-quantity.ts";
 import type {Observable} from "../potential/observable.ts";
 import type {LineOutcome, RowOutcome} from "../study/outcome.ts";
@@ -27,7 +28,8 @@ export interface RunFrame {
 export interface LineProduct {
   begin(frame: RunFrame): Promise<void>;
   line(outcome: LineOutcome): Promise<void>;
-  end(): Promise<void>;
+  /** @param across doubts about the survey as a whole that only its lines together could tell */
+  end(across?: readonly Notice[]): Promise<void>;
 }
 
 /** A product over the rows or columns of a grid. */

@@ -60,7 +60,8 @@ export function reportHtml(sink: TextSink, about: RunAbout): LineProduct {
       take(page, outcome, index);
       ++index;
     },
-    end: async () => {
+    end: async (across = []) => {
+      page.doubts.notices(across);
       for (const piece of pieces(page, about)) await sink.write(piece);
     },
   };

@@ -17,7 +17,7 @@ interface Group {
 export interface Doubts {
   notices(notices: readonly Notice[], line?: string): void;
   failure(failure: ReportableError, line: string): void;
-  /** Items of a list, failures first; empty when there is nothing to tell. */
+  /** Items of a list, failures first, of each weight those of the survey as a whole before those of lines; empty when there is nothing to tell. */
   list(weights: readonly Weight[]): string;
 }
 
@@ -52,8 +52,10 @@ export function doubtsOf(noun: string): Doubts {
     failure: (failure, line) => add("failure", failure.code, failure.message, line),
     list(weights) {
       const items: string[] = [];
+      const ofSurvey = (group: Group): boolean => group.lines.length === 0;
+      const ordered = [...[...groups.values()].filter(ofSurvey), ...[...groups.values()].filter((g) => !ofSurvey(g))];
       for (const weight of weights)
-        for (const group of groups.values()) if (group.weight === weight) items.push(item(group, noun));
+        for (const group of ordered) if (group.weight === weight) items.push(item(group, noun));
       return items.length === 0 ? "" : `<ul class="plain">${items.join("")}</ul>`;
     },
   };

@@ -47,7 +47,7 @@ function caption(study: LineStudy): string {
 }
 
 function grounds(study: LineStudy): string {
-  const {choice, estimate, conditioned, observable, resolution} = study;
+  const {choice, estimate, conditioned, observable, resolution, gain} = study;
   const delivery = deliveryOf(observable);
   const basis = INTERVAL_BASIS[choice.basis];
   const readings = estimate.readings;
@@ -71,7 +71,12 @@ function grounds(study: LineStudy): string {
           ] as const,
         ]),
     ["Degrees of freedom", `${figureText(estimate.degreesOfFreedom)} used of ${countText(readings)}`],
-    ["Resolution", `${metreText(resolution.length)} m`],
+    [
+      "Resolution",
+      gain === undefined
+        ? `${metreText(resolution.length)} m`
+        : `${metreText(resolution.length)} m with ${gain.further.map(nameText).join(" and ")}, ${Number.isFinite(gain.without) ? `${metreText(gain.without)} m` : "none"} without`,
+    ],
     ["Norm of the source", `${figureText(delivery.toNorm(estimate.norm))} ${delivery.field}·√m`],
     ["Bound", `${figureText(delivery.toNorm(choice.bound))} ${delivery.field}·√m, ${boundWords(choice)}`],
   ])}<p class="small"><b>${basis.lead}</b> ${messageText(basis.text)}</p></div>`;

@@ -40,7 +40,9 @@ export function settingsPairs(
       "Boundary",
       model.boundary.kind === "elevation"
         ? `flat, at elevation ${metreText(model.boundary.elevation)} m`
-        : `flat, ${metreText(model.boundary.depth)} m below the lowest ground under the line`,
+        : model.boundary.kind === "ground"
+          ? `following the ground, ${metreText(model.boundary.depth)} m below it`
+          : `flat, ${metreText(model.boundary.depth)} m below the lowest ground under the line`,
     ]);
   pairs.push([
     "Support",
@@ -54,6 +56,9 @@ export function settingsPairs(
           )
           .join("; "),
   ]);
+  if (model.ties !== undefined) pairs.push(["Ties", `${model.ties.length} known readings`]);
+  if (model.strike !== undefined)
+    pairs.push(["Strike of the sources", `azimuth ${exactText(model.strike)}°; distances are scaled to square to it`]);
   pairs.push(["Bound", nameText(settings.bound.text)]);
   pairs.push(["Regional", DEGREES[`${model.regional}`]]);
   pairs.push(["Levels", wanted.levels.map(levelWords).join("; ")]);

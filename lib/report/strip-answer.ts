@@ -19,7 +19,7 @@ export interface StripAnswer {
 }
 
 export function stripAnswer(estimate: StripEstimate, delivery: Delivery): StripAnswer {
-  const length = totalLength(partsOf(estimate.strip));
+  const length = estimate.across ?? totalLength(partsOf(estimate.strip));
   const mean: Bracket = {
     value: delivery.toDensity(estimate.mean),
     lower: delivery.toDensity(estimate.lower),

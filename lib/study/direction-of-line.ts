@@ -7,11 +7,16 @@ import type {SurveyLine} from "../survey/line.ts";
 import type {Settings} from "./settings.ts";
 
 /**
+ * @param profile azimuth of the axis that the sources are square to; absent: that of the line
  * @returns undefined where no direction was given; who needs one then says so
  * @throws {InputError} `direction/no-azimuth`, `direction/no-position`, `direction/date`
  * @throws {ModelError} `direction/along-strike`
  */
-export function effectiveDirectionOf(line: SurveyLine, {fieldDirection}: Settings): EffectiveDirection | undefined {
+export function effectiveDirectionOf(
+  line: SurveyLine,
+  {fieldDirection}: Pick<Settings, "fieldDirection">,
+  profile?: number,
+): EffectiveDirection | undefined {
   if (fieldDirection === undefined) return undefined;
   const {track} = line;
   if (track === undefined)
@@ -20,7 +25,8 @@ export function effectiveDirectionOf(line: SurveyLine, {fieldDirection}: Setting
       `The direction of the field along line ${line.id} needs the azimuth of the line, and only its chainage is known. Give the columns of its coordinates and --crs.`,
       {place: {file: line.file}},
     );
-  const {azimuth, middle} = trackDirection(track);
+  const {azimuth: own, middle} = trackDirection(track);
+  const azimuth = profile ?? own;
   if (fieldDirection.kind === "angles")
     return effectiveDirection(fieldDirection.inclination, fieldDirection.declination, azimuth);
   if (middle === undefined)

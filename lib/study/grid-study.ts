@@ -3,7 +3,7 @@
  * occurs, the energies of the modes; the second answers. Memory holds one block of rows, a few geometries, and the
  * sums of the rest.
  */
-import {ModelError, ReportableError} from "../errors.ts";
+import {InputError, ModelError, ReportableError} from "../errors.ts";
 import {misfitLimit} from "../inverse/misfit-range.ts";
 import type {BoundChoice} from "../inverse/nouns.ts";
 import {doubt, isDoubtful, type Notice} from "../notice.ts";
@@ -47,6 +47,11 @@ interface Pool {
  */
 export async function* studyGrid(survey: Survey, settings: Settings): AsyncGenerator<RowOutcome> {
   checkGroups(survey, settings);
+  if (settings.model.strike !== undefined)
+    throw new InputError(
+      "strike/grid",
+      "--strike turns one line at a time, and the survey is a grid, worked row by row with one bound. Leave it out, or take lines across the strike with --profiles FILE.geojson.",
+    );
   const zonesOf = zonesFor(settings);
   const geometries = recent<RowGeometry>(KEPT);
   const pooled = await poolRows(survey, settings, zonesOf, geometries);

@@ -3,6 +3,7 @@ import type {LevelProfile, LevelSetting} from "../continuation/level-profile.ts"
 import type {ReportableError} from "../errors.ts";
 import type {
   BoundChoice,
+  ChannelGain,
   PanelAverages,
   Resolution,
   SourceEstimate,
@@ -24,6 +25,8 @@ export interface LineStudy {
   readonly choice: BoundChoice;
   readonly estimate: SourceEstimate;
   readonly resolution: Resolution;
+  /** Undefined where there is one channel. */
+  readonly gain: ChannelGain | undefined;
   readonly averages: PanelAverages;
   readonly levels: readonly LevelProfile[];
   readonly strips: readonly StripEstimate[];

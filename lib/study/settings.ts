@@ -33,6 +33,8 @@ export interface ModelSettings {
   readonly boundary: BoundarySetting | undefined;
   /** Empty: the line and an apron of five median heights either side, since a source that far out adds a few per cent of its strength at most. */
   readonly support: readonly SupportSetting[];
+  /** Azimuth that sources run along, degrees clockwise from true north; absent: square to each line. */
+  readonly strike?: number | undefined;
   /** Known readings that the answer must meet; absent: none. */
   readonly ties?: readonly Tie[] | undefined;
   /** m; undefined: a quarter of the least height, see `panelsOn`. */

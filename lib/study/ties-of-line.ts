@@ -1,10 +1,13 @@
 /** The ties of one line as the operator sees them. */
 
 import {levelRowInto} from "../continuation/field-on-level.ts";
-import {InputError} from "../errors.ts";
+import {InputError, ModelError} from "../errors.ts";
 import {boundaryAt} from "../geometry/boundary-line.ts";
 import type {Interval} from "../geometry/interval.ts";
+import {stretchAt} from "../inverse/averages.ts";
+import type {Resolution} from "../inverse/nouns.ts";
 import type {Panels} from "../operators/panels.ts";
+import type {PointReading} from "../operators/readings-of-line.ts";
 import type {Response} from "../potential/kernel.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {SurveyLine} from "../survey/line.ts";
@@ -93,7 +96,7 @@ function chainageNear({stations, id}: SurveyLine, tie: Tie, at: {readonly x: num
 }
 
 /** What each panel adds to the reading of a tie; on the boundary, the mean over `stretch`. */
-export function tieRow(panels: Panels, tie: LineTie, stretch: Interval | undefined): Float64Array {
+function tieRow(panels: Panels, tie: LineTie, stretch: Interval | undefined): Float64Array {
   const row = new Float64Array(panels.count);
   if (stretch === undefined) return levelRowInto(row, 0, panels, tie.x, tie.z - tie.above, tie.above, tie.response);
   for (let j = 0; j < panels.count; ++j) {
@@ -101,4 +104,65 @@ export function tieRow(panels: Panels, tie: LineTie, stretch: Interval | undefin
     if (inside > 0) row[j] = (inside * tie.response.re) / (stretch.to - stretch.from);
   }
   return row;
+}
+
+/** A tie put to the panels: what each adds to it, and itself as a reading. */
+export interface TieRow {
+  readonly row: Float64Array;
+  readonly value: number;
+  readonly exact: boolean;
+  readonly point: PointReading;
+}
+
+/** @param resolution of the line without ties on the boundary; asked for only where there are some */
+export function tieRows(ties: readonly LineTie[], panels: Panels, resolution: () => Resolution): readonly TieRow[] {
+  const without = ties.some(({above}) => above === 0) ? resolution() : undefined;
+  return ties.map((tie): TieRow => {
+    const stretch = tie.above > 0 || without === undefined ? undefined : stretchAt(panels, without, tie.x);
+    if (tie.above === 0 && stretch === undefined)
+      throw new InputError(
+        "tie/off-support",
+        `The tie on the boundary at chainage ${tie.x} lies off the support, where the source is zero by assumption. Widen --support or leave it out.`,
+        {place: tie.tie.place},
+      );
+    const {x, z, response} = tie;
+    return {
+      row: tieRow(panels, tie, stretch),
+      value: tie.tie.value,
+      exact: tie.tie.tolerance === 0,
+      point: {x, z, response, noise: tie.tie.tolerance},
+    };
+  });
+}
+
+/**
+ * Ties above the boundary as further readings for the intervals; one to be met exactly is given a thousandth of the
+ * noise, which only lengthens them.
+ */
+export const tiesHeard = (ties: readonly LineTie[], {channels}: ConditionedLine) =>
+  ties
+    .filter(({above}) => above > 0)
+    .map(({tie, x, z, above, response}) => {
+      const [{noise, response: first}] = channels;
+      // A gradient in units of a field, or the other way: a height turns one into the other.
+      const turned = noise * above ** (first.order - response.order);
+      return {point: {x, z, response, noise: tie.tolerance > 0 ? tie.tolerance : 1e-3 * turned}, value: tie.value};
+    });
+
+/** Says which ties cannot be met within the bound. */
+export function namingTies<T>(ties: readonly LineTie[], choose: () => T): T {
+  try {
+    return choose();
+  } catch (error) {
+    if (!(error instanceof ModelError) || error.code !== "bound/below-ties") throw error;
+    const rows = ties.filter(({tie}) => tie.tolerance === 0).map(({tie}) => tie.place.row);
+    throw new ModelError(
+      "tie/infeasible",
+      `${error.message} The ties stand in rows ${rows.join(", ")} of the tie file.`,
+      {
+        place: ties[0].tie.place,
+        cause: error,
+      },
+    );
+  }
 }

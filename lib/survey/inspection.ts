@@ -1,6 +1,8 @@
 /** What is in a survey and what is doubtful, as plain data to be printed. SI; metres; degrees. */
-import type {ErrorCode} from "../errors.ts";
-import {type Notice, remark} from "../notice.ts";
+import {type ErrorCode, ReportableError} from "../errors.ts";
+import {doubt, type Notice, remark} from "../notice.ts";
+import type {EffectiveDirection} from "../potential/effective-direction.ts";
+import type {SurveyLine} from "./line.ts";
 import {type LineFigures, lineFigures} from "./line-figures.ts";
 import {type Neighbours, neighbours} from "./neighbours.ts";
 import {NOT_CORRECTED, type Uncorrected} from "./not-corrected.ts";
@@ -29,8 +31,15 @@ export interface Inspection {
 /** Lines kept for comparison, at 2,000 points each: 64 MB. */
 const MOST_COMPARED = 2000;
 
-/** One walk over the lines; memory holds figures of every line and thinned copies of at most 2,000. */
-export async function inspectSurvey(survey: Survey): Promise<Inspection> {
+/** The Earth's field along a line; undefined where no direction was given. */
+export type DirectionOf = (line: SurveyLine) => EffectiveDirection | undefined;
+
+/**
+ * One walk over the lines; memory holds figures of every line and thinned copies of at most 2,000.
+ * @param directionOf what it throws is a doubt here, since a look needs no direction
+ * @throws {ReportableError} of `directionOf`, where its code is `direction/date`: wrong for every line
+ */
+export async function inspectSurvey(survey: Survey, directionOf: DirectionOf = () => undefined): Promise<Inspection> {
   const azimuths = new Map(survey.axes.map(({group, azimuth}) => [group, azimuth]));
   const lines: LineFigures[] = [];
   const failures: Inspection["failures"][number][] = [];
@@ -45,7 +54,9 @@ export async function inspectSurvey(survey: Survey): Promise<Inspection> {
     }
     const {line} = record;
     for (const {observable} of line.channels) methods.add(observable.source.method);
-    lines.push(lineFigures(line, azimuths.get(line.group), flown ? "lines" : "grid"));
+    const {fieldAlong, doubts} = lookedUp(line, directionOf);
+    const figures = lineFigures(line, azimuths.get(line.group), flown ? "lines" : "grid", fieldAlong);
+    lines.push({...figures, notices: [...figures.notices, ...doubts]});
     if (flown && copies.length < MOST_COMPARED) copies.push(thinned(line));
   }
   if (flown && lines.length > copies.length)
@@ -68,4 +79,16 @@ export async function inspectSurvey(survey: Survey): Promise<Inspection> {
     notices,
     notCorrected: NOT_CORRECTED.filter(({method}) => methods.has(method)),
   };
+}
+
+function lookedUp(
+  line: SurveyLine,
+  directionOf: DirectionOf,
+): {readonly fieldAlong: EffectiveDirection | undefined; readonly doubts: readonly Notice[]} {
+  try {
+    return {fieldAlong: directionOf(line), doubts: []};
+  } catch (error) {
+    if (!(error instanceof ReportableError) || error.code === "direction/date") throw error;
+    return {fieldAlong: undefined, doubts: [doubt(error.code, error.message)]};
+  }
 }

@@ -1,6 +1,7 @@
 /** What can be said of a line before any theory: its stations, spacing, heights, gaps, readings and noise. SI; metres. */
 import {ReportableError} from "../errors.ts";
 import type {Notice} from "../notice.ts";
+import type {EffectiveDirection} from "../potential/effective-direction.ts";
 import type {Dimension} from "../quantities.ts";
 import {byChainage} from "./by-chainage.ts";
 import type {Channel, SurveyLine} from "./line.ts";
@@ -32,6 +33,8 @@ export interface LineFigures {
   /** Undefined where the clearance is not known. */
   readonly sampling: Sampling | undefined;
   readonly channels: readonly ChannelFigures[];
+  /** Of the Earth's field, for increasing chainage; undefined where no direction was given or it means nothing here. */
+  readonly fieldAlong: EffectiveDirection | undefined;
   readonly notices: readonly Notice[];
 }
 
@@ -72,7 +75,12 @@ export function samplingOf(spacing: number, height: number): Sampling {
  * @param axisAzimuth azimuth of increasing chainage of the line's group
  * @param kind a row of a grid was interpolated: its record shows no noise
  */
-export function lineFigures(line: SurveyLine, axisAzimuth: number | undefined, kind: "lines" | "grid"): LineFigures {
+export function lineFigures(
+  line: SurveyLine,
+  axisAzimuth: number | undefined,
+  kind: "lines" | "grid",
+  fieldAlong: EffectiveDirection | undefined,
+): LineFigures {
   const {stations} = line;
   const {chainage, count} = stations;
   const order = byChainage(chainage);
@@ -107,6 +115,7 @@ export function lineFigures(line: SurveyLine, axisAzimuth: number | undefined, k
     backward,
     sampling,
     channels: line.channels.map((channel) => channelFigures(channel, chainage, sampling, kind)),
+    fieldAlong,
     notices: line.notices,
   };
 }

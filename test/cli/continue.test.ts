@@ -3,6 +3,8 @@ import {createHash} from "node:crypto";
 import {readFileSync, writeFileSync} from "node:fs";
 import {join} from "node:path";
 import {describe, expect, test} from "vitest";
+import {seededRandom} from "../../lib/numeric/random.ts";
+import {harmonicMeasure} from "../../lib/potential/poisson.ts";
 import {parsedCsv} from "../harness/text-sink.ts";
 import {contents, fileWith, gridBytes, run, surveyText, temporaryFolder} from "./harness.ts";
 
@@ -44,6 +46,63 @@ describe("continue over lines", () => {
       expect(Number(strip["lower_kg/m2"])).toBeLessThan(truth);
       expect(Number(strip["upper_kg/m2"])).toBeGreaterThan(truth);
     }
+  });
+
+  test("lines that differ on a strip by more than their intervals allow are told on the screen and in the report", async () => {
+    /** 10 m above a plate of 0.6 mGal below chainage 150:310, on the last of three lines so many times as strong. */
+    const survey = (times: number): string => {
+      const {normal} = seededRandom(24);
+      const rows = ["L1", "L2", "L3"].flatMap((line, k) =>
+        Array.from({length: 120}, (_, i) => {
+          const clean = 0.6 * harmonicMeasure(5 * i, 10, 150, 310) * (k === 2 ? times : 1);
+          return `${line},${5 * i},10,${(clean + 0.005 * normal()).toFixed(5)}`;
+        }),
+      );
+      return fileWith("lines.csv", `line,chainage,clearance,gravity\n${rows.join("\n")}\n`);
+    };
+    // ‖f‖ of the strong plate is 22.8 mGal·√m. With a regional, a line this short leaves its level open.
+    const bound = ["--noise", "0.005", "--bound", "norm:24", "--regional", "none"];
+    const settings = ["--observable", "gravity", ...bound, "--strip", "dyke=150:310"];
+    const out = join(temporaryFolder(), "out");
+    const result = await run(["continue", survey(3), ...settings, "--out", out]);
+    expect(result.status).toBe(0);
+    const told = /Strip dyke: lines L2 and L3 differ by more than their intervals allow \(1 of 2 pairs of neighbours\)/;
+    expect(flat(result.err)).toMatch(new RegExp(`doubt: ${told.source}.*\\[strip/neighbours-differ\\]`));
+    expect(readFileSync(join(out, "report.html"), "utf8")).toMatch(told);
+    const json = await run(["continue", survey(3), ...settings, "--out", out, "--replace", "--json"]);
+    expect(JSON.parse(json.out).doubts).toContainEqual(
+      expect.objectContaining({code: "strip/neighbours-differ", count: 0, message: expect.stringMatching(told)}),
+    );
+    const alike = await run(["continue", survey(1), ...settings, "--out", out, "--replace"]);
+    expect(alike.status).toBe(0);
+    expect(alike.err).not.toMatch(/neighbours-differ/);
+  });
+
+  test("--strike scales totals and is kept in record and report; a grid and an oblique line refuse it", async () => {
+    // A line towards azimuth 30 over a strip across 200:260 of its chainage.
+    const rows = surveyText(["L1"], 60).trimEnd().split("\n").slice(1);
+    const [sin, cos] = [0.5, Math.sqrt(0.75)];
+    const placed = rows.map((row) => {
+      const [line, x, height, value] = row.split(",");
+      return `${line},${x},${5000 + Number(x) * sin},${9000 + Number(x) * cos},${height},${value}`;
+    });
+    const survey = fileWith("lines.csv", `line,chainage,x,y,clearance,gravity\n${placed.join("\n")}\n`);
+    const out = join(temporaryFolder(), "out");
+    const result = await run(["continue", survey, ...SETTINGS, "--strike", "90", "--out", out, "--json"]);
+    expect(result.status).toBe(0);
+    const {from_m, to_m, ...strip} = JSON.parse(result.out).strips[0];
+    expect([from_m, to_m]).toEqual([200, 260]);
+    // At 60°, of 60 m along the line 60 sin 60° across.
+    expect(strip["total_kg/m"] / strip["mean_kg/m2"]).toBeCloseTo(60 * Math.sqrt(0.75), 6);
+    expect(JSON.parse(readFileSync(join(out, "record.json"), "utf8")).settings.model.strike).toBe(90);
+    expect(readFileSync(join(out, "report.html"), "utf8")).toContain("Strike of the sources");
+    const oblique = await run(["continue", survey, ...SETTINGS, "--strike", "45", "--out", out, "--replace"]);
+    expect(oblique.status).toBe(3);
+    expect(oblique.err).toMatch(/\[strike\/too-oblique\]/);
+    const grid = ["continue", fileWith("g.tif", gridBytes()), "--observable", "field-vertical", "--noise", "1"];
+    const refused = await run([...grid, "--boundary", "0", "--elevation", "60", "--strike", "90", "--out", `${out}2`]);
+    expect(refused.status).toBe(2);
+    expect(refused.err).toMatch(/\[strike\/grid\]/);
   });
 
   test("the record digests every file as it stands, and holds no path, clock or option of printing", async () => {

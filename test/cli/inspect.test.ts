@@ -1,5 +1,6 @@
 /** A look at files: what is told with much known, and with little. */
 import {describe, expect, test} from "vitest";
+import {effectiveDirection} from "../../lib/potential/effective-direction.ts";
 import {fileWith, gridBytes, run, surveyText} from "./harness.ts";
 
 const flat = (text: string): string => text.replaceAll(/\s+/g, " ");
@@ -120,5 +121,54 @@ describe("inspect", () => {
     const {status, err} = await run(["inspect", "a.csv", "--support", "0:1"]);
     expect(status).toBe(2);
     expect(err).toMatch(/--support is no option here/);
+  });
+
+  describe("the Earth's field along each line", () => {
+    /** A line of total field towards `azimuth`, on a flat map whose north is true. */
+    const magnetic = (azimuth: number): string => {
+      const rows = ["line,x,y,clearance,tfa"];
+      const [east, north] = [Math.sin((azimuth * Math.PI) / 180), Math.cos((azimuth * Math.PI) / 180)];
+      for (let i = 0; i < 40; ++i)
+        rows.push(`M1,${5000 + 5 * i * east},${9000 + 5 * i * north},30,${(20 * Math.sin(i / 6)).toFixed(3)}`);
+      return fileWith("m.csv", `${rows.join("\n")}\n`);
+    };
+    const options = ["--observable", "total-field-anomaly", "--column", "value=tfa"];
+
+    test("is shown where a direction is given, and nothing of it where not", async () => {
+      const survey = magnetic(40);
+      const given = [...options, "--inclination", "62", "--declination", "3"];
+      const {status, out} = await run(["inspect", survey, ...given]);
+      const want = effectiveDirection(62, 3, 40);
+      expect(status).toBe(0);
+      expect(out).toMatch(new RegExp(`^M1 +${want.inclination.toFixed(1)} +${want.beta.toFixed(3)}$`, "m"));
+      for (const line of out.split("\n")) expect(line.length).toBeLessThanOrEqual(100);
+      const [line] = JSON.parse((await run(["inspect", survey, ...given, "--json"])).out).lines;
+      expect(line.fieldAlong.beta).toBeCloseTo(want.beta, 9);
+      expect(line.fieldAlong.inclination).toBeCloseTo(want.inclination, 7);
+      expect((await run(["inspect", survey, ...options])).out).not.toMatch(/β/);
+    });
+
+    test("is a doubt where it is horizontal and square to the line, or where no azimuth is known", async () => {
+      const level = [...options, "--inclination", "0", "--declination", "130"];
+      const {status, out, err} = await run(["inspect", magnetic(40), ...level]);
+      expect(status).toBe(0);
+      expect(flat(err)).toMatch(/β = .* \[direction\/along-strike\]/);
+      expect(out).not.toMatch(/β/);
+      const chainageOnly = fileWith("lines.csv", surveyText());
+      const other = await run(["inspect", chainageOnly, "--inclination", "62", "--declination", "3"]);
+      expect(other.status).toBe(0);
+      expect(flat(other.err)).toMatch(/only its chainage is known.*\[direction\/no-azimuth\]/);
+    });
+
+    test("a day outside the models, or half a direction, is refused", async () => {
+      const survey = magnetic(40);
+      const day = [...options, "--crs", "EPSG:32632", "--date", "1999-01-01"];
+      const late = await run(["inspect", survey, ...day]);
+      expect(late.status).toBe(2);
+      expect(late.err).toMatch(/direction\/date/);
+      const half = await run(["inspect", survey, ...options, "--inclination", "62"]);
+      expect(half.status).toBe(2);
+      expect(half.err).toMatch(/option\/direction/);
+    });
   });
 });

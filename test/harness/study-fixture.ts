@@ -201,7 +201,7 @@ export function lineStudy(options: FixtureOptions = {}): LineStudy {
       height,
       groundHeight: ground.map((z) => z - boundary),
       boundaryLine: undefined,
-    datum: 0,
+      datum: 0,
       boundary: "flat, at elevation 40 m",
       channels: [
         {channel: line.channels[0], response: observable.response(undefined), z: height, noise, noiseFrom: "given"},
@@ -222,6 +222,7 @@ export function lineStudy(options: FixtureOptions = {}): LineStudy {
       modes: 88,
     },
     resolution: {length: 5.1, local: over},
+    gain: undefined,
     averages: {
       value: average,
       lower: average.map((v, j) => v - half[j]!),

@@ -200,6 +200,21 @@ describe("a run over lines", () => {
     for (const coordinates of ["projected", "degrees"] as const) expect(await of(coordinates)).toContain(">50 m<");
   });
 
+  test("puts doubts about the survey as a whole, those found at its end too, before those of lines", async () => {
+    const sink = keptText();
+    const product = reportHtml(sink, about);
+    await product.begin(frameFixture());
+    await product.line(doneLine({notices: [RESIDUAL_DOUBT]}));
+    await product.end([doubt("x/across", "Lines <3> & 4 differ."), doubt("x/across", "So do 5 and 6.")]);
+    const html = sink.text();
+    const doubts = html.slice(html.indexOf('id="doubts"'), html.indexOf("Before anyone relies"));
+    const places = ["Lines &lt;3&gt; &amp; 4 differ.", "So do 5 and 6.", "The residual is not white"].map((words) =>
+      doubts.indexOf(words),
+    );
+    expect(places[0]).toBeGreaterThan(0);
+    expect(places).toEqual([...places].sort((one, other) => one - other));
+  });
+
   test("stays bounded over many lines, with the gravest among those shown in full", async () => {
     const sink = keptText();
     const product = reportHtml(sink, about);
