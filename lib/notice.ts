@@ -7,6 +7,8 @@ export interface Notice {
   readonly message: string;
   /** The line it belongs to; absent for the survey as a whole. */
   readonly line?: string;
+  /** Lines that a doubt about the survey as a whole speaks of. */
+  readonly lines?: readonly string[];
   readonly place?: Place;
   readonly weight: "doubt" | "remark";
   /** True of every line measured like this one, so that it singles none out. */

@@ -100,15 +100,25 @@ function ledger(sink: TextSink) {
   };
 }
 
+/** Rows wait for the end: what a line's neighbours say of it is known last. A few hundred bytes a line. */
 export function linesCsv(sink: TextSink): LineProduct {
   const rows = ledger(sink);
+  const held: {readonly id: string; readonly status: string; readonly figures: LedgerFigures | string}[] = [];
   return {
     begin: rows.begin,
-    line: (outcome: LineOutcome) =>
-      "study" in outcome
-        ? rows.done(outcome.id, outcome.status, figuresOfLine(outcome.study))
-        : rows.without(outcome.id, outcome.status, outcome.failure.message),
-    end: rows.end,
+    line: async (outcome: LineOutcome) => {
+      const {id, status} = outcome;
+      held.push({id, status, figures: "study" in outcome ? figuresOfLine(outcome.study) : outcome.failure.message});
+    },
+    end: async (across = []) => {
+      for (const {id, status, figures} of held)
+        if (typeof figures === "string") await rows.without(id, status, figures);
+        else {
+          const own = across.filter(({lines}) => lines?.includes(id));
+          await rows.done(id, status, {...figures, notices: [...figures.notices, ...own]});
+        }
+      await rows.end();
+    },
   };
 }
 

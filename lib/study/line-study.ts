@@ -70,8 +70,10 @@ function studySquare(
   const apart = signs[0] ?? disagreement(first, panels, model.regional, asGiven);
   const strips = stripsOfLine(line, support, wanted.strips, zones.strips);
   const curve = tradeoffCurve(solver);
-  const choice = namingTies(ties, () =>
-    settings.bound.choose({solver, supportLength: totalLength(support), lines: 1, largestNorm: solver.norm}),
+  const choice = namingTies(
+    ties,
+    () => solver.norm(Infinity),
+    () => settings.bound.choose({solver, supportLength: totalLength(support), lines: 1, largestNorm: solver.norm}),
   );
   const feasible = unlessApart(apart, () =>
     feasibility(solver, choice, () =>

@@ -76,11 +76,15 @@ function noticesOf(answers: readonly Answer[], confidence: number): Notice[] {
     const names = apart.slice(0, NAMED).map(([one, other]) => `${one.id} and ${other.id}`);
     const more = apart.length > NAMED ? `, and ${apart.length - NAMED} more pairs` : "";
     const several = new Set(answers.map((answer) => answer.group)).size > 1 ? ` of group ${group}` : "";
+    const lines = [...new Set(apart.flatMap(([one, other]) => [one.id, other.id]))];
     return [
-      doubt(
-        "strip/neighbours-differ",
-        `Strip ${strip.name}${several}: lines ${names.join(", ")}${more} differ by more than their intervals allow (${apart.length} of ${pairs.length} ${pairs.length === 1 ? "pair" : "pairs"} of neighbours): the ground changes between them and is not two-dimensional there, or a line is off in level, height or place. Compare their rows in strips.csv before you trust either interval.`,
-      ),
+      {
+        ...doubt(
+          "strip/neighbours-differ",
+          `Strip ${strip.name}${several}: lines ${names.join(", ")}${more} differ by more than their intervals allow (${apart.length} of ${pairs.length} ${pairs.length === 1 ? "pair" : "pairs"} of neighbours): the ground changes between them and is not two-dimensional there, or a line is off in level, height or place. Compare their rows in strips.csv before you trust either interval.`,
+        ),
+        lines,
+      },
     ];
   });
 }

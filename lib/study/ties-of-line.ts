@@ -9,6 +9,7 @@ import type {Resolution} from "../inverse/nouns.ts";
 import type {Panels} from "../operators/panels.ts";
 import type {PointReading} from "../operators/readings-of-line.ts";
 import type {Response} from "../potential/kernel.ts";
+import {DELIVERY_UNIT} from "../quantities.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {SurveyLine} from "../survey/line.ts";
 import type {Tie} from "../survey/tie.ts";
@@ -149,20 +150,22 @@ export const tiesHeard = (ties: readonly LineTie[], {channels}: ConditionedLine)
       return {point: {x, z, response, noise: tie.tolerance > 0 ? tie.tolerance : 1e-3 * turned}, value: tie.value};
     });
 
-/** Says which ties cannot be met within the bound. */
-export function namingTies<T>(ties: readonly LineTie[], choose: () => T): T {
+/**
+ * Says which ties cannot be met within the bound, and the least norm that they need.
+ * @param leastNorm of the sources that meet the exact ones, SI·√m
+ */
+export function namingTies<T>(ties: readonly LineTie[], leastNorm: () => number, choose: () => T): T {
   try {
     return choose();
   } catch (error) {
     if (!(error instanceof ModelError) || error.code !== "bound/below-ties") throw error;
     const rows = ties.filter(({tie}) => tie.tolerance === 0).map(({tie}) => tie.place.row);
+    const unit = DELIVERY_UNIT[ties[0].tie.observable.source.fieldDimension];
+    const least = `${(leastNorm() / unit.factor).toPrecision(4)} ${unit.symbol}·√m`;
     throw new ModelError(
       "tie/infeasible",
-      `${error.message} The ties stand in rows ${rows.join(", ")} of the tie file.`,
-      {
-        place: ties[0].tie.place,
-        cause: error,
-      },
+      `${error.message} The ties stand in rows ${rows.join(", ")} of the tie file; the least norm that meets them is ${least}.`,
+      {place: ties[0].tie.place, cause: error},
     );
   }
 }

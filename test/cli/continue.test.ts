@@ -48,7 +48,7 @@ describe("continue over lines", () => {
     }
   });
 
-  test("lines that differ on a strip by more than their intervals allow are told on the screen and in the report", async () => {
+  test("lines that differ on a strip by more than their intervals allow are told on the screen, in the report and in the ledger", async () => {
     /** 10 m above a plate of 0.6 mGal below chainage 150:310, on the last of three lines so many times as strong. */
     const survey = (times: number): string => {
       const {normal} = seededRandom(24);
@@ -69,6 +69,12 @@ describe("continue over lines", () => {
     const told = /Strip dyke: lines L2 and L3 differ by more than their intervals allow \(1 of 2 pairs of neighbours\)/;
     expect(flat(result.err)).toMatch(new RegExp(`doubt: ${told.source}.*\\[strip/neighbours-differ\\]`));
     expect(readFileSync(join(out, "report.html"), "utf8")).toMatch(told);
+    // In the ledger, on the two lines it speaks of.
+    expect(table(out, "lines.csv").map(({line, reason}) => [line, told.test(reason!)])).toEqual([
+      ["L1", false],
+      ["L2", true],
+      ["L3", true],
+    ]);
     const json = await run(["continue", survey(3), ...settings, "--out", out, "--replace", "--json"]);
     expect(JSON.parse(json.out).doubts).toContainEqual(
       expect.objectContaining({code: "strip/neighbours-differ", count: 0, message: expect.stringMatching(told)}),
