@@ -5,9 +5,12 @@ export type {AcquisitionSettings, ChannelSettings} from "./acquisition/settings.
 export {type ErrorCode, InputError, ModelError, NumericalError, type Place, ReportableError} from "./errors.ts";
 
 export type {ByteSink, ByteSource, ScratchStore} from "./formats/byte-source.ts";
+export {readGeoJson} from "./formats/geojson.ts";
+export {areaOf, type MapArea} from "./geometry/map-area.ts";
 export {BOUND_RULES, boundRuleNamed} from "./inverse/rules/catalogue.ts";
 export type {Notice} from "./notice.ts";
 export {OBSERVABLES, observableNamed} from "./potential/catalogue.ts";
+export {LEVEL_QUANTITIES, type LevelQuantity, levelQuantityNamed} from "./potential/level-quantity.ts";
 export type {Observable} from "./potential/observable.ts";
 export {gridProducts, lineProducts} from "./products/catalogue.ts";
 export {recordJson} from "./products/record.ts";
