@@ -92,7 +92,7 @@ function prepare(record: LineRecord, settings: Settings, zonesOf: ZonesOf): Prep
   try {
     const first = condition(line, settings.model.boundary, effectiveDirectionOf(line, settings));
     const conditioned = {...first, notices: [...first.notices, ...cutNotices(first, zones.support)]};
-    const pattern = patternOf(line, settings.model.support.length > 0);
+    const pattern = `${patternOf(line, settings.model.support.length > 0)}${directionOf(first)}`;
     if (zones.support === undefined) return {line, conditioned, zones, key: pattern};
     const support = supportOfLine(conditioned, settings.model, zones.support);
     return {line, conditioned, zones, key: `${pattern} ${support.map(({from, to}) => `${from}:${to}`).join(" ")}`};
@@ -118,6 +118,10 @@ function patternOf(line: SurveyLine, placed: boolean): string {
   runs.push(length);
   return runs.join(" ");
 }
+
+/** Rows share a geometry while the Earth's field along them is the same to a tenth of a degree and a thousandth of β. */
+const directionOf = ({direction}: ConditionedLine): string =>
+  direction === undefined ? "" : ` ${direction.inclination.toFixed(1)}° ${direction.beta.toFixed(3)}`;
 
 /** The first walk: sums over rows, then the one multiplier and bound. */
 async function poolRows(
