@@ -86,7 +86,7 @@ export const ASSUMED: OptionGroup = {
       form: {number: WIDTH},
       help: "widest panel of the source zone in metres",
       default: {
-        value: "a quarter of the least height",
+        value: "a quarter of the least height, an eighth where a gradient is read",
         reason: "finer detail does not reach the sensor; intervals do not depend on the panels",
       },
     },

@@ -37,7 +37,7 @@ export interface ModelSettings {
   readonly strike?: number | undefined;
   /** Known readings that the answer must meet; absent: none. */
   readonly ties?: readonly Tie[] | undefined;
-  /** m; undefined: a quarter of the least height, see `panelsOn`. */
+  /** m; undefined: a quarter of the least height, an eighth with a gradient, see `panelsOfLine`. */
   readonly panel: number | undefined;
   /** Degree of the polynomial estimated together with the source, −1 for none; default 1: anomalies keep a level and a slope of unknown origin. */
   readonly regional: -1 | 0 | 1 | 2 | 3;

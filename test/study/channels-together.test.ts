@@ -61,8 +61,9 @@ function lineOf(sensors: readonly Sensor[], seed = 31): SurveyLine {
 
 const codes = ({notices}: LineStudy): string[] => notices.map(({code}) => code);
 const rules = [
-  ["discrepancy", plainSettings({})],
-  ["a given bound", plainSettings({bound: boundRuleNamed(`norm:${1.2 * Math.sqrt(40) * 1e-5}`, 1)})],
+  // One width of panels for both studies: by default a gradient halves it.
+  ["discrepancy", plainSettings({panel: 2.5})],
+  ["a given bound", plainSettings({panel: 2.5, bound: boundRuleNamed(`norm:${1.2 * Math.sqrt(40) * 1e-5}`, 1)})],
 ] as const;
 
 describe("the gain of further channels", () => {
