@@ -2,17 +2,15 @@
  * Whether a gradient runs the other way from the field beside it: the trade writes it both upward and downward.
  * The field alone says what the gradient should be; one that is against it in sign is told.
  */
-import {estimateSource} from "../inverse/estimate.ts";
 import {discrepancy} from "../inverse/rules/discrepancy.ts";
 import {doubt, type Notice} from "../notice.ts";
 import {correlation} from "../numeric/correlation.ts";
 import {applyInto, forwardOperator} from "../operators/forward.ts";
 import type {Panels} from "../operators/panels.ts";
-import {readingsOfLine, valuesOfLine} from "../operators/readings-of-line.ts";
+import {readingsOfLine} from "../operators/readings-of-line.ts";
 import {projectOutInPlace, regionalBasis} from "../operators/regional.ts";
-import {whiten} from "../operators/whitened.ts";
-import {spectralSolver} from "../solvers/spectral.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
+import {operated} from "./operated.ts";
 
 /** Clearly against: chance correlations of noisy gradients stay within a few tenths. A heuristic. */
 const AGAINST = -0.5;
@@ -22,13 +20,9 @@ export function gradientSignNotices(conditioned: ConditionedLine, panels: Panels
   const fields = {...conditioned, channels: conditioned.channels.filter(({response}) => response.order === 0)};
   const gradients = conditioned.channels.filter(({response}) => response.order === 1);
   if (fields.channels.length === 0 || gradients.length === 0) return [];
-  const readings = readingsOfLine(fields);
-  const values = valuesOfLine(fields);
-  const operator = forwardOperator(readings, panels);
-  const basis = regionalBasis(readings, degree);
-  const solver = spectralSolver(whiten(operator, readings, values, basis), basis.terms);
-  const choice = discrepancy.choose({solver, supportLength: 1, lines: 1, largestNorm: solver.norm});
-  const {density} = estimateSource(solver, choice, operator, readings, basis, values);
+  const {solver} = operated(fields, panels, degree);
+  const {multiplier} = discrepancy.choose({solver, supportLength: 1, lines: 1, largestNorm: solver.norm});
+  const density = solver.estimate(multiplier);
   return gradients.flatMap((gradient) => {
     const one = readingsOfLine({...conditioned, channels: [gradient]});
     const predicted = applyInto(new Float64Array(one.count), forwardOperator(one, panels), density);

@@ -32,12 +32,13 @@ export function tiesOfLine(conditioned: ConditionedLine, ties: readonly Tie[]): 
   return ties
     .filter((tie) => tie.line === line.id)
     .map((tie) => {
-      const x = "chainage" in tie.at ? tie.at.chainage : chainageNear(line, tie, tie.at);
+      const {x, across} = "chainage" in tie.at ? {x: tie.at.chainage, across: 0} : footOf(line, tie, tie.at);
       const heights = Float64Array.from(conditioned.height).sort();
       const reach = REACH * heights[heights.length >> 1];
       let nearest = Infinity;
       for (const station of line.stations.chainage) nearest = Math.min(nearest, Math.abs(station - x));
-      if (!(nearest <= reach)) throw farFrom(line, tie, nearest, reach);
+      const distance = Math.hypot(nearest, across);
+      if (!(distance <= reach)) throw farFrom(line, tie, distance, reach);
       const z = tie.elevation - datum;
       const above = z - boundaryAt(boundaryLine, x);
       // A tie within a millimetre of the boundary is meant to lie on it.
@@ -72,8 +73,12 @@ const farFrom = (line: SurveyLine, tie: Tie, metres: number, reach: number): Inp
     {place: tie.place},
   );
 
-/** Chainage of the foot of the tie on the straight line through the two nearest stations. */
-function chainageNear({stations, id}: SurveyLine, tie: Tie, at: {readonly x: number; readonly y: number}): number {
+/** The foot of the tie on the straight line through the two nearest stations, and its distance off that line; m. */
+function footOf(
+  {stations, id}: SurveyLine,
+  tie: Tie,
+  at: {readonly x: number; readonly y: number},
+): {readonly x: number; readonly across: number} {
   const {x, y, chainage} = stations;
   if (x === undefined || y === undefined)
     throw new InputError(
@@ -81,19 +86,18 @@ function chainageNear({stations, id}: SurveyLine, tie: Tie, at: {readonly x: num
       `The tie is given by x, y, but line ${id} is known by its chainage only. Give the tie's chainage.`,
       {place: tie.place},
     );
-  const order = [...chainage.keys()].sort(
-    (i, j) => Math.hypot(x[i] - at.x, y[i] - at.y) - Math.hypot(x[j] - at.x, y[j] - at.y),
-  );
+  const away = (i: number): number => Math.hypot(x[i] - at.x, y[i] - at.y);
+  const order = [...chainage.keys()].sort((i, j) => away(i) - away(j));
   const a = order[0];
   const b = order.find((i) => Math.abs(chainage[i] - chainage[a]) > 1e-6);
-  if (b === undefined) return chainage[a];
+  if (b === undefined) return {x: chainage[a], across: away(a)};
   const [dx, dy] = [x[b] - x[a], y[b] - y[a]];
-  const share = ((at.x - x[a]) * dx + (at.y - y[a]) * dy) / (dx * dx + dy * dy);
-  const across = Math.abs((at.x - x[a]) * dy - (at.y - y[a]) * dx) / Math.hypot(dx, dy);
-  const along = chainage[a] + share * (chainage[b] - chainage[a]);
-  const scale = Math.abs(chainage[b] - chainage[a]) / Math.hypot(dx, dy);
-  // Off to the side counts as far away too.
-  return across * scale > 1e6 ? Number.NaN : along;
+  const length = Math.hypot(dx, dy);
+  const share = ((at.x - x[a]) * dx + (at.y - y[a]) * dy) / (length * length);
+  // Metres of chainage for one unit of the map, whatever that is.
+  const scale = Math.abs(chainage[b] - chainage[a]) / length;
+  const across = (Math.abs((at.x - x[a]) * dy - (at.y - y[a]) * dx) / length) * scale;
+  return {x: chainage[a] + share * (chainage[b] - chainage[a]), across};
 }
 
 /** What each panel adds to the reading of a tie; on the boundary, the mean over `stretch`. */

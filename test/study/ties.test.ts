@@ -197,3 +197,22 @@ test("intervals know the ties", () => {
   };
   expect(width(TIES)).toBeLessThan(0.8 * width(undefined));
 });
+
+test("by x, y a tie stands at the foot on its line, and one far to the side is refused", () => {
+  const plain = lineWith(0.05, 3);
+  // A line towards 60 degrees over a map in metres.
+  const [east, north] = [Math.sin(Math.PI / 3), Math.cos(Math.PI / 3)];
+  const line = {
+    ...plain,
+    stations: {...plain.stations, x: CHAINAGE.map((x) => 5000 + x * east), y: CHAINAGE.map((x) => 7000 + x * north)},
+  };
+  const at = (along: number, across: number): Tie =>
+    tieAt(0, attraction(40, 20), {
+      at: {x: 5000 + along * east - across * north, y: 7000 + along * north + across * east},
+    });
+  const found = studyLine(line, settingsWith([at(40, 3)])).levels[0].value[CHAINAGE.indexOf(40)];
+  absoluteClose(found, attraction(40, 20), 1e-9, "met exactly; the foot is found to rounding of map coordinates");
+  const error = failure(() => studyLine(line, settingsWith([at(40, 300)])));
+  expect(error).toMatchObject({code: "tie/far", exitStatus: 2});
+  expect(error.message).toMatch(/lies 300 m from/);
+});
