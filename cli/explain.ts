@@ -1,9 +1,10 @@
 /** Every setting in force, where it came from, and why its default is what it is. Nothing is run. */
 import type {Host} from "./nouns.ts";
 import {modelFrom} from "./options/assumed.ts";
+import {observableAsked} from "./options/channels.ts";
 import {JOB_ENTRIES} from "./options/continue-options.ts";
 import {type Asked, allOf, type OptionEntry, oneOf} from "./options/entry.ts";
-import {acquisitionFrom, observableAsked} from "./options/measured.ts";
+import {acquisitionFrom} from "./options/measured.ts";
 import {settingsFrom} from "./options/settings.ts";
 import {wantedFrom} from "./options/wanted.ts";
 import {paragraph} from "./paragraph.ts";

@@ -5,8 +5,8 @@ import type {FileDigest} from "../lib/products/record.ts";
 import type {Tie} from "../lib/survey/tie.ts";
 import {digestOf, withInputs} from "./inputs.ts";
 import type {Host} from "./nouns.ts";
+import {observableAsked} from "./options/channels.ts";
 import {type Asked, allOf} from "./options/entry.ts";
-import {observableAsked} from "./options/measured.ts";
 
 /** @throws {InputError} `host/…`, `tie/…`, `observable/unknown` */
 export async function readTieFiles(

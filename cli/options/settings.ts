@@ -4,9 +4,10 @@ import {OBSERVABLES, observableNamed} from "../../lib/potential/catalogue.ts";
 import type {Settings} from "../../lib/study/settings.ts";
 import type {Tie} from "../../lib/survey/tie.ts";
 import {boundFrom, modelFrom} from "./assumed.ts";
+import {fieldDirectionFrom, observableAsked} from "./channels.ts";
 import {type Asked, oneOf} from "./entry.ts";
 import type {MapFiles} from "./map-file.ts";
-import {acquisitionFrom, fieldDirectionFrom, observableAsked} from "./measured.ts";
+import {acquisitionFrom} from "./measured.ts";
 import {wantedFrom} from "./wanted.ts";
 
 /**
