@@ -12,7 +12,7 @@ import {type Continuum, gramTimes, nodeMatrix, nodesFor} from "../operators/cont
 import type {RegionalBasis} from "../operators/regional.ts";
 
 /** W and what the measures of an interval need of it. */
-interface RegionalReader {
+export interface RegionalReader {
   /** W, terms × count, row-major; Wᵀ W, Wᵀ G W, Wᵀ d. */
   readonly weights: Float64Array;
   readonly products: Float64Array;

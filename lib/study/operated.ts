@@ -74,6 +74,8 @@ interface IntervalQuestion {
   /** M, SI·√m. */
   readonly bound: number;
   readonly confidence: number;
+  /** How many times M will be asked for; default 1. */
+  readonly loosest?: number;
 }
 
 /**
@@ -82,7 +84,7 @@ interface IntervalQuestion {
  */
 export function intervalsOn(
   conditioned: ConditionedLine,
-  {support, panels, degree, bound, confidence}: IntervalQuestion,
+  {support, panels, degree, bound, confidence, loosest = 1}: IntervalQuestion,
   known: readonly {readonly point: PointReading; readonly value: number}[] = [],
 ): {readonly continuum: Continuum; readonly intervals: IntervalSolver} {
   const readings = readingsWithPoints(
@@ -97,5 +99,5 @@ export function intervalsOn(
     continuum,
     sorted,
   );
-  return {continuum, intervals: intervalSolver(continuum, sorted, data, bound, confidence)};
+  return {continuum, intervals: intervalSolver(continuum, sorted, data, {bound, confidence, loosest})};
 }

@@ -74,13 +74,10 @@ export function rowAnswers(geometry: RowGeometry, settings: Settings, bound: num
   const {chainage} = conditioned.line.stations;
   const continuum = continuumOf(geometry.readings, support, boundaryOfPanels(panels));
   const sorted = regionalBasis(continuum, settings.model.regional);
-  const solver = intervalSolver(
-    continuum,
-    sorted,
-    new Float64Array(continuum.count),
+  const solver = intervalSolver(continuum, sorted, new Float64Array(continuum.count), {
     bound,
-    settings.wanted.confidence,
-  );
+    confidence: settings.wanted.confidence,
+  });
   const resolution = resolutionOf(solver, panels, multiplier, chainage);
   const answer = (height: Float64Array, responses: readonly Response[]): RowAnswer => {
     const halfWidth = chainage.map((x, i) => {

@@ -21,6 +21,7 @@ export interface IntervalCase {
   readonly degree?: number;
   readonly confidence?: number;
   readonly values?: Float64Array;
+  readonly loosest?: number;
   readonly layout?: "by size" | "whole" | "windows";
   /** What was read, where it is not the downward component at (x, z). */
   readonly readings?: Readings;
@@ -33,7 +34,12 @@ export function intervalsOf(given: IntervalCase): IntervalSolver {
   const basis = regionalBasis(continuum, degree);
   const values = given.values ?? new Float64Array(continuum.count);
   const readings = Float64Array.from(continuum.place, (i) => values[i]);
-  return intervalSolver(continuum, basis, whitenData(readings, continuum, basis), bound, confidence, layout);
+  return intervalSolver(continuum, basis, whitenData(readings, continuum, basis), {
+    bound,
+    confidence,
+    layout,
+    loosest: given.loosest ?? 1,
+  });
 }
 
 /** What a sensor would read at a point above a flat boundary, or another. */
