@@ -20,9 +20,10 @@
 import {matVecInto} from "../numeric/matmul.ts";
 import {foldedNormalQuantile} from "../numeric/normal.ts";
 import {minimise} from "../numeric/roots.ts";
-import {type Continuum, responseNormSquared} from "../operators/continuum.ts";
-import {type Functional, meanOver} from "../operators/functional.ts";
+import type {Continuum} from "../operators/continuum.ts";
+import type {Functional} from "../operators/functional.ts";
 import type {RegionalBasis} from "../operators/regional.ts";
+import type {RegionalReader} from "./regional-reader.ts";
 import {type Layout, type Window, windowsOf} from "./windows.ts";
 
 /**
@@ -30,8 +31,10 @@ import {type Layout, type Window, windowsOf} from "./windows.ts";
  * noise (Donoho 1994); the range is wide of that on both sides.
  */
 const A_RANGE = [0.02, 400] as const;
-/** What is tried of a mean longer than a window, in the same units. */
-const LONG_TRIALS = [0.1, 1, 10, 100] as const;
+/** How well ln a is found: a width feels 1e-5 of the first, and 1e-3 of the second, where each trial is a solution over the whole line. */
+const PRECISION = 5e-3;
+const LONG_PRECISION = 0.1;
+const NOTHING = new Float64Array();
 
 export interface Interval {
   readonly value: number;
@@ -87,17 +90,8 @@ export function intervalSolver(
   {bound, confidence, loosest = 1, layout = "by size"}: IntervalTerms,
 ): IntervalSolver {
   const windows = windowsOf(continuum, basis, data, bound, loosest, layout);
-  const {reader} = windows;
+  const {terms} = windows;
   const response = new Float64Array(continuum.count);
-
-  /** c ← c − W (Rᵀc), for c over the whole line. */
-  const freeOfRegional = (c: Float64Array): Float64Array => {
-    if (reader === undefined) return c;
-    const gamma = matVecInto(new Float64Array(basis.terms), basis.rows, c, basis.terms, c.length);
-    for (let t = 0; t < basis.terms; ++t)
-      for (let i = 0; i < c.length; ++i) c[i] -= gamma[t] * reader.weights[t * c.length + i];
-    return c;
-  };
 
   /** Readings that say nothing worth their noise are left alone: a = ∞. */
   const blind = (functional: Functional, most: number): Found => {
@@ -110,12 +104,16 @@ export function intervalSolver(
     const window = windows.for(functional);
     const eta = windows.seenBy(window, functional);
     const lambda = window.modes.eigenvalues;
-    const {terms} = window;
-    const shared = new Float64Array(terms);
-    if (reader !== undefined) {
-      functional.respondInto(response, continuum, 0, continuum.count);
-      matVecInto(shared, reader.weights, response, terms, continuum.count);
-    }
+    const regional = terms > 0 ? windows.regionalOn(window) : NOTHING;
+    if (terms > 0) functional.respondInto(response, continuum, 0, continuum.count);
+    /** Wᵀ Pq, by reader. */
+    const shared = new Map<RegionalReader, Float64Array>();
+    const sharedWith = (reader: RegionalReader): Float64Array => {
+      const found =
+        shared.get(reader) ?? matVecInto(new Float64Array(terms), reader.weights, response, terms, continuum.count);
+      shared.set(reader, found);
+      return found;
+    };
     const gamma = new Float64Array(terms);
     const taken = new Float64Array(terms);
     const crossed = new Float64Array(terms);
@@ -123,31 +121,38 @@ export function intervalSolver(
       const a = Math.exp(logA);
       let variance = 0;
       let explained = 0;
-      gamma.fill(0);
-      taken.fill(0);
-      crossed.fill(0);
       for (let k = 0; k < eta.length; ++k) {
         const g = eta[k] / (lambda[k] + a);
         variance += g * g;
         explained += g * g * (lambda[k] + 2 * a);
-        for (let t = 0; t < terms; ++t) {
-          gamma[t] += g * window.regional[k * terms + t];
-          taken[t] += g * window.weights[k * terms + t];
-          crossed[t] += g * window.weightsGram[k * terms + t];
-        }
       }
       let left = functional.normSquared - explained;
-      for (let t = 0; t < terms; ++t) {
-        variance -= 2 * gamma[t] * taken[t];
-        left += 2 * gamma[t] * (shared[t] - crossed[t]);
-        for (let u = 0; u < terms; ++u) {
-          variance += gamma[t] * gamma[u] * reader!.products[t * terms + u];
-          left += gamma[t] * gamma[u] * reader!.gram[t * terms + u];
+      if (terms > 0) {
+        const {reader, weights, weightsGram} = windows.readerOn(window, windows.readerAt(a));
+        const pq = sharedWith(reader);
+        gamma.fill(0);
+        taken.fill(0);
+        crossed.fill(0);
+        for (let k = 0; k < eta.length; ++k) {
+          const g = eta[k] / (lambda[k] + a);
+          for (let t = 0; t < terms; ++t) {
+            gamma[t] += g * regional[k * terms + t];
+            taken[t] += g * weights[k * terms + t];
+            crossed[t] += g * weightsGram[k * terms + t];
+          }
+        }
+        for (let t = 0; t < terms; ++t) {
+          variance -= 2 * gamma[t] * taken[t];
+          left += 2 * gamma[t] * (pq[t] - crossed[t]);
+          for (let u = 0; u < terms; ++u) {
+            variance += gamma[t] * gamma[u] * reader.products[t * terms + u];
+            left += gamma[t] * gamma[u] * reader.gram[t * terms + u];
+          }
         }
       }
       return [Math.sqrt(Math.max(variance, 0)), most * Math.sqrt(Math.max(left, 0))];
     };
-    const logA = shortest((log) => halfWidthOf(...measure(log), confidence), most);
+    const logA = shortest((log) => halfWidthOf(...measure(log), confidence), most, PRECISION);
     const a = Math.exp(logA);
     const [deviation, bias] = measure(logA);
     const halfWidth = halfWidthOf(deviation, bias, confidence);
@@ -155,51 +160,51 @@ export function intervalSolver(
     const value = (): number => {
       let sum = 0;
       for (let k = 0; k < eta.length; ++k) sum += (eta[k] / (lambda[k] + a)) * window.data[k];
-      for (let t = 0; t < terms; ++t) sum -= gamma[t] * reader!.data[t];
+      if (terms > 0) for (let t = 0; t < terms; ++t) sum -= gamma[t] * windows.readerAt(a).data[t];
       return sum;
     };
     const weights = (): Float64Array => {
       const c = new Float64Array(continuum.count);
-      addOnModes(c, window, eta, a, 1);
-      return freeOfRegional(c);
+      addOnModes(c, window, eta, a);
+      if (terms > 0) freeOfRegionalInPlace(c, basis, windows.readerAt(a));
+      return c;
     };
     return {deviation, bias, halfWidth, value, weights};
   };
 
-  /** A mean longer than a window: the weighted sum of the estimates of its pieces, with the exact s and b of the sum. */
+  /** A mean longer than a window: from the whole line, at its best `a` among a few. */
   const long = (functional: Functional, most: number): Found => {
-    const length = functional.to - functional.from;
-    const pieces = Math.ceil(length / windows.piece);
-    const parts = Array.from({length: pieces}, (_, k) => {
-      const piece = {
-        from: functional.from + (length * k) / pieces,
-        to: functional.from + (length * (k + 1)) / pieces,
-      };
-      const part = meanOver(piece, continuum.support, continuum.boundary);
-      const window = windows.for(part);
-      return {window, eta: windows.seenBy(window, part)};
-    });
+    const line = windows.line();
     const all = functional.respondInto(new Float64Array(continuum.count), continuum, 0, continuum.count);
-    let best = blind(functional, most);
-    for (const factor of LONG_TRIALS) {
-      const c = new Float64Array(continuum.count);
-      for (const {window, eta} of parts) addOnModes(c, window, eta, factor / (most * most), 1 / pieces);
-      freeOfRegional(c);
+    const at = (logA: number): Found => {
+      const a = Math.exp(logA);
+      const c = line.solve(a, all);
+      if (terms > 0) freeOfRegionalInPlace(c, basis, windows.readerFor(a));
+      const gram = line.gram(c);
       let variance = 0;
-      let cross = 0;
+      let left = functional.normSquared;
       let value = 0;
       for (let i = 0; i < c.length; ++i) {
         variance += c[i] * c[i];
-        cross += c[i] * all[i];
+        left += c[i] * (gram[i] - 2 * all[i]);
         value += c[i] * data[i];
       }
-      const left = functional.normSquared - 2 * cross + responseNormSquared(continuum, c);
       const deviation = Math.sqrt(variance);
       const bias = most * Math.sqrt(Math.max(left, 0));
       const halfWidth = halfWidthOf(deviation, bias, confidence);
-      if (halfWidth < best.halfWidth) best = {deviation, bias, halfWidth, value: () => value, weights: () => c};
-    }
-    return best;
+      return {deviation, bias, halfWidth, value: () => value, weights: () => c};
+    };
+    const tried = new Map<number, Found>();
+    const width = (logA: number): number => {
+      const answer = at(logA);
+      tried.set(logA, answer);
+      return answer.halfWidth;
+    };
+    shortest(width, most, LONG_PRECISION);
+    return [...tried.values()].reduce(
+      (best, next) => (next.halfWidth < best.halfWidth ? next : best),
+      blind(functional, most),
+    );
   };
 
   const found = (functional: Functional, loosened: number): Found => {
@@ -230,14 +235,20 @@ export function intervalSolver(
   };
 }
 
-/** Adds `share` times Σ η_k/(λ_k + a) u_k to weights over the whole line. */
-function addOnModes(c: Float64Array, window: Window, eta: Float64Array, a: number, share: number): void {
-  const {modes, first, last} = window;
+/** Adds Σ η_k/(λ_k + a) u_k to weights over the whole line. */
+function addOnModes(c: Float64Array, {modes, first, last}: Window, eta: Float64Array, a: number): void {
   for (let k = 0; k < modes.count; ++k) {
-    const g = (share * eta[k]) / (modes.eigenvalues[k] + a);
+    const g = eta[k] / (modes.eigenvalues[k] + a);
     const row = k * (last - first);
     for (let i = first; i < last; ++i) c[i] += g * modes.left[row + i - first];
   }
+}
+
+/** c ← c − W (Rᵀc), for c over the whole line. */
+function freeOfRegionalInPlace(c: Float64Array, basis: RegionalBasis, reader: RegionalReader): void {
+  const gamma = matVecInto(new Float64Array(basis.terms), basis.rows, c, basis.terms, c.length);
+  for (let t = 0; t < basis.terms; ++t)
+    for (let i = 0; i < c.length; ++i) c[i] -= gamma[t] * reader.weights[t * c.length + i];
 }
 
 /** cv(b/s)·s; all bias where nothing is read. */
@@ -246,8 +257,8 @@ function halfWidthOf(deviation: number, bias: number, confidence: number): numbe
   return foldedNormalQuantile(bias / deviation, confidence) * deviation;
 }
 
-/** ln a with the shortest interval, to half a per cent in a: the width is flat there, its own error second order in that. */
-function shortest(width: (logA: number) => number, bound: number): number {
+/** ln a with the shortest interval; the width is flat there, its own error second order in that of ln a. */
+function shortest(width: (logA: number) => number, bound: number, precision: number): number {
   const unit = -2 * Math.log(bound);
-  return minimise(width, unit + Math.log(A_RANGE[0]), unit + Math.log(A_RANGE[1]), 5e-3).x;
+  return minimise(width, unit + Math.log(A_RANGE[0]), unit + Math.log(A_RANGE[1]), precision).x;
 }

@@ -7,8 +7,9 @@ import {matVecInto, multiplyTransposedInto} from "../numeric/matmul.ts";
 import {type Continuum, nodeMatrix, nodesFor} from "../operators/continuum.ts";
 import type {Functional} from "../operators/functional.ts";
 import {projectOutInPlace, projectOutOfColumnsInPlace, type RegionalBasis} from "../operators/regional.ts";
-import {type DataModes, dataModes} from "../spectral/singular-system.ts";
+import {dataModes} from "../spectral/singular-system.ts";
 import {type RegionalReader, regionalReader} from "./regional-reader.ts";
+import {type Block, type Patch, type WholeLine, wholeLine} from "./whole-line.ts";
 
 /** Lines with no more stations than this, or no more nodes than the next, are one window. Heuristics, for speed alone. */
 const WHOLE_STATIONS = 480;
@@ -23,18 +24,20 @@ const LEAST_STATIONS = 48;
 /** Modes with λ below this share of 1/M² are counted as bias: a relative change of the half-width below 1e-4. */
 const MODE_FLOOR = 1e-5;
 
+/** Readers of the regional are made for values of a this far apart, as a factor; the nearest one serves. A heuristic. */
+const READER_STEP = 6;
+
 /** One window or many; by size of the line unless a test asks. */
 export type Layout = "by size" | "whole" | "windows";
 
-export interface Window {
-  readonly first: number;
-  readonly last: number;
-  readonly modes: DataModes;
+export interface Window extends Block {
   /** u_kᵀ d. */
   readonly data: Float64Array;
-  /** u_kᵀ R, u_kᵀ W and u_kᵀ G W, modes × terms; zero terms where the regional was projected out before. */
-  readonly terms: number;
-  readonly regional: Float64Array;
+}
+
+/** A reader of the regional as a window sees it: u_kᵀ W and u_kᵀ G W, modes × terms. */
+export interface WindowReader {
+  readonly reader: RegionalReader;
   readonly weights: Float64Array;
   readonly weightsGram: Float64Array;
 }
@@ -42,15 +45,21 @@ export interface Window {
 export interface Windows {
   /** Whether the whole line is the one window; its regional is then projected out of modes, data and responses. */
   readonly whole: boolean;
-  /** Undefined where no window needs it. */
-  readonly reader: RegionalReader | undefined;
   /** The longest mean that one window can serve, m. */
   readonly reach: number;
-  /** The pieces that a longer mean is cut into. */
-  readonly piece: number;
+  /** The whole line, for numbers beyond the reach of windows; not where it is one window. */
+  line(): WholeLine;
   for(functional: Functional): Window;
   /** The functional seen by a window's modes: η_k = u_kᵀ Pq. */
   seenBy(window: Window, functional: Functional): Float64Array;
+  /** Terms of the regional that a window must be freed of: none where they were projected out before. */
+  readonly terms: number;
+  /** u_kᵀ R, modes × terms. */
+  regionalOn(window: Window): Float64Array;
+  /** The reader for about this `a`, the same object for all `a` near by; and the one for `a` itself. */
+  readerAt(a: number): RegionalReader;
+  readerFor(a: number): RegionalReader;
+  readerOn(window: Window, reader: RegionalReader): WindowReader;
 }
 
 /**
@@ -73,9 +82,9 @@ export function windowsOf(
     (layout === "by size" &&
       (continuum.count <= WHOLE_STATIONS || nodesFor(continuum, 0, continuum.count).count <= WHOLE_NODES));
   const windows = new Map<string, Window>();
-  const reader = whole || basis.terms === 0 ? undefined : regionalReader(continuum, basis, data, bound);
   const response = new Float64Array(continuum.count);
   const floor = MODE_FLOOR / (loosest * bound) ** 2;
+  const terms = whole ? 0 : basis.terms;
 
   const windowOn = (first: number, last: number): Window => {
     const nodes = nodesFor(continuum, first, last);
@@ -83,23 +92,8 @@ export function windowsOf(
     const rows = last - first;
     if (whole) projectOutOfColumnsInPlace(matrix, nodes.count, basis);
     const modes = dataModes(matrix, rows, nodes.count, floor);
-    const terms = reader === undefined ? 0 : basis.terms;
-    const onModes = (vectors: Float64Array): Float64Array => {
-      const part = new Float64Array(terms * rows);
-      for (let t = 0; t < terms; ++t)
-        part.set(vectors.subarray(t * continuum.count + first, t * continuum.count + last), t * rows);
-      return multiplyTransposedInto(new Float64Array(modes.count * terms), modes.left, part, modes.count, rows, terms);
-    };
-    return {
-      first,
-      last,
-      modes,
-      data: matVecInto(new Float64Array(modes.count), modes.left, data.subarray(first, last), modes.count, rows),
-      terms,
-      regional: reader === undefined ? new Float64Array() : onModes(basis.rows),
-      weights: reader === undefined ? new Float64Array() : onModes(reader.weights),
-      weightsGram: reader === undefined ? new Float64Array() : onModes(reader.gramWeights),
-    };
+    const seen = matVecInto(new Float64Array(modes.count), modes.left, data.subarray(first, last), modes.count, rows);
+    return {first, last, modes, data: seen};
   };
   const remembered = (first: number, last: number): Window => {
     const key = `${first}-${last}`;
@@ -107,22 +101,50 @@ export function windowsOf(
     windows.set(key, found);
     return found;
   };
+  const blockAt = (x: number, core: number): number => Math.floor((x - continuum.x[0]) / core);
+  const around = (from: number, to: number, scale: number): Window => {
+    const core = WINDOW_CORE * scale;
+    const left = continuum.x[0] + core * blockAt(from, core);
+    const right = continuum.x[0] + core * (1 + blockAt(to, core));
+    return remembered(...stationsAround(continuum, left, right, scale));
+  };
+
+  const cover = (): Patch[] => {
+    const core = WINDOW_CORE * height;
+    const blocks = 1 + blockAt(continuum.x[continuum.count - 1], core);
+    return Array.from({length: blocks}, (_, k) => {
+      const from = continuum.x[0] + core * k;
+      return {block: around(from, from, height), from, to: from + core};
+    });
+  };
+  const lines = new Map<"line", WholeLine>();
+  const line = (): WholeLine =>
+    remember(lines, "line", () => wholeLine(continuum, {patches: cover(), margin: WINDOW_MARGIN * height}));
+  const readers = new Map<number, RegionalReader>();
+  const readerFor = (a: number): RegionalReader => regionalReader(line(), basis, data, a);
+  const seenReaders = new Map<RegionalReader, Map<Window, WindowReader>>();
+  const onModes = ({first, last, modes}: Window, vectors: Float64Array): Float64Array => {
+    const rows = last - first;
+    const part = new Float64Array(terms * rows);
+    for (let t = 0; t < terms; ++t)
+      part.set(vectors.subarray(t * continuum.count + first, t * continuum.count + last), t * rows);
+    return multiplyTransposedInto(new Float64Array(modes.count * terms), modes.left, part, modes.count, rows, terms);
+  };
+  const regionals = new Map<Window, Float64Array>();
+
   return {
     whole,
-    reader,
     reach: whole ? Infinity : 2 * WINDOW_CORE * height,
-    piece: WINDOW_CORE * height,
+    line,
+    terms,
     for(functional) {
       if (whole) return remembered(0, continuum.count);
       const scale = functional.spread > height ? WIDEST_WINDOW * height : height;
-      const core = WINDOW_CORE * scale;
+      const {from, to} = functional;
       // Whole blocks, so that neighbouring functionals share a window.
-      const blockOf = (x: number): number => Math.floor((x - continuum.x[0]) / core);
-      const middle = blockOf(0.5 * (functional.from + functional.to));
-      const spans = functional.to - functional.from > core;
-      const left = continuum.x[0] + core * (spans ? blockOf(functional.from) : middle);
-      const right = continuum.x[0] + core * (1 + (spans ? blockOf(functional.to) : middle));
-      return remembered(...stationsAround(continuum, left, right, scale));
+      if (to - from > WINDOW_CORE * scale) return around(from, to, scale);
+      const middle = 0.5 * (from + to);
+      return around(middle, middle, scale);
     },
     seenBy(window, functional) {
       functional.respondInto(response, continuum, window.first, window.last);
@@ -136,7 +158,30 @@ export function windowsOf(
         window.last - window.first,
       );
     },
+    regionalOn: (window) => remember(regionals, window, () => onModes(window, basis.rows)),
+    readerAt(a) {
+      const place = Math.round(Math.log(a * bound * bound) / Math.log(READER_STEP));
+      return remember(readers, place, () => readerFor(READER_STEP ** place / (bound * bound)));
+    },
+    readerFor,
+    readerOn(window, reader) {
+      const seen = remember(seenReaders, reader, () => new Map<Window, WindowReader>());
+      return remember(seen, window, () => ({
+        reader,
+        weights: onModes(window, reader.weights),
+        weightsGram: onModes(window, reader.gramWeights),
+      }));
+    },
   };
+}
+
+/** What `kept` holds for `key`, made now if it was not asked for before. */
+function remember<Key, Value>(kept: Map<Key, Value>, key: Key, make: () => Value): Value {
+  const found = kept.get(key);
+  if (found !== undefined) return found;
+  const made = make();
+  kept.set(key, made);
+  return made;
 }
 
 /** Height of reading i above the boundary under it, m. */
