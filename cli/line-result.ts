@@ -4,6 +4,8 @@ import type {Observable} from "../lib/potential/observable.ts";
 import {deliveryOf} from "../lib/report/delivery.ts";
 import {stripAnswer} from "../lib/report/strip-answer.ts";
 import type {LineOutcome} from "../lib/study/outcome.ts";
+import {boundsResult} from "./bounds-result.ts";
+import {reachResult} from "./reach-result.ts";
 import {type Column, figure, textTable} from "./table.ts";
 
 export interface RunResult<Outcome> {
@@ -25,6 +27,9 @@ export function lineResult(observable: Observable, confidence: number): RunResul
   const stripRows: string[][] = [];
   const lines: Record<string, unknown>[] = [];
   const strips: Record<string, unknown>[] = [];
+
+  const bounds = boundsResult(delivery);
+  const reach = reachResult();
 
   const addStrip = (line: string, estimate: StripEstimate, basis: string): void => {
     const answer = stripAnswer(estimate, delivery);
@@ -93,9 +98,13 @@ export function lineResult(observable: Observable, confidence: number): RunResul
         misfit_expected: expected,
         [`noise_${reading}`]: noise,
         resolution_m: resolution.length,
+        resolution_worst_m: resolution.worst.length,
+        trusted_level_m: study.trust === undefined || Number.isNaN(study.trust.level) ? null : study.trust.level,
         doubts: doubts.map(({code}) => code),
       });
       for (const strip of study.strips) addStrip(id, strip, choice.basis);
+      bounds.add(id, study);
+      reach.add(id, study);
     },
     text: () => {
       const heads = [
@@ -116,8 +125,12 @@ export function lineResult(observable: Observable, confidence: number): RunResul
         right(`total ${total}`),
         right(interval),
       ];
-      return textTable(heads, lineRows) + (stripRows.length === 0 ? "" : `\n${textTable(stripHeads, stripRows)}`);
+      const stripsTable = stripRows.length === 0 ? "" : `\n${textTable(stripHeads, stripRows)}`;
+      return textTable(heads, lineRows) + stripsTable + bounds.text() + reach.text();
     },
-    json: () => ({lines, strips}),
+    json: () => {
+      const assumed = bounds.json();
+      return {lines, strips, ...(assumed.length === 0 ? {} : {at_bounds: assumed})};
+    },
   };
 }

@@ -1,5 +1,6 @@
 /** Options that say which answers are wanted, and how they become settings. */
 import {type LevelSetting, levelLabel} from "../../lib/continuation/level-profile.ts";
+import {DEFAULT_TRUST_FRACTION, refuseTrustOf} from "../../lib/continuation/trust-fraction.ts";
 import {InputError} from "../../lib/errors.ts";
 import type {Strip} from "../../lib/inverse/nouns.ts";
 import {BOUNDARY_FIELD, LEVEL_QUANTITIES, levelQuantityNamed} from "../../lib/potential/level-quantity.ts";
@@ -23,6 +24,13 @@ const PROBABILITY: Need = {
   example: DEFAULT_CONFIDENCE,
   above: 0,
   below: 1,
+};
+
+const FRACTION: Need = {
+  words: "a share of the range of the field, above 0 and at most 1",
+  example: `${DEFAULT_TRUST_FRACTION}`,
+  above: 0,
+  most: 1,
 };
 
 export const WANTED: OptionGroup = {
@@ -70,6 +78,16 @@ export const WANTED: OptionGroup = {
       default: {value: DEFAULT_CONFIDENCE, reason: "custom: 19 intervals in 20 are to hold the truth"},
     },
     {
+      name: "trust-fraction",
+      value: "F",
+      form: {number: FRACTION},
+      help: "depth to trust of a survey line: the lowest level at which the interval is narrower than this share of the range of the field along the line; below it a level is more bound than data",
+      default: {
+        value: `${DEFAULT_TRUST_FRACTION}`,
+        reason: "custom: an anomaly four times as large as its interval can be read with its shape",
+      },
+    },
+    {
       name: "also",
       value: "KIND",
       repeated: true,
@@ -114,7 +132,7 @@ function alsoFrom(asked: Asked): AlsoWord[] {
 
 /**
  * @param maps files of polygons by their paths; undefined: they are left out
- * @throws {InputError} `option/…`, `strip/no-name`, `polygon/…`
+ * @throws {InputError} `option/…`, `trust/no-interval`, `strip/no-name`, `polygon/…`
  */
 export function wantedFrom(asked: Asked, maps?: MapFiles): WantedSettings {
   // A level asked twice, 10 and 10.0 alike, is one level.
@@ -138,11 +156,15 @@ export function wantedFrom(asked: Asked, maps?: MapFiles): WantedSettings {
       );
   });
   const also = alsoFrom(asked);
+  const levelQuantity = levelQuantityNamed(oneOf(asked, "level-observable") ?? BOUNDARY_FIELD.name);
+  const fraction = oneOf(asked, "trust-fraction");
+  if (fraction !== undefined) refuseTrustOf(levelQuantity);
   return {
-    levelQuantity: levelQuantityNamed(oneOf(asked, "level-observable") ?? BOUNDARY_FIELD.name),
+    levelQuantity,
     levels: levels.size === 0 ? [levelFrom(DEFAULT_LEVEL)] : [...levels.values()],
     strips,
     confidence: numberFor("--confidence", oneOf(asked, "confidence") ?? DEFAULT_CONFIDENCE, PROBABILITY),
+    trustFraction: numberFor("--trust-fraction", fraction ?? `${DEFAULT_TRUST_FRACTION}`, FRACTION),
     ...(also.length === 0 ? {} : {also}),
   };
 }

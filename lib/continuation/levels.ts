@@ -2,11 +2,9 @@
 import {InputError, ModelError} from "../errors.ts";
 import {boundaryAt} from "../geometry/boundary-line.ts";
 import {lengthOf} from "../geometry/interval.ts";
-import {stretchAt} from "../inverse/averages.ts";
-import type {Interval, IntervalSolver} from "../inverse/intervals.ts";
+import type {IntervalSolver} from "../inverse/intervals.ts";
 import type {Resolution} from "../inverse/nouns.ts";
 import type {Continuum} from "../operators/continuum.ts";
-import {fieldAt, meanOver} from "../operators/functional.ts";
 import type {Panels} from "../operators/panels.ts";
 import type {EffectiveDirection} from "../potential/effective-direction.ts";
 import type {Response} from "../potential/kernel.ts";
@@ -14,6 +12,7 @@ import type {LevelQuantity} from "../potential/level-quantity.ts";
 import type {SourceLaw} from "../potential/observable.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import {levelRowInto} from "./field-on-level.ts";
+import {levelFunctional} from "./level-functional.ts";
 import {type LevelProfile, type LevelSetting, levelLabel} from "./level-profile.ts";
 
 /** What a level is computed from. */
@@ -36,8 +35,8 @@ export interface LevelQuestion {
  * @throws {ModelError} `level/no-ground` for a level above a ground that is not known, `level/below-boundary`, `level/on-boundary`
  */
 export function continueField(setting: LevelSetting, question: LevelQuestion): LevelProfile {
-  const {conditioned, panels, density, continuum, solver, resolution, quantity} = question;
-  const {support, boundary} = continuum;
+  const {conditioned, panels, density, continuum, solver, quantity} = question;
+  const {boundary} = continuum;
   const {observable} = conditioned.channels[0].channel;
   const {chainage} = conditioned.line.stations;
   const height = levelHeights(setting, conditioned);
@@ -60,13 +59,9 @@ export function continueField(setting: LevelSetting, question: LevelQuestion): L
     );
     const [response] = responses;
     if (responses.length > 1 || (height[i] === 0 && boundary !== undefined)) continue;
-    let answer: Interval;
-    if (height[i] > 0) answer = solver.interval(fieldAt(x, y + height[i], response, continuum));
-    else {
-      const stretch = stretchAt(panels, resolution, x);
-      if (stretch !== undefined) averagedOver[i] = lengthOf(stretch);
-      answer = stretch === undefined ? {value: 0, halfWidth: 0} : solver.interval(meanOver(stretch, support));
-    }
+    const asked = levelFunctional(question, x, height[i], response);
+    if (asked?.stretch !== undefined) averagedOver[i] = lengthOf(asked.stretch);
+    const answer = asked === undefined ? {value: 0, halfWidth: 0} : solver.interval(asked.functional);
     lower[i] = answer.value - answer.halfWidth;
     upper[i] = answer.value + answer.halfWidth;
   }

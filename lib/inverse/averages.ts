@@ -1,7 +1,7 @@
 /** Resolution of the estimate along the support, and averages of f no narrower than it. */
 import type {Interval, Support} from "../geometry/interval.ts";
 import {lengthOf} from "../geometry/interval.ts";
-import {densityAt, meanOver} from "../operators/functional.ts";
+import {densityAt, type Functional, meanOver} from "../operators/functional.ts";
 import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
 import type {IntervalSolver} from "./intervals.ts";
 import type {PanelAverages, Resolution} from "./nouns.ts";
@@ -21,9 +21,17 @@ export function resolutionOf(
 ): Resolution {
   const boundary = boundaryOfPanels(panels);
   const local = panels.centre.map((x) => 1 / solver.resolvingPower(densityAt(x, boundary), multiplier));
-  const above = Float64Array.from([...stations].flatMap((x) => localAt(panels, local, x)?.length ?? [])).sort();
-  const lengths = above.length > 0 ? above : Float64Array.from(local).sort();
-  return {length: lengths[lengths.length >> 1], local};
+  const above = [...stations].flatMap((at) => {
+    const found = localAt(panels, local, at);
+    return found === undefined ? [] : [{at, length: found.length}];
+  });
+  const places = above.length > 0 ? above : Array.from(local, (length, j) => ({at: panels.centre[j], length}));
+  const lengths = Float64Array.from(places, ({length}) => length).sort();
+  // Of equals the one of least chainage, whatever the order of the file.
+  const worst = places.reduce((most, place) =>
+    place.length > most.length || (place.length === most.length && place.at < most.at) ? place : most,
+  );
+  return {length: lengths[lengths.length >> 1], local, worst};
 }
 
 /** Resolution at x, between panel centres as their weighted geometric mean so that no panel shows in it, and its part of the support; undefined off the support. */
@@ -50,6 +58,17 @@ export function stretchAt(panels: Panels, resolution: Resolution, x: number): In
   const length = Math.min(Math.max(resolution.length, found.length), lengthOf(part));
   const from = Math.min(Math.max(x - 0.5 * length, part.from), part.to - length);
   return {from, to: from + length};
+}
+
+/** The mean over the stretch at x; undefined off the support. */
+export function averagedAt(
+  panels: Panels,
+  resolution: Resolution,
+  support: Support,
+  x: number,
+): Functional | undefined {
+  const stretch = stretchAt(panels, resolution, x);
+  return stretch && meanOver(stretch, support, boundaryOfPanels(panels));
 }
 
 export function averagesOn(

@@ -61,6 +61,11 @@ export interface IntervalSolver {
   affine(functional: Functional, loosened?: number): AffineEstimate;
   /** R(x, x) of the averaging kernel at multiplier α, 1/m, at the place of a point functional. */
   resolvingPower(point: Functional, multiplier: number): number;
+  /**
+   * w of the averaging kernel R(x, ·) = Σ w_i p_i at multiplier α, x the place of a point functional: its common part
+   * with any functional is Σ w_i times what reading i has in common with that. For readings in the order of the continuum.
+   */
+  kernelWeights(point: Functional, multiplier: number): Float64Array;
 }
 
 export interface IntervalTerms {
@@ -231,6 +236,12 @@ export function intervalSolver(
       let power = 0;
       for (let k = 0; k < eta.length; ++k) power += (eta[k] * eta[k]) / (window.modes.eigenvalues[k] + multiplier);
       return power;
+    },
+    kernelWeights(point, multiplier) {
+      const window = windows.for(point);
+      const weights = new Float64Array(continuum.count);
+      addOnModes(weights, window, windows.seenBy(window, point), multiplier);
+      return weights;
     },
   };
 }

@@ -101,4 +101,17 @@ export interface Resolution {
   readonly length: number;
   /** 1/R(x, x) at each panel centre, R the averaging kernel, m. */
   readonly local: Float64Array;
+  /** The widest below a station (or on the support, where no station lies above it), and its chainage: at line ends and gaps. */
+  readonly worst: {readonly length: number; readonly at: number};
+}
+
+/** R(x, ·): what the estimate at x is an average of f with; zero off the support. */
+export interface AveragingKernel {
+  /** x, m. */
+  readonly at: number;
+  /** 1/R(x, x), m. */
+  readonly width: number;
+  /** Chainages t, increasing, and R(x, t), 1/m. */
+  readonly chainage: Float64Array;
+  readonly value: Float64Array;
 }

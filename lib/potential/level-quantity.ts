@@ -16,6 +16,8 @@ export interface LevelQuantity {
   /** Which sources it can be asked of; undefined for any. */
   readonly method: SourceLaw["method"] | undefined;
   dimension(source: SourceLaw): Dimension;
+  /** The length of two responses: no interval is known for it. Absent: one response. */
+  readonly isAmplitude?: true;
   /** One response, or two whose root of squares is meant. */
   responses(direction: EffectiveDirection | undefined): readonly Response[];
 }
@@ -72,6 +74,7 @@ export const LEVEL_QUANTITIES: readonly LevelQuantity[] = [
     needsDirection: false,
     method: undefined,
     dimension: (source) => source.fieldDimension,
+    isAmplitude: true,
     responses: () => [F, {re: 0, im: 1, order: 0}],
   },
   {
@@ -80,6 +83,7 @@ export const LEVEL_QUANTITIES: readonly LevelQuantity[] = [
     needsDirection: false,
     method: undefined,
     dimension: gradientOf,
+    isAmplitude: true,
     responses: () => [
       {re: 1, im: 0, order: 1},
       {re: 0, im: 1, order: 1},

@@ -2,6 +2,7 @@
 
 import type {Settings} from "../study/settings.ts";
 import type {AlsoWord} from "./also.ts";
+import {boundsAssumedCsv} from "./bounds-assumed-csv.ts";
 import {gridRasters} from "./grid-rasters.ts";
 import {gridReportHtml} from "./grid-report-html.ts";
 import {levelsCsv} from "./levels-csv.ts";
@@ -19,6 +20,8 @@ export interface LineProductKind {
   readonly file: string;
   /** The word of `--also` that asks for it; absent: always written. */
   readonly also?: AlsoWord;
+  /** Absent: whatever the bound. */
+  readonly withoutBound?: true;
   /** One sentence for help texts. */
   readonly summary: string;
   make(opening: Opening, about: RunAbout): Promise<LineProduct>;
@@ -51,6 +54,12 @@ const LINE_PRODUCTS: readonly LineProductKind[] = [
     file: "strips.csv",
     summary: "mean and total of every strip in physical units, with intervals",
     make: async ({openText}) => stripsCsv(await openText("strips.csv")),
+  },
+  {
+    file: "bounds_assumed.csv",
+    withoutBound: true,
+    summary: "where no bound was given: the answers at half, once, twice and four times the one that was assumed",
+    make: async ({openText}) => boundsAssumedCsv(await openText("bounds_assumed.csv")),
   },
   {
     file: "lines.csv",
@@ -88,8 +97,11 @@ export const GRID_PRODUCTS: readonly GridProductKind[] = [
 ];
 
 /** Those that a run with these settings writes. */
-export const lineProductKinds = ({wanted}: Settings): readonly LineProductKind[] =>
-  LINE_PRODUCTS.filter(({also}) => also === undefined || wanted.also?.includes(also));
+export const lineProductKinds = ({wanted, bound}: Settings): readonly LineProductKind[] =>
+  LINE_PRODUCTS.filter(
+    ({also, withoutBound}) =>
+      (also === undefined || wanted.also?.includes(also)) && (withoutBound === undefined || bound.name !== "given"),
+  );
 
 /** Opens the files of a run over lines; `begin` none before all are open. */
 export async function lineProducts(opening: Opening, about: RunAbout): Promise<readonly LineProduct[]> {

@@ -19,6 +19,8 @@ interface LedgerFigures {
   readonly noise: number;
   readonly resolution: number;
   readonly degreesOfFreedom: number;
+  /** The lowest level to trust, m; NaN where there is none; absent: not looked for. */
+  readonly trusted?: number;
   readonly notices: readonly Notice[];
 }
 
@@ -33,6 +35,7 @@ const figuresOfLine = (study: LineStudy): LedgerFigures => ({
   noise: study.conditioned.channels[0]!.noise,
   resolution: study.resolution.length,
   degreesOfFreedom: study.estimate.degreesOfFreedom,
+  trusted: study.trust?.level ?? Number.NaN,
   notices: study.notices,
 });
 
@@ -46,7 +49,7 @@ const reasonOf = (figures: LedgerFigures): string =>
   ].join("; ");
 
 /** Columns after `reason`, for a line without an answer. */
-const NO_FIGURES: readonly string[] = Array.from({length: 12}, () => "");
+const NO_FIGURES: readonly string[] = Array.from({length: 13}, () => "");
 
 function ledger(sink: TextSink) {
   const table: CsvTable = csvTable(sink);
@@ -70,6 +73,7 @@ function ledger(sink: TextSink) {
         `noise_${delivery.reading}`,
         "resolution_m",
         "degrees_of_freedom",
+        "trusted_level_m",
       ]);
     },
     done: async (id: string, status: string, figures: LedgerFigures): Promise<void> => {
@@ -89,6 +93,7 @@ function ledger(sink: TextSink) {
         csvNumber(delivery.toReading(figures.noise)),
         csvNumber(figures.resolution),
         csvNumber(figures.degreesOfFreedom),
+        csvNumber(figures.trusted),
       ]);
       await table.flush();
     },

@@ -23,11 +23,12 @@ export function sourceCsv(sink: TextSink): LineProduct {
         `upper_${u}`,
         "averaged_over_m",
         "interval_basis",
+        "resolution_m",
       ]);
     },
     line: async (outcome) => {
       if (!("study" in outcome)) return;
-      const {line, panels, estimate, averages, choice} = outcome.study;
+      const {line, panels, estimate, averages, choice, resolution} = outcome.study;
       const id = csvCell(outcome.id);
       const field = (si: number | undefined): string => csvNumber(delivery.toField(si!));
       for (let j = 0; j < panels.count; ++j) {
@@ -44,6 +45,7 @@ export function sourceCsv(sink: TextSink): LineProduct {
           field(averages.upper[j]),
           csvNumber(averages.averagedOver[j]),
           choice.basis,
+          csvNumber(resolution.local[j]),
         ]);
       }
       await table.flush();

@@ -1,12 +1,15 @@
 /** All about one line: strips, doubts, the figure, why this multiplier, what the intervals rest on. */
 import type {LineStudy} from "../study/outcome.ts";
+import {boundsTable} from "./bounds-table.ts";
 import {deliveryOf} from "./delivery.ts";
+import {kernelsFigure} from "./figures/kernels.ts";
 import {LEVELS_SHOWN, profileFigure} from "./figures/profile.ts";
 import {tradeoffFigure} from "./figures/tradeoff.ts";
-import {messageText, nameText} from "./html.ts";
+import {escaped, messageText, nameText} from "./html.ts";
 import {INTERVAL_BASIS} from "./interval-basis.ts";
 import {stateText} from "./line-table.ts";
 import {counted, countText, figureText, fixedText, metreText} from "./number-text.ts";
+import {levelSentence, resolutionSentence, trustSentence} from "./reach-words.ts";
 import {definitionList} from "./settings-text.ts";
 import {stripRows, stripTable} from "./strip-table.ts";
 
@@ -26,16 +29,16 @@ export function lineSection(study: LineStudy, status: "done" | "doubtful", index
     `<p>${counted(line.stations.count, "station")}, sensor ${rangeText(conditioned.height)} m above the boundary (${messageText(conditioned.boundary)}).${omitted}</p>`,
     items.length > 0 ? `<ul class="plain">${items.join("")}</ul>` : "",
     stripTable(stripRows(study), delivery, confidence, false),
+    boundsTable(study),
     `<figure>${profileFigure(study)}<figcaption>${caption(study)}</figcaption></figure>`,
+    reach(study),
     `<div class="pair"><figure>${tradeoffFigure(study)}</figure>${grounds(study)}</div>`,
     "</section>\n",
   ].join("");
 }
 
 function caption(study: LineStudy): string {
-  const parts = [
-    `Features narrower than ${metreText(study.resolution.length)} m are not in the data; do not read them into the thin line.`,
-  ];
+  const parts = [`${resolutionSentence(study)} Do not read narrower ones into the thin line.`];
   const {chainage} = study.line.stations;
   const [from, to] = [least(chainage), greatest(chainage)];
   if (study.panels.from[0]! < from || study.panels.to[study.panels.count - 1]! > to)
@@ -44,6 +47,14 @@ function caption(study: LineStudy): string {
   if (study.levels.length > LEVELS_SHOWN)
     parts.push(`${counted(study.levels.length - LEVELS_SHOWN, "further level")} in levels.csv.`);
   return parts.join(" ");
+}
+
+/** What the data resolve, and down to where. */
+function reach(study: LineStudy): string {
+  const sentences = [...study.levels.map((level) => levelSentence(level, study)), trustSentence(study.trust)];
+  const figure = kernelsFigure(study);
+  const items = sentences.map((sentence) => `<li>${escaped(sentence)}</li>`).join("");
+  return `${figure === "" ? "" : `<figure>${figure}<figcaption>Grey: a box of the kernel's height and unit area; its width is the resolution there.</figcaption></figure>`}<ul class="plain">${items}</ul>`;
 }
 
 function grounds(study: LineStudy): string {

@@ -1,9 +1,13 @@
 /** The walk of one line from readings to answers: the table of contents of the program. */
+import {answersAtBounds, LOOSEST_FACTOR} from "../continuation/at-bounds.ts";
 import {continueField} from "../continuation/levels.ts";
+import {depthToTrust} from "../continuation/trust.ts";
+import {DEFAULT_TRUST_FRACTION} from "../continuation/trust-fraction.ts";
 import type {Support} from "../geometry/interval.ts";
 import {clip, totalLength} from "../geometry/interval.ts";
 import {apparentNoise, chanceRatio} from "../inverse/apparent-noise.ts";
 import {averagesOn, resolutionOf} from "../inverse/averages.ts";
+import {averagingKernels} from "../inverse/averaging-kernels.ts";
 import {estimateSource} from "../inverse/estimate.ts";
 import {multiplierForNorm} from "../inverse/multiplier-for.ts";
 import {partsOf, type SourceEstimate, type Strip} from "../inverse/nouns.ts";
@@ -23,6 +27,7 @@ import {disagreement, gainNotices, gainOf, unlessApart} from "./channels-togethe
 import {effectiveDirectionOf} from "./direction-of-line.ts";
 import {feasibility} from "./feasibility.ts";
 import {gradientSignNotices} from "./gradient-sign.ts";
+import {remarksOfLevels} from "./levels-below-trust.ts";
 import {intervalsOn, type Operated, operated} from "./operated.ts";
 import type {LineStudy} from "./outcome.ts";
 import type {Settings} from "./settings.ts";
@@ -84,7 +89,14 @@ function studySquare(
 
   const {continuum, intervals} = intervalsOn(
     conditioned,
-    {support, panels, degree: model.regional, bound: choice.bound, confidence: wanted.confidence},
+    {
+      support,
+      panels,
+      degree: model.regional,
+      bound: choice.bound,
+      confidence: wanted.confidence,
+      loosest: choice.basis === "assumed-bound" ? LOOSEST_FACTOR : 1,
+    },
     tiesHeard(ties, conditioned),
   );
   const resolution = resolutionOf(intervals, panels, choice.multiplier, line.stations.chainage);
@@ -98,6 +110,7 @@ function studySquare(
     resolution,
     quantity: wanted.levelQuantity ?? BOUNDARY_FIELD,
   };
+  const trust = depthToTrust(question, wanted.trustFraction ?? DEFAULT_TRUST_FRACTION);
   return {
     line,
     observable: line.channels[0].observable,
@@ -107,10 +120,14 @@ function studySquare(
     choice,
     estimate,
     resolution,
+    kernels: averagingKernels(intervals, continuum, panels, resolution, choice.multiplier, line.stations.chainage),
     gain,
     averages: averagesOn(intervals, panels, resolution, support),
     levels: wanted.levels.map((level) => continueField(level, question)),
     strips: strips.map((strip) => stripEstimate(intervals, panels, estimate.density, strip, support)),
+    trust,
+    atBounds:
+      choice.basis === "assumed-bound" ? answersAtBounds(question, strips, wanted.levels, choice.bound) : undefined,
     confidence: wanted.confidence,
     notices: [
       ...line.notices,
@@ -122,6 +139,7 @@ function studySquare(
       ...doubtsOfResidual(conditioned, estimate),
       ...doubtsOfStrips(strips, support),
       ...gainNotices(gain, resolution),
+      ...remarksOfLevels(wanted.levels, conditioned, trust),
     ],
   };
 }

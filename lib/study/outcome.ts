@@ -1,7 +1,10 @@
 /** What became of a line: its study, or why there is none. */
+import type {AtBound} from "../continuation/at-bounds.ts";
 import type {LevelProfile, LevelSetting} from "../continuation/level-profile.ts";
+import type {Trust} from "../continuation/trust.ts";
 import type {ReportableError} from "../errors.ts";
 import type {
+  AveragingKernel,
   BoundChoice,
   ChannelGain,
   PanelAverages,
@@ -25,11 +28,17 @@ export interface LineStudy {
   readonly choice: BoundChoice;
   readonly estimate: SourceEstimate;
   readonly resolution: Resolution;
+  /** At a handful of places along the line, chainage increasing. */
+  readonly kernels: readonly AveragingKernel[];
   /** Undefined where there is one channel. */
   readonly gain: ChannelGain | undefined;
   readonly averages: PanelAverages;
   readonly levels: readonly LevelProfile[];
   readonly strips: readonly StripEstimate[];
+  /** The lowest level where the field is data rather than bound; undefined where there are no intervals. */
+  readonly trust: Trust | undefined;
+  /** The intervals at multiples of an assumed bound, factor increasing; undefined where the bound was given. */
+  readonly atBounds: readonly AtBound[] | undefined;
   readonly confidence: number;
   /** Every doubt and remark of the line, acquisition to answer. */
   readonly notices: readonly Notice[];

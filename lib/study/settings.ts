@@ -51,6 +51,8 @@ export interface WantedSettings {
   readonly levelQuantity?: LevelQuantity | undefined;
   /** Coverage of every interval; default 0.95. */
   readonly confidence: number;
+  /** Share of the range of the field that an interval may span at the depth to trust; default 0.25. */
+  readonly trustFraction?: number | undefined;
   /** Products beside those that are always written, by their words; absent: none. */
   readonly also?: readonly string[];
 }

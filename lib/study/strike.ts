@@ -124,7 +124,17 @@ export function acrossStrike(
     line,
     conditioned: {...conditioned, line, boundaryLine: boundaryTimes(conditioned.boundaryLine, 1 / scale)},
     panels: panelsTimes(found.panels, 1 / scale),
-    resolution: {length: resolution.length / scale, local: back(resolution.local)},
+    resolution: {
+      length: resolution.length / scale,
+      local: back(resolution.local),
+      worst: {length: resolution.worst.length / scale, at: resolution.worst.at / scale},
+    },
+    kernels: found.kernels.map(({at, width, chainage, value}) => ({
+      at: at / scale,
+      width: width / scale,
+      chainage: back(chainage),
+      value: value.map((height) => height * scale),
+    })),
     gain: gain === undefined ? undefined : {...gain, without: gain.without / scale},
     averages: {...averages, averagedOver: back(averages.averagedOver)},
     levels: found.levels.map((level) => ({...level, averagedOver: back(level.averagedOver)})),

@@ -47,6 +47,7 @@ describe("settings", () => {
       levels: [{kind: "above-boundary", height: 0}],
       strips: [],
       confidence: 0.95,
+      trustFraction: 0.25,
     });
     expect(processing).toBeUndefined();
   });
@@ -79,6 +80,7 @@ describe("settings", () => {
         ["strip", "a=b=600:700"],
         ["strip", "dyke=G2/-1:1"],
         ["confidence", "0.9"],
+        ["trust-fraction", "0.1"],
         ["processing", "drift removed"],
       ),
     );
@@ -120,6 +122,7 @@ describe("settings", () => {
         {name: "dyke", from: -1, to: 1, group: "G2"},
       ],
       confidence: 0.9,
+      trustFraction: 0.1,
     });
     expect(processing).toBe("drift removed");
   });

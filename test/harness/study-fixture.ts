@@ -221,7 +221,15 @@ export function lineStudy(options: FixtureOptions = {}): LineStudy {
       degreesOfFreedom: 31.4,
       modes: 88,
     },
-    resolution: {length: 5.1, local: over},
+    resolution: {length: 5.1, local: over, worst: {length: 6.4, at: from}},
+    kernels: [
+      {
+        at: 110,
+        width: 5,
+        chainage: Float64Array.of(100, 105, 110, 115, 120),
+        value: Float64Array.of(0, 0.1, 0.2, 0.1, 0),
+      },
+    ],
     gain: undefined,
     averages: {
       value: average,
@@ -236,6 +244,17 @@ export function lineStudy(options: FixtureOptions = {}): LineStudy {
       const margin = 0.06 * strength;
       return {strip, mean, lower: mean - margin, upper: mean + margin, plainMean: 0.96 * mean};
     }),
+    trust: {fraction: 0.25, level: 3.2, sensor: 5, stations: 60},
+    atBounds:
+      basis === "given-bound"
+        ? undefined
+        : [0.5, 1, 2, 4].map((factor) => ({
+            factor,
+            bound: 2 * norm * factor,
+            strips: strips.map(() => ({value: 0.5 * strength, halfWidth: 0.06 * strength * factor})),
+            levels: levels.map(() => 0.05 * strength * factor),
+            averages: 0.055 * strength * factor,
+          })),
     confidence: 0.95,
     notices,
   };

@@ -1,6 +1,7 @@
 import {describe, expect, test} from "vitest";
 import type {ReportableError} from "../../lib/errors.ts";
 import {gravity} from "../../lib/potential/gravity.ts";
+import {boundsAssumedCsv} from "../../lib/products/bounds-assumed-csv.ts";
 import {levelsCsv} from "../../lib/products/levels-csv.ts";
 import {linesCsv, rowsCsv} from "../../lib/products/lines-csv.ts";
 import type {LineProduct, RunFrame, TextSink} from "../../lib/products/product.ts";
@@ -49,8 +50,8 @@ describe("headers carry the names and units of the contract", () => {
     [
       "source",
       sourceCsv,
-      "line,from_m,to_m,x,y,source_nT,average_nT,lower_nT,upper_nT,averaged_over_m,interval_basis",
-      "line,from_m,to_m,x,y,source_mGal,average_mGal,lower_mGal,upper_mGal,averaged_over_m,interval_basis",
+      "line,from_m,to_m,x,y,source_nT,average_nT,lower_nT,upper_nT,averaged_over_m,interval_basis,resolution_m",
+      "line,from_m,to_m,x,y,source_mGal,average_mGal,lower_mGal,upper_mGal,averaged_over_m,interval_basis,resolution_m",
     ],
     [
       "levels",
@@ -67,8 +68,14 @@ describe("headers carry the names and units of the contract", () => {
     [
       "lines",
       linesCsv,
-      "line,status,reason,stations,panels,modes,multiplier,bound,norm,bound_active,misfit,misfit_expected,noise_nT,resolution_m,degrees_of_freedom",
-      "line,status,reason,stations,panels,modes,multiplier,bound,norm,bound_active,misfit,misfit_expected,noise_mGal,resolution_m,degrees_of_freedom",
+      "line,status,reason,stations,panels,modes,multiplier,bound,norm,bound_active,misfit,misfit_expected,noise_nT,resolution_m,degrees_of_freedom,trusted_level_m",
+      "line,status,reason,stations,panels,modes,multiplier,bound,norm,bound_active,misfit,misfit_expected,noise_mGal,resolution_m,degrees_of_freedom,trusted_level_m",
+    ],
+    [
+      "bounds assumed",
+      boundsAssumedCsv,
+      "line,of,name,factor,bound_nT_sqrt_m,mean_A/m,lower_A/m,upper_A/m,level_half_width_nT,average_half_width_nT",
+      "line,of,name,factor,bound_mGal_sqrt_m,mean_kg/m2,lower_kg/m2,upper_kg/m2,level_half_width_mGal,average_half_width_mGal",
     ],
     ["tradeoff", tradeoffCsv, "line,multiplier,misfit,norm", "line,multiplier,misfit,norm"],
   ];
@@ -96,6 +103,7 @@ test("source.csv has a row a panel, in nT, at the place of its centre", async ()
     ["lower_nT", study.averages.lower[j]! * 1e9],
     ["upper_nT", study.averages.upper[j]! * 1e9],
     ["averaged_over_m", study.averages.averagedOver[j]!],
+    ["resolution_m", study.resolution.local[j]!],
   ];
   for (const [column, value] of wanted) assertClose(Number(row[column]), value, {...DIGITS, scale: value});
   expect(row["interval_basis"]).toBe("assumed-bound");
@@ -277,4 +285,36 @@ test("the same studies give the same bytes, and long lines go out in pieces", as
   await product.line(doneLine({to: 8000}));
   expect(sink.text().length).toBeGreaterThan(1_000_000);
   expect(sink.longest()).toBeLessThan(1 << 17);
+});
+
+test("bounds_assumed.csv has strips, levels and averages at each factor, and nothing of a given bound", async () => {
+  const study = lineStudy();
+  const rows = parsedCsv(await written(boundsAssumedCsv, [doneLine()]));
+  expect(rows.map(({of, name, factor}) => `${of} ${name} ${factor}`).slice(0, 5)).toEqual([
+    "strip dyke 0.5",
+    "strip rubble 0.5",
+    "level 0 0.5",
+    "level ground+2 0.5",
+    "averages  0.5",
+  ]);
+  expect(rows).toHaveLength(4 * 5);
+  const {bound, levels, averages} = study.atBounds![3]!;
+  const at = (of: string, name: string) =>
+    rows.find((row) => row["of"] === of && row["name"] === name && row["factor"] === "4")!;
+  const wanted: readonly [string, number][] = [
+    [at("strip", "dyke")["bound_nT_sqrt_m"]!, bound * 1e9],
+    [at("level", "ground+2")["level_half_width_nT"]!, levels[1]! * 1e9],
+    [at("averages", "")["average_half_width_nT"]!, averages * 1e9],
+  ];
+  for (const [written, value] of wanted) assertClose(Number(written), value, {...DIGITS, scale: value});
+  expect(parsedCsv(await written(boundsAssumedCsv, [doneLine({basis: "given-bound"}), failedLine("L9")]))).toEqual([]);
+});
+
+test("lines.csv leaves the depth to trust empty where there is none", async () => {
+  const study = lineStudy();
+  const trusted = async (trust: typeof study.trust) =>
+    parsedCsv(await written(linesCsv, [{status: "done", id: "L1", study: {...study, trust}}]))[0]!["trusted_level_m"];
+  expect(await trusted(study.trust)).toBe("3.2");
+  expect(await trusted({...study.trust!, level: Number.NaN})).toBe("");
+  expect(await trusted(undefined)).toBe("");
 });
