@@ -18,6 +18,7 @@ function channelJson(channel: LineFigures["channels"][number], known: Known) {
     observable: known.observable ? observable : undefined,
     unit: known.observable ? symbol : undefined,
     readings: spreadIn(channel.readings, factor),
+    noiseLength: channel.noiseLength,
     noise: noise && {...noise, sigma: noise.sigma / factor},
     noiseMissing,
     noiseMeaningful,

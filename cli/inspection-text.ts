@@ -143,8 +143,9 @@ const PARTLY_SIGNAL_MEANING = paragraph(
 function noiseWords(channel: LineFigures["channels"][number] | undefined): string {
   if (channel === undefined) return "";
   if (channel.noise === undefined) return "not known";
-  if (!channel.noise.white) return "not white";
-  if (channel.noiseMeaningful === undefined) return "white";
+  const {noiseLength} = channel;
+  if (!channel.noise.white) return noiseLength > 0 ? "of another length" : "not white";
+  if (channel.noiseMeaningful === undefined) return noiseLength > 0 ? "of that length" : "white";
   return channel.noiseMeaningful ? "sound" : PARTLY_SIGNAL;
 }
 

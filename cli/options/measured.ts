@@ -21,6 +21,7 @@ const units = OBSERVABLES.map(
 ).join("; ");
 
 const DEFAULT_OFFSET = "0";
+const DEFAULT_NOISE_LENGTH = "0";
 const DEFAULT_PROFILES = "rows";
 const SPLITS = ["column", "auto"] as const;
 const PROFILES = ["rows", "columns"] as const;
@@ -174,6 +175,17 @@ export const MEASURED: OptionGroup = {
       },
     },
     {
+      name: "noise-length",
+      value: "L",
+      form: {number: NOT_NEGATIVE},
+      help: "metres over which the noise of each channel is correlated along the line: neighbours D metres apart by exp(-D/L), as of drift, swell or a slow loop of the compensation; 0 is white. --noise stays the standard deviation of one reading",
+      default: {
+        value: DEFAULT_NOISE_LENGTH,
+        reason:
+          "white noise needs no further number, and the readings themselves hardly tell correlated noise from a source; a doubt is raised where residuals are not white, with an estimate of L",
+      },
+    },
+    {
       name: "inclination",
       value: "I",
       form: {number: INCLINATION},
@@ -275,6 +287,7 @@ export function acquisitionFrom(asked: Asked, maps?: MapFiles): AcquisitionSetti
     outCrs: oneOf(asked, "out-crs"),
     split: wordFor(asked, "split", SPLITS),
     channels: channelsFrom(asked),
+    noiseLength: number("noise-length", NOT_NEGATIVE) ?? Number(DEFAULT_NOISE_LENGTH),
     profiles: profilesFrom(asked, maps),
     every: number("every", EVERY),
     sampling: wordFor(asked, "sampling", SAMPLING_NAMES),

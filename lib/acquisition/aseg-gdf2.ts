@@ -31,7 +31,7 @@ export async function openAsegSurvey(files: readonly ByteSource[], settings: Acq
     const table = await openGdf2(pair);
     tables.push(table);
     notices.push(...documentNotices(table, settings));
-    const {choices} = await planColumns(table, settings, channelPlans(settings.channels), needed);
+    const {choices} = await planColumns(table, settings, channelPlans(settings.channels, settings.noiseLength), needed);
     needed ??= new Set(choices.map(({role}) => role));
     for (const choice of choices) {
       const channel = settings.channels.find(({role}) => role === choice.role);

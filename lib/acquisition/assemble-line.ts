@@ -69,6 +69,7 @@ export function assembleLine(
           observable: channel.observable,
           values: values.map((value) => value * channel.unit.factor),
           noise: channel.noise,
+          noiseLength: channel.noiseLength,
           above: sensorAbove(run, channel.role),
         };
       }),

@@ -12,14 +12,17 @@ export interface ChannelPlan {
   readonly unit: Unit;
   /** Standard deviation, SI. */
   readonly noise: number | "record";
+  /** Length over which it is correlated, m; 0: it is white. */
+  readonly noiseLength: number;
 }
 
 /**
  * One plan a channel; the first is `value`.
+ * @param noiseLength of all of them, m
  * @throws {InputError} `channel/none`, `channel/roles`, `observable/unknown`, `unit/unknown`, `unit/wrong-dimension`,
  *   `noise/not-positive`
  */
-export function channelPlans(channels: readonly ChannelSettings[]): ChannelPlan[] {
+export function channelPlans(channels: readonly ChannelSettings[], noiseLength = 0): ChannelPlan[] {
   if (channels[0]?.role !== "value")
     throw new InputError("channel/none", "No observable was given for the readings. Give --observable KIND.");
   const roles = channels.map((channel) => channel.role);
@@ -39,6 +42,6 @@ export function channelPlans(channels: readonly ChannelSettings[]): ChannelPlan[
         "noise/not-positive",
         `The noise of ${channel.role} was given as ${noise} ${unit.symbol}; a standard deviation above 0 was needed. Correct --noise, or give --noise record.`,
       );
-    return {role: channel.role, observable, unit, noise: noise === "record" ? noise : noise * unit.factor};
+    return {role: channel.role, observable, unit, noise: noise === "record" ? noise : noise * unit.factor, noiseLength};
   });
 }

@@ -46,7 +46,7 @@ export async function openDelimitedSurvey(
  * @param files at least one, in the order of the survey
  */
 export async function openTableSurvey(files: readonly Table[], settings: AcquisitionSettings): Promise<Survey> {
-  const channels = channelPlans(settings.channels);
+  const channels = channelPlans(settings.channels, settings.noiseLength);
   const {tables, layout, chainageGiven, choices, notices} = await openTables(files, settings, channels);
   const read = new Set(tables[0]!.choices.map(({role}) => role));
   const heights = HEIGHTS.filter((role) => read.has(role));

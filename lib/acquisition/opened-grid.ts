@@ -37,7 +37,7 @@ export interface OpenedGrid {
  */
 export async function openGrid(file: ByteSource, settings: AcquisitionSettings): Promise<OpenedGrid> {
   const place = {file: file.name};
-  const channels = channelPlans(settings.channels);
+  const channels = channelPlans(settings.channels, settings.noiseLength);
   const channel = channels[0]!;
   if (settings.columns.size > 0)
     throw new InputError("grid/columns-asked", `${file.name} is a grid and has no columns; leave --column out.`, {

@@ -143,7 +143,16 @@ async function* gridLines(
       id: name,
       group: "G1",
       stations: {count, row, chainage, offset: new Float64Array(count).fill(frame.offset(line)), x, y, ...heights},
-      channels: [{role: channel.role, observable: channel.observable, values, noise: channel.noise}],
+      channels: [
+        {
+          role: channel.role,
+          observable: channel.observable,
+          values,
+          noise: channel.noise,
+          noiseLength: channel.noiseLength,
+          interpolated: true,
+        },
+      ],
       direction: chainage[count - 1]! < chainage[0]! ? -1 : 1,
       file: raster.name,
       omitted: pixels - count,

@@ -51,6 +51,8 @@ export interface AcquisitionSettings {
   readonly every?: number | undefined;
   /** How transects are sampled; undefined: bilinear. */
   readonly sampling?: SamplingName | undefined;
+  /** Length over which the noise of every channel is correlated along the line, m; undefined or 0: it is white. */
+  readonly noiseLength?: number | undefined;
   /** Only to look at: heights and the noise of a grid may be missing, which is then a doubt. */
   readonly inspecting?: boolean;
 }

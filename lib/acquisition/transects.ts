@@ -179,6 +179,8 @@ async function sampled(
           observable: channel.observable,
           values: pick((k) => readings[k]! * channel.unit.factor),
           noise: channel.noise,
+          noiseLength: channel.noiseLength,
+          interpolated: true,
         },
       ],
       file,

@@ -1,4 +1,5 @@
 /** The source at the chosen multiplier, and what it leaves unexplained. */
+import {unwhitened, whitened} from "../operators/correlated-noise.ts";
 import {applyInto, type ForwardOperator} from "../operators/forward.ts";
 import type {Readings} from "../operators/readings.ts";
 import {projectOutInPlace, type RegionalBasis} from "../operators/regional.ts";
@@ -17,8 +18,8 @@ export function estimateSource(
   const density = solver.estimate(choice.multiplier);
   const field = applyInto(new Float64Array(values.length), operator, density);
   const left = values.map((value, i) => value - field[i]);
-  const whitened = left.map((value, i) => value / readings.noise[i]);
-  const residual = projectOutInPlace(whitened, basis).map((value, i) => value * readings.noise[i]);
+  const unexplained = projectOutInPlace(whitened(left, readings), basis);
+  const residual = unwhitened(unexplained, readings.x, readings);
   const channels: ChannelFit[] = [];
   for (let from = 0; from < readings.count; ) {
     let to = from;

@@ -41,3 +41,10 @@ export function notWhite(readings: number, misfit: number, lags = 5): number {
   const left = Math.max(0, 1 - readings / misfit);
   return BY_CHANCE + (lags * readings * left * left) / Math.sqrt(2 * lags);
 }
+
+/**
+ * The length L of noise exp(−|x|/L) whose neighbours, `spacing` apart, correlate so; undefined where they do not.
+ * An estimate: from one lag, of residuals that have lost what the fit took.
+ */
+export const lengthFromLagOne = (lagOne: number, spacing: number): number | undefined =>
+  lagOne > 0 && lagOne < 1 && spacing > 0 ? -spacing / Math.log(lagOne) : undefined;

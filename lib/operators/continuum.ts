@@ -10,6 +10,7 @@ import type {Support} from "../geometry/interval.ts";
 import {gaussLegendre, type QuadratureRule} from "../numeric/quadrature.ts";
 import {kernelAt} from "../potential/kernel.ts";
 import {logarithmOver, type Pole} from "../potential/pair.ts";
+import {whitenedInto} from "./correlated-noise.ts";
 import {pick, type Readings} from "./readings.ts";
 
 /** Readings in increasing chainage and the support below them; noise whitens every response. */
@@ -84,7 +85,8 @@ export function nodesFor(continuum: Continuum, first: number, last: number, also
   const at: number[] = [];
   const rootWeight: number[] = [];
   let longest = 0;
-  const far = (a: number, b: number): number => distance(continuum, first, last, a, b, also);
+  const lowest = reachingBack(continuum, first, last);
+  const far = (a: number, b: number): number => distance(continuum, lowest, last, a, b, also);
   for (const {from, to} of continuum.support) {
     const breaks = [...breaksWithin(continuum.boundary, from, to), to];
     let left = from;
@@ -130,6 +132,13 @@ function longestElement(far: (a: number, b: number) => number, left: number, to:
   return inside;
 }
 
+/** Whitened, a reading of correlated noise holds some of the one before it, which may stand left of `first`. */
+function reachingBack({correlated, before}: Continuum, first: number, last: number): number {
+  let lowest = first;
+  for (let i = first; correlated && i < last; ++i) if (before[i] >= 0 && before[i] < lowest) lowest = before[i];
+  return lowest;
+}
+
 /** Least distance between the sensors `first … last − 1` (and `also`) and the stretch [a, b] of the boundary, m. */
 function distance(continuum: Continuum, first: number, last: number, a: number, b: number, also?: Place): number {
   const top = Math.max(boundaryAt(continuum.boundary, a), boundaryAt(continuum.boundary, b));
@@ -149,22 +158,42 @@ function distance(continuum: Continuum, first: number, last: number, a: number, 
   return Math.sqrt(least);
 }
 
-/** Whitened response of reading i at a node. */
-const responseAt = (continuum: Continuum, nodes: Nodes, i: number, k: number): number =>
+/** Response of reading i at a node, not whitened. */
+const rawAt = (continuum: Continuum, nodes: Nodes, i: number, k: number): number =>
   kernelAt(
     continuum.aRe[i],
     continuum.aIm[i],
     continuum.order[i],
     nodes.at[k] - continuum.x[i],
     continuum.z[i] - nodes.y[k],
-  ) / continuum.noise[i];
+  );
+
+/** Whitened, where the noise is white. */
+const responseAt = (continuum: Continuum, nodes: Nodes, i: number, k: number): number =>
+  rawAt(continuum, nodes, i, k) / continuum.noise[i];
 
 /** (last − first) × nodes, row-major: whitened responses at the nodes times the root of their weights. */
 export function nodeMatrix(continuum: Continuum, nodes: Nodes, first: number, last: number): Float64Array {
   const matrix = new Float64Array((last - first) * nodes.count);
+  if (continuum.correlated) return correlatedNodeMatrixInto(matrix, continuum, nodes, first, last);
   for (let i = first; i < last; ++i) {
     const row = (i - first) * nodes.count;
     for (let k = 0; k < nodes.count; ++k) matrix[row + k] = responseAt(continuum, nodes, i, k) * nodes.rootWeight[k];
+  }
+  return matrix;
+}
+
+function correlatedNodeMatrixInto(
+  matrix: Float64Array,
+  continuum: Continuum,
+  nodes: Nodes,
+  first: number,
+  last: number,
+): Float64Array {
+  const column = new Float64Array(last - first);
+  for (let k = 0; k < nodes.count; ++k) {
+    whitenedInto(column, continuum, first, last, (i) => rawAt(continuum, nodes, i, k));
+    for (let i = 0; i < column.length; ++i) matrix[i * nodes.count + k] = column[i] * nodes.rootWeight[k];
   }
   return matrix;
 }
@@ -200,7 +229,9 @@ export function gramTimes(continuum: Continuum, vectors: Float64Array, terms: nu
   const result = new Float64Array(terms * continuum.count);
   const row = new Float64Array(continuum.count);
   for (let k = 0; k < nodes.count; ++k) {
-    for (let i = 0; i < continuum.count; ++i) row[i] = responseAt(continuum, nodes, i, k) * nodes.rootWeight[k];
+    if (continuum.correlated)
+      whitenedInto(row, continuum, 0, continuum.count, (i) => rawAt(continuum, nodes, i, k) * nodes.rootWeight[k]);
+    else for (let i = 0; i < continuum.count; ++i) row[i] = responseAt(continuum, nodes, i, k) * nodes.rootWeight[k];
     for (let t = 0; t < terms; ++t) {
       const start = t * continuum.count;
       let dot = 0;
@@ -216,6 +247,11 @@ export function responseNormSquared(continuum: Continuum, weights: Float64Array)
   const nodes = nodesFor(continuum, 0, continuum.count);
   const {x, z, aRe, aIm, order, count} = continuum;
   const shares = weights.map((weight, i) => weight / continuum.noise[i]);
+  // What the weight of a reading takes off the one before it, which stands to its left.
+  for (let i = 0; continuum.correlated && i < count; ++i) {
+    const k = continuum.before[i];
+    if (k >= 0) shares[k] -= (continuum.rho[i] * weights[i]) / continuum.noise[i];
+  }
   // One kind of kernel is the common case, and its loop the hot one.
   const vertical = aRe.every((re) => re === 0) && order.every((m) => m === 0);
   for (let i = 0; vertical && i < count; ++i) shares[i] *= -aIm[i];

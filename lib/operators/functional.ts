@@ -8,6 +8,7 @@ import {matVecInto} from "../numeric/matmul.ts";
 import {amplitudeIm, amplitudeRe, kernelAt, kernelOverPiece, type Response} from "../potential/kernel.ts";
 import {logarithmOver, type Pole, pairOver} from "../potential/pair.ts";
 import {type Continuum, type Nodes, nodesFor, sharedNodes} from "./continuum.ts";
+import {whitenedInto} from "./correlated-noise.ts";
 
 export interface Functional {
   /** Where it looks, m of chainage: windows of readings are chosen around it. */
@@ -47,13 +48,15 @@ export function meanOver(
     spread: 0,
     normSquared: inside / (length * length),
     respondInto(target, continuum, first, last) {
-      for (let i = first; i < last; ++i) {
-        const {x, z, aRe, aIm, order} = continuum;
+      const {x, z, aRe, aIm, order} = continuum;
+      const sumAt = (i: number): number => {
         let sum = 0;
         for (const {a, ya, b, yb} of pieces)
           sum += kernelOverPiece(aRe[i], aIm[i], order[i], a - x[i], z[i] - ya, b - x[i], z[i] - yb);
-        target[i - first] = sum / (length * continuum.noise[i]);
-      }
+        return sum;
+      };
+      if (continuum.correlated) return whitenedInto(target, continuum, first, last, (i) => sumAt(i) / length);
+      for (let i = first; i < last; ++i) target[i - first] = sumAt(i) / (length * continuum.noise[i]);
       return target;
     },
   };
@@ -76,7 +79,10 @@ export function fieldAt(x: number, z: number, response: Response, continuum: Con
       to: x,
       spread: above,
       normSquared: pairOver(continuum.support, point, point),
-      respondInto(target, {support, poles, noise}, first, last) {
+      respondInto(target, readings, first, last) {
+        const {support, poles, noise} = readings;
+        if (readings.correlated)
+          return whitenedInto(target, readings, first, last, (i) => pairOver(support, poles[i], point));
         for (let i = first; i < last; ++i) target[i - first] = pairOver(support, poles[i], point) / noise[i];
         return target;
       },
@@ -103,7 +109,7 @@ export function fieldAt(x: number, z: number, response: Response, continuum: Con
         );
       const nodes = nodesFor(readings, first, last, {x, z});
       const weights = weightsOn(nodes);
-      for (let i = first; i < last; ++i) {
+      const sumAt = (i: number): number => {
         let sum = 0;
         for (let k = 0; k < nodes.count; ++k)
           sum +=
@@ -116,8 +122,10 @@ export function fieldAt(x: number, z: number, response: Response, continuum: Con
               nodes.at[k] - readings.x[i],
               readings.z[i] - nodes.y[k],
             );
-        target[i - first] = sum / readings.noise[i];
-      }
+        return sum;
+      };
+      if (readings.correlated) return whitenedInto(target, readings, first, last, sumAt);
+      for (let i = first; i < last; ++i) target[i - first] = sumAt(i) / readings.noise[i];
       return target;
     },
   };
@@ -132,10 +140,10 @@ export const densityAt = (x: number, boundary?: BoundaryLine): Functional => {
     spread: 0,
     normSquared: Infinity,
     respondInto(target, continuum, first, last) {
-      for (let i = first; i < last; ++i)
-        target[i - first] =
-          kernelAt(continuum.aRe[i], continuum.aIm[i], continuum.order[i], x - continuum.x[i], continuum.z[i] - y) /
-          continuum.noise[i];
+      const {aRe, aIm, order, noise, z} = continuum;
+      const rawAt = (i: number): number => kernelAt(aRe[i], aIm[i], order[i], x - continuum.x[i], z[i] - y);
+      if (continuum.correlated) return whitenedInto(target, continuum, first, last, rawAt);
+      for (let i = first; i < last; ++i) target[i - first] = rawAt(i) / noise[i];
       return target;
     },
   };

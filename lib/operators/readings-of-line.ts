@@ -1,9 +1,12 @@
 /** The readings of a conditioned line, channel after channel. */
 import type {ConditionedLine} from "../survey/conditioned.ts";
+import type {SurveyLine} from "../survey/line.ts";
 import {type ChannelReadings, type Readings, readingsOf} from "./readings.ts";
 
-export const readingsOfLine = ({line, channels}: ConditionedLine): Readings =>
-  readingsOf(channels.map(({z, response, noise}) => ({x: line.stations.chainage, z, response, noise})));
+export const readingsOfLine = ({line, channels}: ConditionedLine): Readings => readingsOf(ofChannels(line, channels));
+
+const ofChannels = ({stations}: SurveyLine, channels: ConditionedLine["channels"]): ChannelReadings[] =>
+  channels.map(({z, response, noise, noiseLength}) => ({x: stations.chainage, z, response, noise, noiseLength}));
 
 /** Their values, SI, in the same order. */
 export function valuesOfLine({channels}: ConditionedLine): Float64Array {
@@ -19,10 +22,10 @@ export function valuesOfLine({channels}: ConditionedLine): Float64Array {
 /** A known reading at a point, beside the channels. */
 export type PointReading = Omit<ChannelReadings, "x" | "z"> & {readonly x: number; readonly z: number};
 
-/** The channels and known readings after them; those share one channel number, past the last of the line. */
+/** The channels and known readings after them, whose noise is white; those share one channel number, past the last of the line. */
 export function readingsWithPoints({line, channels}: ConditionedLine, points: readonly PointReading[]): Readings {
   const readings = readingsOf([
-    ...channels.map(({z, response, noise}) => ({x: line.stations.chainage, z, response, noise})),
+    ...ofChannels(line, channels),
     ...points.map(({x, z, response, noise}) => ({x: Float64Array.of(x), z: Float64Array.of(z), response, noise})),
   ]);
   readings.channel.fill(channels.length, readings.count - points.length);

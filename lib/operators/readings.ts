@@ -1,7 +1,8 @@
 /** What was read, as the operator sees it: one entry a reading, channel after channel. */
 import {amplitudeIm, amplitudeRe, type Response} from "../potential/kernel.ts";
+import {chainInto, type Whitening} from "./correlated-noise.ts";
 
-export interface Readings {
+export interface Readings extends Whitening {
   readonly count: number;
   /** Chainage, m. */
   readonly x: Float64Array;
@@ -11,8 +12,6 @@ export interface Readings {
   readonly aRe: Float64Array;
   readonly aIm: Float64Array;
   readonly order: Uint8Array;
-  /** Standard deviation of the noise, SI. */
-  readonly noise: Float64Array;
   /** Place of the channel in the line. */
   readonly channel: Uint8Array;
 }
@@ -22,7 +21,10 @@ export interface ChannelReadings {
   readonly x: Float64Array;
   readonly z: Float64Array;
   readonly response: Response;
+  /** Standard deviation, SI. */
   readonly noise: number;
+  /** Length over which the noise is correlated, m; absent or 0: it is white. */
+  readonly noiseLength?: number | undefined;
 }
 
 export function readingsOf(channels: readonly ChannelReadings[]): Readings {
@@ -35,29 +37,33 @@ export function readingsOf(channels: readonly ChannelReadings[]): Readings {
     aIm: new Float64Array(count),
     order: new Uint8Array(count),
     noise: new Float64Array(count),
+    before: new Int32Array(count).fill(-1),
+    rho: new Float64Array(count),
     channel: new Uint8Array(count),
   };
   let at = 0;
-  channels.forEach(({x, z, response, noise}, channel) => {
+  channels.forEach(({x, z, response, noise, noiseLength = 0}, channel) => {
     const end = at + x.length;
     readings.x.set(x, at);
     readings.z.set(z, at);
     readings.aRe.fill(amplitudeRe(response), at, end);
     readings.aIm.fill(amplitudeIm(response), at, end);
     readings.order.fill(response.order, at, end);
-    readings.noise.fill(noise, at, end);
+    chainInto(readings, at, x, noise, noiseLength);
     readings.channel.fill(channel, at, end);
     at = end;
   });
-  return readings;
+  return {...readings, correlated: readings.rho.some((rho) => rho > 0)};
 }
 
 /** One channel of the downward component. */
 export const verticalReadings = (x: Float64Array, z: Float64Array, noise: number): Readings =>
   readingsOf([{x, z, response: {re: 1, im: 0, order: 0}, noise}]);
 
-/** The readings in another order, or some of them. */
+/** All of the readings in another order. */
 export function pick(readings: Readings, order: Int32Array): Readings {
+  const place = new Int32Array(readings.count);
+  for (let k = 0; k < order.length; ++k) place[order[k]] = k;
   const of = (values: Float64Array): Float64Array => Float64Array.from(order, (i) => values[i]);
   return {
     count: order.length,
@@ -67,6 +73,9 @@ export function pick(readings: Readings, order: Int32Array): Readings {
     aIm: of(readings.aIm),
     order: Uint8Array.from(order, (i) => readings.order[i]),
     noise: of(readings.noise),
+    before: Int32Array.from(order, (i) => (readings.before[i] < 0 ? -1 : place[readings.before[i]])),
+    rho: of(readings.rho),
+    correlated: readings.correlated,
     channel: Uint8Array.from(order, (i) => readings.channel[i]),
   };
 }

@@ -3,6 +3,7 @@
  * beforehand. Every channel has a polynomial of its own: instruments differ in level and drift.
  */
 
+import {whitened} from "./correlated-noise.ts";
 import type {Readings} from "./readings.ts";
 
 /** `degree + 1` a channel: orthonormal rows of length `count`, row-major; no rows for degree −1. */
@@ -14,17 +15,18 @@ export interface RegionalBasis {
 
 /**
  * Legendre polynomials on the span of the readings of each channel, orthonormalised by Gram–Schmidt done twice
- * (Giraud et al., "twice is enough", Numer. Math. 101 (2005) 87, from memory). Noise is one number a channel, so that
- * whitening does not change the span. A term that the readings cannot tell from the lower ones is left out.
+ * (Giraud et al., "twice is enough", Numer. Math. 101 (2005) 87, from memory). White noise is one number a channel, so
+ * that whitening does not change the span; where it is correlated the polynomials are whitened first. A term that the readings cannot tell from the lower ones is left out.
  *
  * @param degree −1 for none
  * @param channels that have a regional: the first so many; ties have none
  */
 export function regionalBasis(
-  {x, channel, count}: Pick<Readings, "x" | "channel" | "count">,
+  readings: Readings,
   degree: number,
-  channels = channel.reduce((most, k) => Math.max(most, k), 0) + 1,
+  channels = readings.channel.reduce((most, k) => Math.max(most, k), 0) + 1,
 ): RegionalBasis {
+  const {x, channel, count, correlated} = readings;
   const rows: Float64Array[] = [];
   for (let k = 0; k < channels; ++k) {
     let low = Infinity;
@@ -37,9 +39,10 @@ export function regionalBasis(
     const half = 0.5 * (high - low) || 1;
     const own: Float64Array[] = [];
     for (let term = 0; term <= degree; ++term) {
-      const row = x.map((chainage, i) =>
+      const polynomial = x.map((chainage, i) =>
         channel[i] === k ? legendre(term, (chainage - 0.5 * (low + high)) / half) : 0,
       );
+      const row = correlated ? whitened(polynomial, readings) : polynomial;
       const before = length(row);
       for (let pass = 0; pass < 2; ++pass)
         for (const earlier of own) {

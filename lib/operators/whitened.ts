@@ -2,6 +2,7 @@
  * The one place that whitens: readings by the noise, panels by the square root of their width, so that
  * plain Euclidean norms are the misfit and ‖f‖ in L². The regional is projected out on the way.
  */
+import {whitened} from "./correlated-noise.ts";
 import type {ForwardOperator} from "./forward.ts";
 import type {Readings} from "./readings.ts";
 import {projectOutInPlace, projectOutOfColumnsInPlace, type RegionalBasis} from "./regional.ts";
@@ -31,15 +32,19 @@ export function whiten(
   const matrix = new Float64Array(operator.matrix.length);
   for (let i = 0; i < operator.readings; ++i) {
     const inverse = 1 / readings.noise[i];
-    for (let j = 0; j < columns; ++j) matrix[i * columns + j] = operator.matrix[i * columns + j] * inverse * scale[j];
+    const before = readings.before[i];
+    const rho = readings.rho[i];
+    if (before < 0)
+      for (let j = 0; j < columns; ++j) matrix[i * columns + j] = operator.matrix[i * columns + j] * inverse * scale[j];
+    else
+      for (let j = 0; j < columns; ++j)
+        matrix[i * columns + j] =
+          (operator.matrix[i * columns + j] - rho * operator.matrix[before * columns + j]) * inverse * scale[j];
   }
   projectOutOfColumnsInPlace(matrix, columns, basis);
   return {rows: operator.readings, columns, matrix, data: whitenData(values, readings, basis), rootWidth};
 }
 
-/** Q d / σ. */
+/** Q d / σ; where the noise is correlated, Q W d with W of `correlated-noise.ts`. */
 export const whitenData = (values: Float64Array, readings: Readings, basis: RegionalBasis): Float64Array =>
-  projectOutInPlace(
-    values.map((value, i) => value / readings.noise[i]),
-    basis,
-  );
+  projectOutInPlace(whitened(values, readings), basis);

@@ -21,6 +21,10 @@ interface LedgerFigures {
   readonly degreesOfFreedom: number;
   /** The lowest level to trust, m; NaN where there is none; absent: not looked for. */
   readonly trusted?: number;
+  /** By the fourth differences of the record, and by the shortest waves of the residual; undefined where they do not say. */
+  readonly noiseOfRecord: number | undefined;
+  readonly noiseOfSpectrum: number | undefined;
+  readonly noiseLength: number;
   readonly notices: readonly Notice[];
 }
 
@@ -36,10 +40,18 @@ const figuresOfLine = (study: LineStudy): LedgerFigures => ({
   resolution: study.resolution.length,
   degreesOfFreedom: study.estimate.degreesOfFreedom,
   trusted: study.trust?.level ?? Number.NaN,
+  noiseOfRecord: study.noises[0]?.record,
+  noiseOfSpectrum: study.noises[0]?.spectrum,
+  noiseLength: study.conditioned.channels[0]!.noiseLength,
   notices: study.notices,
 });
 
-const figuresOfRow = (study: RowStudy): LedgerFigures => study;
+/** A grid is smooth: rows show no noise of their own. */
+const figuresOfRow = (study: RowStudy): LedgerFigures => ({
+  ...study,
+  noiseOfRecord: undefined,
+  noiseOfSpectrum: undefined,
+});
 
 /** Why the multiplier is what it is, then every doubt. */
 const reasonOf = (figures: LedgerFigures): string =>
@@ -49,7 +61,7 @@ const reasonOf = (figures: LedgerFigures): string =>
   ].join("; ");
 
 /** Columns after `reason`, for a line without an answer. */
-const NO_FIGURES: readonly string[] = Array.from({length: 13}, () => "");
+const NO_FIGURES: readonly string[] = Array.from({length: 16}, () => "");
 
 function ledger(sink: TextSink) {
   const table: CsvTable = csvTable(sink);
@@ -74,6 +86,9 @@ function ledger(sink: TextSink) {
         "resolution_m",
         "degrees_of_freedom",
         "trusted_level_m",
+        `noise_record_${delivery.reading}`,
+        `noise_spectrum_${delivery.reading}`,
+        "noise_length_m",
       ]);
     },
     done: async (id: string, status: string, figures: LedgerFigures): Promise<void> => {
@@ -94,6 +109,10 @@ function ledger(sink: TextSink) {
         csvNumber(figures.resolution),
         csvNumber(figures.degreesOfFreedom),
         csvNumber(figures.trusted),
+        ...[figures.noiseOfRecord, figures.noiseOfSpectrum].map((noise) =>
+          csvNumber(noise === undefined ? undefined : delivery.toReading(noise)),
+        ),
+        csvNumber(figures.noiseLength),
       ]);
       await table.flush();
     },

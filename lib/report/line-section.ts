@@ -71,8 +71,9 @@ function grounds(study: LineStudy): string {
     ],
     [
       "Noise",
-      `${figureText(delivery.toReading(conditioned.channels[0]!.noise))} ${delivery.reading}, ${conditioned.channels[0]!.noiseFrom === "given" ? "as given" : "from the record"}`,
+      `${figureText(delivery.toReading(conditioned.channels[0]!.noise))} ${delivery.reading}, ${conditioned.channels[0]!.noiseFrom === "given" ? "as given" : "from the record"}${lengthWords(conditioned.channels[0]!.noiseLength)}`,
     ],
+    ["Noise by each way", noisesWords(study.noises, (si) => figureText(delivery.toReading(si)), delivery.reading)],
     ...(conditioned.direction === undefined
       ? []
       : [
@@ -91,6 +92,20 @@ function grounds(study: LineStudy): string {
     ["Norm of the source", `${figureText(delivery.toNorm(estimate.norm))} ${delivery.field}·√m`],
     ["Bound", `${figureText(delivery.toNorm(choice.bound))} ${delivery.field}·√m, ${boundWords(choice)}`],
   ])}<p class="small"><b>${basis.lead}</b> ${messageText(basis.text)}</p></div>`;
+}
+
+const lengthWords = (length: number): string =>
+  length > 0 ? `, correlated over ${metreText(length)} m along the line` : "";
+
+/** The three estimates of the first channel. */
+function noisesWords([noises]: LineStudy["noises"], figure: (si: number) => string, unit: string): string {
+  const {given, record, spectrum, flat} = noises ?? {};
+  const parts = [
+    `given ${given === undefined ? "none" : figure(given)}`,
+    `from the record ${record === undefined ? "not to be had" : figure(record)}`,
+    `from the shortest waves of the residual ${spectrum === undefined ? "not to be had" : `${figure(spectrum)}, whose spectrum is ${flat ? "" : "not "}flat there`}`,
+  ];
+  return `${parts.join("; ")} (${unit})`;
 }
 
 const boundWords = ({basis, active}: LineStudy["choice"]): string => {

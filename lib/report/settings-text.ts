@@ -31,7 +31,9 @@ export function settingsPairs(
       channel.noise === "record" || channel.noise === undefined
         ? "noise from the fourth differences of the record"
         : `noise ${exactText(channel.noise)} ${unit} given`;
-    pairs.push(["Readings", `${nameText(channel.observable)}, in ${unit}; ${noise}`]);
+    const length = acquisition.noiseLength ?? 0;
+    const correlated = length > 0 ? `, correlated over ${metreText(length)} m along the line` : "";
+    pairs.push(["Readings", `${nameText(channel.observable)}, in ${unit}; ${noise}${correlated}`]);
   }
   if (survey.delivered !== undefined) pairs.push(["Coordinates", nameText(survey.delivered)]);
   pairs.push(["Chainage", survey.axes.map(axisText).join("; ")]);

@@ -24,7 +24,8 @@ export function gradientSignNotices(conditioned: ConditionedLine, panels: Panels
   const {multiplier} = discrepancy.choose({solver, supportLength: 1, lines: 1, largestNorm: solver.norm});
   const density = solver.estimate(multiplier);
   return gradients.flatMap((gradient) => {
-    const one = readingsOfLine({...conditioned, channels: [gradient]});
+    // Agreement is a matter of signs, and is looked for in the readings themselves: nothing is whitened.
+    const one = readingsOfLine({...conditioned, channels: [{...gradient, noiseLength: 0}]});
     const predicted = applyInto(new Float64Array(one.count), forwardOperator(one, panels), density);
     const own = regionalBasis(one, degree);
     const measured = projectOutInPlace(Float64Array.from(gradient.channel.values), own);

@@ -276,6 +276,7 @@ function answerRow(
     misfit,
     misfitExpected: data.length,
     noise: conditioned.channels[0].noise,
+    noiseLength: conditioned.channels[0].noiseLength,
     resolution: answers.resolution,
     degreesOfFreedom: sums.degreesOfFreedom(choice.multiplier),
     notices,

@@ -13,21 +13,26 @@ import {multiplierForNorm} from "../inverse/multiplier-for.ts";
 import {partsOf, type SourceEstimate, type Strip} from "../inverse/nouns.ts";
 import {stripEstimate} from "../inverse/strip-estimate.ts";
 import {tradeoffCurve} from "../inverse/tradeoff.ts";
-import {notWhite, whiteness} from "../inverse/whiteness.ts";
+import {lengthFromLagOne, notWhite, whiteness} from "../inverse/whiteness.ts";
 import {doubt, type Notice} from "../notice.ts";
+import {whitened} from "../operators/correlated-noise.ts";
 import type {Panels} from "../operators/panels.ts";
+import type {Readings} from "../operators/readings.ts";
 import {readingsWithPoints} from "../operators/readings-of-line.ts";
 import type {EffectiveDirection} from "../potential/effective-direction.ts";
 import {BOUNDARY_FIELD} from "../potential/level-quantity.ts";
 import type {Solver} from "../solvers/solver.ts";
+import {byChainage} from "../survey/by-chainage.ts";
 import {condition} from "../survey/condition.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {SurveyLine} from "../survey/line.ts";
+import {spacingOf} from "../survey/record-noise.ts";
 import {disagreement, gainNotices, gainOf, unlessApart} from "./channels-together.ts";
 import {effectiveDirectionOf} from "./direction-of-line.ts";
 import {feasibility} from "./feasibility.ts";
 import {gradientSignNotices} from "./gradient-sign.ts";
 import {remarksOfLevels} from "./levels-below-trust.ts";
+import {type ChannelNoises, lengthText, noisesOf, withNoises} from "./noises.ts";
 import {intervalsOn, type Operated, operated} from "./operated.ts";
 import type {LineStudy} from "./outcome.ts";
 import type {Settings} from "./settings.ts";
@@ -99,6 +104,8 @@ function studySquare(
     },
     tiesHeard(ties, conditioned),
   );
+  const remains = whitenedResiduals(conditioned, estimate, readings);
+  const noises = noisesOf(conditioned, remains, estimate);
   const resolution = resolutionOf(intervals, panels, choice.multiplier, line.stations.chainage);
   const gain = gainOf(conditioned, settings, panels, support, choice);
   const question = {
@@ -122,6 +129,7 @@ function studySquare(
     resolution,
     kernels: averagingKernels(intervals, continuum, panels, resolution, choice.multiplier, line.stations.chainage),
     gain,
+    noises,
     averages: averagesOn(intervals, panels, resolution, support),
     levels: wanted.levels.map((level) => continueField(level, question)),
     strips: strips.map((strip) => stripEstimate(intervals, panels, estimate.density, strip, support)),
@@ -133,10 +141,9 @@ function studySquare(
       ...line.notices,
       ...zones.notices,
       ...cutNotices(first, zones.support),
-      ...conditioned.notices,
-      ...choice.notices,
+      ...withNoises([...conditioned.notices, ...choice.notices], noises, conditioned),
       ...feasible,
-      ...doubtsOfResidual(conditioned, estimate),
+      ...doubtsOfResidual(conditioned, estimate, remains, noises),
       ...doubtsOfStrips(strips, support),
       ...gainNotices(gain, resolution),
       ...remarksOfLevels(wanted.levels, conditioned, trust),
@@ -194,18 +201,51 @@ function widerMisfit(conditioned: ConditionedLine, support: Support, settings: S
   return {metres, share: totalLength(joined) / totalLength(support) - 1, misfit: solver.misfit(multiplier)};
 }
 
-function doubtsOfResidual({line, channels}: ConditionedLine, estimate: SourceEstimate): Notice[] {
-  const order = Int32Array.from(line.stations.chainage.keys()).sort(
-    (i, j) => line.stations.chainage[i] - line.stations.chainage[j] || i - j,
-  );
-  return estimate.channels.slice(0, channels.length).flatMap(({residual}, k) => {
-    const {excess, lagOne} = whiteness(Float64Array.from(order, (i) => residual[i]));
+/** Of each channel, over the standard deviation and in the order of chainage. */
+function whitenedResiduals(
+  {line, channels}: ConditionedLine,
+  estimate: SourceEstimate,
+  readings: Readings,
+): readonly Float64Array[] {
+  const {count, chainage} = line.stations;
+  const all = new Float64Array(readings.count);
+  let at = 0;
+  for (const {residual} of estimate.channels) {
+    all.set(residual, at);
+    at += residual.length;
+  }
+  const white = whitened(all, readings);
+  const order = byChainage(chainage);
+  return channels.map((_, k) => Float64Array.from(order, (i) => white[k * count + i]!));
+}
+
+function doubtsOfResidual(
+  {line, channels}: ConditionedLine,
+  estimate: SourceEstimate,
+  remains: readonly Float64Array[],
+  noises: readonly ChannelNoises[],
+): Notice[] {
+  return remains.flatMap((residual, k) => {
+    const {excess, lagOne} = whiteness(residual);
     if (!(excess > notWhite(residual.length, estimate.misfit / channels.length))) return [];
-    const which = channels.length > 1 ? ` of ${channels[k].channel.role}` : "";
+    const {channel, noiseLength} = channels[k]!;
+    const which = channels.length > 1 ? ` of ${channel.role}` : "";
+    const known = noises[k]!.length;
+    const length = known ?? lengthFromLagOne(lagOne, spacingOf(line.stations.chainage));
+    const basis =
+      known === undefined ? "from neighbours alone; too short where the fit took some of the noise" : "from the record";
+    const found =
+      noiseLength > 0
+        ? `The residuals${which} are not those of noise correlated over ${Number(noiseLength.toPrecision(4))} m: whitened for it, neighbours still correlate by ${lagOne.toFixed(2)}. Either that length is wrong`
+        : `The residuals${which} are not white noise (neighbours correlate by ${lagOne.toFixed(2)}): either the readings' noise is correlated`;
+    const cure =
+      noiseLength > 0 || length === undefined
+        ? "give the noise as it is at the wavelengths of the anomaly, or a wider --support"
+        : `if it is noise, give --noise-length ${lengthText(length)} with it (an estimate ${basis}), else a wider --support`;
     return [
       doubt(
         "residual/not-white",
-        `The residuals${which} are not white noise (neighbours correlate by ${lagOne.toFixed(2)}): either the readings' noise is correlated, or part of the anomaly is taken for noise. Intervals that count on white noise are too narrow by then. Look at the residual in the report; give the noise as it is at the wavelengths of the anomaly, or a wider --support.`,
+        `${found}, or part of the anomaly is taken for noise. Intervals that count on ${noiseLength > 0 ? "it" : "white noise"} are mostly too narrow by then. Look at the residual in the report; ${cure}.`,
       ),
     ];
   });

@@ -18,6 +18,7 @@ import type {Panels} from "../operators/panels.ts";
 import type {Observable} from "../potential/observable.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {SurveyLine} from "../survey/line.ts";
+import type {ChannelNoises} from "./noises.ts";
 
 export interface LineStudy {
   readonly line: SurveyLine;
@@ -32,6 +33,8 @@ export interface LineStudy {
   readonly kernels: readonly AveragingKernel[];
   /** Undefined where there is one channel. */
   readonly gain: ChannelGain | undefined;
+  /** What three ways say of the noise, one entry a channel. */
+  readonly noises: readonly ChannelNoises[];
   readonly averages: PanelAverages;
   readonly levels: readonly LevelProfile[];
   readonly strips: readonly StripEstimate[];
@@ -67,6 +70,8 @@ export interface RowStudy {
   readonly misfit: number;
   readonly misfitExpected: number;
   readonly noise: number;
+  /** Length over which it is correlated, m; 0: white. */
+  readonly noiseLength: number;
   readonly resolution: number;
   readonly degreesOfFreedom: number;
   readonly notices: readonly Notice[];

@@ -68,6 +68,9 @@ export function crossingOf(line: SurveyLine, {model, wanted}: Settings): Crossin
   return {scale, angle, azimuth: (strike + (turn < 0 ? 90 : 270)) % 360};
 }
 
+/** Messages that name a length of the noise. */
+const NOISE_LENGTH = /--noise-length \d|correlated over/;
+
 /** @param study makes the study of a line, with settings and zones, on chainage across the strike */
 export function acrossStrike(
   line: SurveyLine,
@@ -86,7 +89,13 @@ export function acrossStrike(
   };
   const {model, wanted} = settings;
   const {stations} = line;
-  const scaledLine = {...line, stations: {...stations, chainage: stations.chainage.map((x) => x * scale)}};
+  // Noise is correlated along the line as it was flown.
+  const channels = line.channels.map((channel) => ({...channel, noiseLength: (channel.noiseLength ?? 0) * scale}));
+  const scaledLine = {
+    ...line,
+    stations: {...stations, chainage: stations.chainage.map((x) => x * scale)},
+    channels,
+  };
   const scaledSettings: Settings = {
     ...settings,
     model: {
@@ -105,7 +114,9 @@ export function acrossStrike(
   };
   const words = `Lengths here are square to the strike: ${scale.toPrecision(4)} of those along the line, which crosses it at ${angle.toFixed(1)}°.`;
   const explained = <N extends {readonly code: string; readonly message: string}>(told: N): N =>
-    /^(support|strip|bound|channels)\//.test(told.code) ? {...told, message: `${told.message} ${words}`} : told;
+    /^(support|strip|bound|channels)\//.test(told.code) || NOISE_LENGTH.test(told.message)
+      ? {...told, message: `${told.message} ${words}`}
+      : told;
   let found: LineStudy;
   try {
     found = study(scaledLine, scaledSettings, scaledZones);
@@ -118,11 +129,20 @@ export function acrossStrike(
     throw error;
   }
   const back = (lengths: Float64Array): Float64Array => lengths.map((length) => length / scale);
-  const {conditioned, resolution, gain, averages} = found;
+  const {conditioned, resolution, gain, averages, noises} = found;
   return {
     ...found,
     line,
-    conditioned: {...conditioned, line, boundaryLine: boundaryTimes(conditioned.boundaryLine, 1 / scale)},
+    conditioned: {
+      ...conditioned,
+      line,
+      boundaryLine: boundaryTimes(conditioned.boundaryLine, 1 / scale),
+      channels: conditioned.channels.map((heard, k) => ({
+        ...heard,
+        channel: line.channels[k]!,
+        noiseLength: line.channels[k]!.noiseLength ?? 0,
+      })),
+    },
     panels: panelsTimes(found.panels, 1 / scale),
     resolution: {
       length: resolution.length / scale,
@@ -136,6 +156,7 @@ export function acrossStrike(
       value: value.map((height) => height * scale),
     })),
     gain: gain === undefined ? undefined : {...gain, without: gain.without / scale},
+    noises: noises.map((one) => (one.length === undefined ? one : {...one, length: one.length / scale})),
     averages: {...averages, averagedOver: back(averages.averagedOver)},
     levels: found.levels.map((level) => ({...level, averagedOver: back(level.averagedOver)})),
     strips: found.strips.map((estimate) => ({

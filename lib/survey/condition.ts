@@ -4,9 +4,10 @@ import {type BoundaryLine, boundaryAt} from "../geometry/boundary-line.ts";
 import {doubt, type Notice, remark, standingDoubt} from "../notice.ts";
 import type {EffectiveDirection} from "../potential/effective-direction.ts";
 import type {BoundarySetting} from "./boundary.ts";
+import {byChainage} from "./by-chainage.ts";
 import type {ConditionedChannel, ConditionedLine} from "./conditioned.ts";
 import type {Channel, SurveyLine} from "./line.ts";
-import {recordNoise} from "./record-noise.ts";
+import {recordNoise, spacingOf} from "./record-noise.ts";
 
 /**
  * @param boundary undefined: the ground, where that is a boundary at all
@@ -46,6 +47,7 @@ export function condition(
       z,
       noise: noiseOf(line, channel, notices),
       noiseFrom: channel.noise === "record" ? "record" : "given",
+      noiseLength: channel.noiseLength ?? 0,
     };
   });
   return {
@@ -63,14 +65,18 @@ export function condition(
 
 function noiseOf(line: SurveyLine, channel: Channel, notices: Notice[]): number {
   let {noise} = channel;
+  const length = channel.noiseLength ?? 0;
+  if (length > 0) checkApart(line, channel);
   if (noise === "record") {
-    const record = recordNoise(line.stations.chainage, channel.values);
+    const record = recordNoise(line.stations.chainage, channel.values, length);
     noise = record.sigma;
     if (!record.white)
       notices.push(
         doubt(
           "noise/record-not-white",
-          "The noise was taken from the fourth differences of the record, and these are not those of white noise: signal leaks into them or the noise is correlated. Give --noise.",
+          length > 0
+            ? `The noise was taken from the fourth differences of the record, and these are not those of noise correlated over ${length} m: signal leaks into them or the length is wrong. Give --noise.`
+            : "The noise was taken from the fourth differences of the record, and these are not those of white noise: signal leaks into them or the noise is correlated. Give --noise, or --noise-length with it.",
         ),
       );
   }
@@ -80,6 +86,25 @@ function noiseOf(line: SurveyLine, channel: Channel, notices: Notice[]): number 
       `The noise of line ${line.id} is ${noise}; it is a standard deviation and must be above zero. Give --noise.`,
     );
   return noise;
+}
+
+/** Stations nearer than this, in units of the spacing, stand at one place. */
+const SAME_PLACE = 1e-6;
+
+/** Two readings at one place would have one and the same noise, so that no source could make them differ. */
+function checkApart({id, file, stations}: SurveyLine, {role}: Channel): void {
+  const {chainage, row} = stations;
+  const least = SAME_PLACE * spacingOf(chainage);
+  const order = byChainage(chainage);
+  for (let k = 1; k < order.length; ++k) {
+    const [i, j] = [order[k - 1]!, order[k]!];
+    if (chainage[j]! - chainage[i]! > least) continue;
+    throw new InputError(
+      "noise/same-place",
+      `Rows ${row[i]} and ${row[j]} of line ${id} both stand at chainage ${chainage[j]} m. Noise that is correlated along the line would be the same for both readings of ${role}, and they could not differ. Leave one out or take their mean, or leave --noise-length out.`,
+      {place: {file, row: row[j]!}},
+    );
+  }
 }
 
 interface PlacedBoundary {

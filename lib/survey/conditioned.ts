@@ -13,6 +13,8 @@ export interface ConditionedChannel {
   /** Standard deviation of the noise, SI, and where it came from. */
   readonly noise: number;
   readonly noiseFrom: "given" | "record";
+  /** Length over which it is correlated, m; 0: it is white. */
+  readonly noiseLength: number;
 }
 
 export interface ConditionedLine {

@@ -52,6 +52,8 @@ interface ChannelFigures {
   readonly dimension: Dimension;
   /** SI. */
   readonly readings: Spread;
+  /** Length over which the noise was said to be correlated, m; 0: it is white. */
+  readonly noiseLength: number;
   /** By the fourth difference, SI; undefined where the record does not give it, and why. */
   readonly noise: RecordNoise | undefined;
   readonly noiseMissing: string | undefined;
@@ -142,7 +144,7 @@ function channelFigures(
   if (kind === "grid") noiseMissing = "A grid was interpolated and is smooth; its record does not show the noise.";
   else
     try {
-      noise = recordNoise(chainage, channel.values);
+      noise = recordNoise(chainage, channel.values, channel.noiseLength);
     } catch (error) {
       if (!(error instanceof ReportableError)) throw error;
       noiseMissing = error.message;
@@ -152,6 +154,7 @@ function channelFigures(
     observable: channel.observable.name,
     dimension: channel.observable.dimension,
     readings: spread(channel.values),
+    noiseLength: channel.noiseLength ?? 0,
     noise,
     noiseMissing,
     noiseMeaningful: sampling === undefined ? undefined : sampling.spacingToHeight <= NOISE_SPACING,

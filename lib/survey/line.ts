@@ -32,6 +32,10 @@ export interface Channel {
   readonly values: Float64Array;
   /** Standard deviation of the noise, SI, or `record`: from the fourth differences of the record itself. */
   readonly noise: number | "record";
+  /** Length L over which the noise is correlated along the line, exp(−|x − x′|/L), m; absent or 0: it is white. */
+  readonly noiseLength?: number | undefined;
+  /** Interpolated from a grid: smooth, so that the record shows no noise. */
+  readonly interpolated?: true;
   /** This sensor above the one that the stations' heights belong to, m; undefined where it is that one. */
   readonly above?: Float64Array | undefined;
 }

@@ -48,6 +48,32 @@ describe("continue over lines", () => {
     }
   });
 
+  test("a length of the noise reaches answers, ledger, record and report; that of white noise changes nothing", async () => {
+    const folder = temporaryFolder();
+    const survey = fileWith("lines.csv", surveyText(["L1"]), folder);
+    const into = async (name: string, ...own: readonly string[]): Promise<string> => {
+      const out = join(folder, name);
+      expect((await run(["continue", survey, ...SETTINGS, ...own, "--out", out])).status).toBe(0);
+      return out;
+    };
+    const [white, zero, red] = [
+      await into("white"),
+      await into("zero", "--noise-length", "0"),
+      await into("red", "--noise-length", "3"),
+    ];
+    for (const name of LINE_FILES.filter((file) => file !== "timing.json"))
+      expect(readFileSync(join(zero, name), "utf8"), name).toBe(readFileSync(join(white, name), "utf8"));
+    expect(table(white, "strips.csv")).not.toEqual(table(red, "strips.csv"));
+    expect(table(red, "lines.csv")[0]).toMatchObject({noise_mGal: "0.02", noise_length_m: "3"});
+    expect(Number(table(white, "lines.csv")[0]!["noise_record_mGal"])).toBeGreaterThan(0);
+    expect(JSON.parse(readFileSync(join(red, "record.json"), "utf8")).settings.acquisition.noiseLength).toBe(3);
+    const report = readFileSync(join(red, "report.html"), "utf8");
+    expect(report).toMatch(/noise 0\.02 mGal given, correlated over 3(\.0)? m along the line/);
+    expect(report).toMatch(
+      /Noise by each way<\/dt><dd>given 0\.0200?; from the record 0\.0\d+; from the shortest waves/,
+    );
+  });
+
   test("lines that differ on a strip by more than their intervals allow are told on the screen, in the report and in the ledger", async () => {
     /** 10 m above a plate of 0.6 mGal below chainage 150:310, on the last of three lines so many times as strong. */
     const survey = (times: number): string => {

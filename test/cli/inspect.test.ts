@@ -35,6 +35,18 @@ describe("inspect", () => {
     expect(high).not.toMatch(/partly signal/);
   });
 
+  test("reads the noise of the record as that of the length given, with an observable or without", async () => {
+    const survey = fileWith("lines.csv", surveyText(["L1"], 2000));
+    const channelOf = async (...own: readonly string[]) =>
+      JSON.parse((await run(["inspect", survey, ...own, "--json"])).out).lines[0].channels[0];
+    const white = await channelOf("--observable", "gravity");
+    const red = await channelOf("--observable", "gravity", "--noise-length", "40");
+    expect([white.noiseLength, red.noiseLength]).toEqual([0, 40]);
+    // Stations 10 m apart: σ is read off differences that are 0.376 of those of white noise.
+    expect(red.noise.sigma / white.noise.sigma).toBeCloseTo(1 / Math.sqrt(0.14168461826), 6);
+    expect((await channelOf("--noise-length", "40")).noise.sigma).toBe(red.noise.sigma);
+  });
+
   test("needs no observable and no height: says so, and shows no unit and no height that nobody gave", async () => {
     const survey = fileWith("lines.csv", surveyText().replace("clearance", "weather"));
     const {status, out, err} = await run(["inspect", survey]);

@@ -39,6 +39,7 @@ describe("settings", () => {
       split: undefined,
       channels: [{role: "value", observable: "gravity", unit: undefined, noise: undefined}],
       profiles: "rows",
+      noiseLength: 0,
     });
     expect(model).toEqual({boundary: undefined, support: [], panel: undefined, regional: 1});
     expect(bound.text).toBe("discrepancy");

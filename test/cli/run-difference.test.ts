@@ -36,6 +36,7 @@ describe("two runs differ", () => {
   test.each<[string, Parameters<typeof identity>[0], Parameters<typeof identity>[0], string]>([
     ["text that is gone", {crs: "EPSG:25833"}, {}, '--crs was "EPSG:25833" and is not given'],
     ["a number of the channel", {noise: "0.02"}, {noise: "record"}, '--noise was "0.02" and is "record"'],
+    ["the length of the noise", {}, {"noise-length": "50"}, '--noise-length was "0" and is "50"'],
     ["a name of two words", {"sensor-offset": "-3"}, {"sensor-offset": "0"}, '--sensor-offset was "-3" and is "0"'],
     ["a boundary", {boundary: "86"}, {boundary: "depth-5"}, '--boundary was "86" and is "depth-5"'],
     ["a column", {column: ["value=g"]}, {column: ["value=h"]}, '--column was "value=g" and is "value=h"'],

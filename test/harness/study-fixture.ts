@@ -204,7 +204,14 @@ export function lineStudy(options: FixtureOptions = {}): LineStudy {
       datum: 0,
       boundary: "flat, at elevation 40 m",
       channels: [
-        {channel: line.channels[0], response: observable.response(undefined), z: height, noise, noiseFrom: "given"},
+        {
+          channel: line.channels[0],
+          response: observable.response(undefined),
+          z: height,
+          noise,
+          noiseFrom: "given",
+          noiseLength: 0,
+        },
       ],
       direction: undefined,
       notices: [],
@@ -231,6 +238,7 @@ export function lineStudy(options: FixtureOptions = {}): LineStudy {
       },
     ],
     gain: undefined,
+    noises: [{role: "value", given: noise, record: 1.1 * noise, spectrum: 0.9 * noise, flat: true}],
     averages: {
       value: average,
       lower: average.map((v, j) => v - half[j]!),
@@ -390,6 +398,7 @@ export function rowOutcome(index: number, width: number, levels: readonly LevelS
       misfit: width * (1 + 0.05 * Math.sin(index)),
       misfitExpected: width,
       noise: 1e-9,
+      noiseLength: 0,
       resolution: 14,
       degreesOfFreedom: 22,
       notices: [],

@@ -68,8 +68,8 @@ describe("headers carry the names and units of the contract", () => {
     [
       "lines",
       linesCsv,
-      "line,status,reason,stations,panels,modes,multiplier,bound,norm,bound_active,misfit,misfit_expected,noise_nT,resolution_m,degrees_of_freedom,trusted_level_m",
-      "line,status,reason,stations,panels,modes,multiplier,bound,norm,bound_active,misfit,misfit_expected,noise_mGal,resolution_m,degrees_of_freedom,trusted_level_m",
+      "line,status,reason,stations,panels,modes,multiplier,bound,norm,bound_active,misfit,misfit_expected,noise_nT,resolution_m,degrees_of_freedom,trusted_level_m,noise_record_nT,noise_spectrum_nT,noise_length_m",
+      "line,status,reason,stations,panels,modes,multiplier,bound,norm,bound_active,misfit,misfit_expected,noise_mGal,resolution_m,degrees_of_freedom,trusted_level_m,noise_record_mGal,noise_spectrum_mGal,noise_length_m",
     ],
     [
       "bounds assumed",

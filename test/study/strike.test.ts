@@ -110,6 +110,23 @@ describe("a body crossed at 60°", () => {
     }
   });
 
+  test("has noise that is correlated along the line as it was flown", () => {
+    const red = (line: SurveyLine, noiseLength: number): SurveyLine => ({
+      ...line,
+      channels: [{...line.channels[0], noiseLength}],
+    });
+    const line = red(lineTowards(35, SCALE), 12 / SCALE);
+    const study = studyLine(line, asked(SCALE, STRIKE));
+    expect(study.conditioned.channels[0]).toMatchObject({noiseLength: 12 / SCALE, channel: line.channels[0]});
+    const [got, want] = [study, studyLine(red(lineTowards(SQUARE, 1), 12), asked(1, undefined))];
+    absoluteClose(got.estimate.misfit / want.estimate.misfit, 1, 1e-6, "rounding of weak modes");
+    got.strips.forEach(({lower, upper}, k) => {
+      absoluteClose(lower / STRENGTH, want.strips[k]!.lower / STRENGTH, 1e-6, "rounding of weak modes");
+      absoluteClose(upper / STRENGTH, want.strips[k]!.upper / STRENGTH, 1e-6, "rounding of weak modes");
+    });
+    expect(Math.abs(want.strips[0]!.upper / square.strips[0]!.upper - 1)).toBeGreaterThan(1e-3);
+  });
+
   test("brings the truth back inside the interval of its total, per metre of strike", () => {
     const study = studyLine(lineTowards(35, SCALE), asked(SCALE, STRIKE, {regional: -1}));
     const {total} = stripAnswer(study.strips[0]!, deliveryOf(study.observable));

@@ -1,5 +1,6 @@
 import {describe, expect, test} from "vitest";
-import {recordNoise, WHITE_LAG_ONE} from "../../lib/survey/record-noise.ts";
+import {lengthFromShare, recordNoise, WHITE_LAG_ONE} from "../../lib/survey/record-noise.ts";
+import {redNoise} from "../harness/red-noise.ts";
 import {normals} from "./normals.ts";
 
 const even = (count: number, step: number) => Float64Array.from({length: count}, (_, i) => i * step);
@@ -61,5 +62,56 @@ describe("noise by the fourth difference", () => {
   test("asks for --noise when the record is short, or rounded flat", () => {
     expect(() => recordNoise(even(23, 1), normals(23, 1))).toThrow(/Only 19 runs .* --noise/s);
     expect(() => recordNoise(even(100, 1), new Float64Array(100).fill(7))).toThrow(/rounded, interpolated or smoothed/);
+  });
+});
+
+describe("of noise correlated over a known length", () => {
+  // Steps between 3.5 and 6.5 m.
+  const chainage = even(4000, 5).map((x, i) => x + 0.75 * Math.sin(7 * i));
+
+  test.each([2, 20, 300])("L = %d m: the standard deviation is found over a smooth field", (length) => {
+    const noise = redNoise(chainage, 0.25, length, 17);
+    const values = chainage.map((x, i) => 40 / (1 + ((x - 9000) / 800) ** 2) + noise[i]!);
+    const found = recordNoise(chainage, values, length);
+    // As for white noise: 3.7 % is the standard error of 4,000 stations, four of them.
+    expect(Math.abs(found.sigma / 0.25 - 1)).toBeLessThan(0.15);
+    expect(found.white).toBe(true);
+  });
+
+  test("taken for white it is far too small, and said not to be white", () => {
+    const noise = redNoise(chainage, 0.25, 20, 17);
+    const found = recordNoise(chainage, noise);
+    // Even steps: Σ a_i a_j e^(−|i − j|/4)/70 is 0.1417 for (1, −4, 6, −4, 1), σ is 0.376 of the true one.
+    expect(Math.abs(found.sigma / 0.25 / Math.sqrt(0.1417) - 1)).toBeLessThan(0.2);
+    expect(found.white).toBe(false);
+  });
+
+  test("the length goes to 0: the figure of white noise", () => {
+    const values = normals(4000, 4);
+    const white = recordNoise(chainage, values);
+    const limit = recordNoise(chainage, values, 0.05);
+    // e^(−70) of a neighbour; the variance is the sum of the same products in another order.
+    expect(Math.abs(limit.sigma / white.sigma - 1)).toBeLessThan(1e-12);
+    expect(limit.lagOne).toBeCloseTo(white.lagOne, 12);
+    expect(limit.lagOneTolerance).toBeCloseTo(white.lagOneTolerance, 12);
+  });
+
+  test("at a great length nothing cancels", () => {
+    // Only e^(−x) − 1 ≈ −x counts: twice the length, and the same differences are read as √2 of the noise.
+    const values = normals(400, 4);
+    const [one, other] = [1e9, 2e9].map((length) => recordNoise(chainage.slice(0, 400), values, length).sigma);
+    expect(Math.abs(other! / one! / Math.SQRT2 - 1)).toBeLessThan(1e-7);
+  });
+
+  test.each([0.5, 4, 50])("of L = %d spacings is found again from what it leaves of white noise", (length) => {
+    const weights = [1, -4, 6, -4, 1];
+    let variance = 0;
+    weights.forEach((a, i) => {
+      weights.forEach((b, j) => {
+        variance += (a * b * Math.exp(-Math.abs(i - j) / length)) / 70;
+      });
+    });
+    // A sum of 70ths that cancels to some 1/(L/Δ): ε over that, twice for the root.
+    expect(Math.abs(lengthFromShare(Math.sqrt(variance), 3) / (3 * length) - 1)).toBeLessThan(1e-11);
   });
 });
