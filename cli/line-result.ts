@@ -5,6 +5,7 @@ import {deliveryOf} from "../lib/report/delivery.ts";
 import {stripAnswer} from "../lib/report/strip-answer.ts";
 import type {LineOutcome} from "../lib/study/outcome.ts";
 import {boundsResult} from "./bounds-result.ts";
+import {comparisonResult} from "./comparison-result.ts";
 import {reachResult} from "./reach-result.ts";
 import {type Column, figure, textTable} from "./table.ts";
 
@@ -27,6 +28,7 @@ export function lineResult(observable: Observable, confidence: number): RunResul
   const stripRows: string[][] = [];
   const lines: Record<string, unknown>[] = [];
   const strips: Record<string, unknown>[] = [];
+  const comparison = comparisonResult(delivery);
 
   const bounds = boundsResult(delivery);
   const reach = reachResult();
@@ -105,6 +107,7 @@ export function lineResult(observable: Observable, confidence: number): RunResul
       for (const strip of study.strips) addStrip(id, strip, choice.basis);
       bounds.add(id, study);
       reach.add(id, study);
+      comparison.add(study);
     },
     text: () => {
       const heads = [
@@ -126,11 +129,11 @@ export function lineResult(observable: Observable, confidence: number): RunResul
         right(interval),
       ];
       const stripsTable = stripRows.length === 0 ? "" : `\n${textTable(stripHeads, stripRows)}`;
-      return textTable(heads, lineRows) + stripsTable + bounds.text() + reach.text();
+      return textTable(heads, lineRows) + stripsTable + comparison.text() + bounds.text() + reach.text();
     },
     json: () => {
       const assumed = bounds.json();
-      return {lines, strips, ...(assumed.length === 0 ? {} : {at_bounds: assumed})};
+      return {lines, strips, ...comparison.json(), ...(assumed.length === 0 ? {} : {at_bounds: assumed})};
     },
   };
 }

@@ -87,6 +87,27 @@ export interface StripEstimate {
   readonly plainMean: number;
 }
 
+/** Mean of the one source on the panels over a strip; SI. */
+export type StripMean = Pick<StripEstimate, "strip" | "plainMean">;
+
+/** What one rule makes of a line, for comparison. */
+export interface RuleAnswer {
+  readonly rule: string;
+  /** Why this multiplier; without figures, why none. */
+  readonly reason: string;
+  readonly figures?: {
+    readonly multiplier: number;
+    /** M that its intervals would take, SI·√m. */
+    readonly bound: number;
+    readonly norm: number;
+    readonly misfit: number;
+    readonly degreesOfFreedom: number;
+    /** m; Infinity where nothing is resolved. */
+    readonly resolution: number;
+    readonly strips: readonly StripMean[];
+  };
+}
+
 /** What further channels add to the first. */
 export interface ChannelGain {
   /** Their roles: `value.2` … */

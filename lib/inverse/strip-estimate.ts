@@ -14,15 +14,21 @@ export function stripEstimate(
 ): StripEstimate {
   const stretches = partsOf(strip);
   const {value, halfWidth} = solver.interval(meanOver(strip, support, boundaryOfPanels(panels), stretches));
-  let integral = 0;
-  for (let j = 0; j < panels.count; ++j)
-    for (const part of clip({from: panels.from[j], to: panels.to[j]}, stretches))
-      integral += density[j] * (part.to - part.from);
   return {
     strip,
     mean: value,
     lower: value - halfWidth,
     upper: value + halfWidth,
-    plainMean: integral / totalLength(stretches),
+    plainMean: plainMeanOf(panels, density, strip),
   };
+}
+
+/** Mean of the one source on the panels. */
+export function plainMeanOf(panels: Panels, density: Float64Array, strip: Strip): number {
+  const stretches = partsOf(strip);
+  let integral = 0;
+  for (let j = 0; j < panels.count; ++j)
+    for (const part of clip({from: panels.from[j], to: panels.to[j]}, stretches))
+      integral += density[j] * (part.to - part.from);
+  return integral / totalLength(stretches);
 }

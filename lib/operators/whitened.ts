@@ -17,6 +17,8 @@ export interface WhitenedSystem {
   readonly data: Float64Array;
   /** √w, √m. */
   readonly rootWidth: Float64Array;
+  /** What was projected out, in whitened readings. */
+  readonly basis: RegionalBasis;
 }
 
 /** @param readings whose noise whitens; @param basis in whitened readings */
@@ -42,7 +44,7 @@ export function whiten(
           (operator.matrix[i * columns + j] - rho * operator.matrix[before * columns + j]) * inverse * scale[j];
   }
   projectOutOfColumnsInPlace(matrix, columns, basis);
-  return {rows: operator.readings, columns, matrix, data: whitenData(values, readings, basis), rootWidth};
+  return {rows: operator.readings, columns, matrix, data: whitenData(values, readings, basis), rootWidth, basis};
 }
 
 /** Q d / σ; where the noise is correlated, Q W d with W of `correlated-noise.ts`. */

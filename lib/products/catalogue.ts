@@ -3,6 +3,7 @@
 import type {Settings} from "../study/settings.ts";
 import type {AlsoWord} from "./also.ts";
 import {boundsAssumedCsv} from "./bounds-assumed-csv.ts";
+import {boundsCsv} from "./bounds-csv.ts";
 import {gridRasters} from "./grid-rasters.ts";
 import {gridReportHtml} from "./grid-report-html.ts";
 import {levelsCsv} from "./levels-csv.ts";
@@ -20,8 +21,8 @@ export interface LineProductKind {
   readonly file: string;
   /** The word of `--also` that asks for it; absent: always written. */
   readonly also?: AlsoWord;
-  /** Absent: whatever the bound. */
-  readonly withoutBound?: true;
+  /** Whether these settings ask for it; absent: they need not. */
+  asked?(settings: Settings): boolean;
   /** One sentence for help texts. */
   readonly summary: string;
   make(opening: Opening, about: RunAbout): Promise<LineProduct>;
@@ -57,7 +58,7 @@ const LINE_PRODUCTS: readonly LineProductKind[] = [
   },
   {
     file: "bounds_assumed.csv",
-    withoutBound: true,
+    asked: ({bound}) => bound.name !== "given",
     summary: "where no bound was given: the answers at half, once, twice and four times the one that was assumed",
     make: async ({openText}) => boundsAssumedCsv(await openText("bounds_assumed.csv")),
   },
@@ -70,6 +71,12 @@ const LINE_PRODUCTS: readonly LineProductKind[] = [
     file: "tradeoff.csv",
     summary: "misfit against norm over the multipliers",
     make: async ({openText}) => tradeoffCsv(await openText("tradeoff.csv")),
+  },
+  {
+    file: "bounds.csv",
+    asked: ({bound}) => bound.compared !== undefined,
+    summary: "what each rule for the bound makes of every line",
+    make: async ({openText}) => boundsCsv(await openText("bounds.csv")),
   },
   {
     file: "report.html",
@@ -97,10 +104,9 @@ export const GRID_PRODUCTS: readonly GridProductKind[] = [
 ];
 
 /** Those that a run with these settings writes. */
-export const lineProductKinds = ({wanted, bound}: Settings): readonly LineProductKind[] =>
+export const lineProductKinds = (settings: Settings): readonly LineProductKind[] =>
   LINE_PRODUCTS.filter(
-    ({also, withoutBound}) =>
-      (also === undefined || wanted.also?.includes(also)) && (withoutBound === undefined || bound.name !== "given"),
+    ({also, asked}) => (also === undefined || settings.wanted.also?.includes(also)) && (asked?.(settings) ?? true),
   );
 
 /** Opens the files of a run over lines; `begin` none before all are open. */

@@ -1,6 +1,7 @@
 /** All about one line: strips, doubts, the figure, why this multiplier, what the intervals rest on. */
 import type {LineStudy} from "../study/outcome.ts";
 import {boundsTable} from "./bounds-table.ts";
+import {comparisonTable} from "./comparison-table.ts";
 import {deliveryOf} from "./delivery.ts";
 import {kernelsFigure} from "./figures/kernels.ts";
 import {LEVELS_SHOWN, profileFigure} from "./figures/profile.ts";
@@ -33,6 +34,7 @@ export function lineSection(study: LineStudy, status: "done" | "doubtful", index
     `<figure>${profileFigure(study)}<figcaption>${caption(study)}</figcaption></figure>`,
     reach(study),
     `<div class="pair"><figure>${tradeoffFigure(study)}</figure>${grounds(study)}</div>`,
+    comparisonTable(study),
     "</section>\n",
   ].join("");
 }

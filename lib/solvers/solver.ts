@@ -4,6 +4,30 @@
  *
  * misfit(α) grows and norm(α) falls; d misfit / d norm² = −α (Miller, SIAM J. Math. Anal. 1 (1970) 52, from memory).
  */
+import type {RegionalBasis} from "../operators/regional.ts";
+
+/** What the modes carry, one entry each. */
+export interface ModalEnergies {
+  /** λ_k, decreasing. */
+  readonly eigenvalues: Float64Array;
+  /** c_k², c_k = u_kᵀd; of pooled lines their sum. */
+  readonly energies: Float64Array;
+  /** How many lines share each mode, where lines are pooled; absent: one. */
+  readonly repeats?: Float64Array;
+}
+
+/** The modes on the side of the readings: fit = R Rᵀ + U diag(λ/(λ + α)) Uᵀ, U orthogonal to R. */
+export interface DataSide {
+  readonly eigenvalues: Float64Array;
+  /** modes × readings: u_k, row-major. */
+  readonly left: Float64Array;
+  readonly coefficients: Float64Array;
+  /** Q d/σ. */
+  readonly data: Float64Array;
+  /** R. */
+  readonly regional: RegionalBasis;
+}
+
 export interface Solver {
   /** Number of readings. */
   readonly data: number;
@@ -25,6 +49,10 @@ export interface Solver {
    * with it, as a multiple of the one that whitened them; undefined where nothing was diagonalised.
    */
   readonly evidence: ((multiplier: number) => {readonly against: number; readonly noise: number}) | undefined;
+  /** For rules that weigh the modes one by one; absent where nothing was diagonalised. */
+  readonly modal?: ModalEnergies;
+  /** For rules that leave readings out; formed when first asked for, absent where readings are not kept. */
+  readonly dataSide?: () => DataSide;
   /** The same readings whitened by `factor` times the noise. */
   withNoise(factor: number): Solver;
   /** f on the panels, SI. */

@@ -6,7 +6,7 @@
  * Source: Miller, SIAM J. Math. Anal. 1 (1970) 52; Groetsch, The Theory of Tikhonov Regularization (1984) (both from memory).
  */
 import type {WhitenedSystem} from "../operators/whitened.ts";
-import {combineRight, modesAndCoefficients, USABLE} from "../spectral/singular-system.ts";
+import {combineRight, leftOf, modesAndCoefficients, USABLE} from "../spectral/singular-system.ts";
 import type {Constrained} from "./constraint.ts";
 import type {Solver} from "./solver.ts";
 
@@ -19,6 +19,7 @@ export function spectralSolver(system: WhitenedSystem, taken: number, tied?: Con
   const energies = coefficients.map((c) => c * c);
   const outside = energyOutside(system.data, energies);
   const {rootWidth} = system;
+  let left: Float64Array | undefined;
   /** The same readings with `noise` times the standard deviation: λ and c² shrink by its square. */
   const withNoise = (noise: number): Solver => {
     const shrink = 1 / (noise * noise);
@@ -34,6 +35,12 @@ export function spectralSolver(system: WhitenedSystem, taken: number, tied?: Con
       unknowns: modes.columns,
       modes: modes.count,
       evidence: evidenceOf(eigenvalues, shrunk, outside * shrink, system.rows - taken),
+      modal: {eigenvalues, energies: shrunk},
+      dataSide: () => {
+        left ??= leftOf(modes, system.matrix);
+        const over = (values: Float64Array): Float64Array => values.map((value) => value / noise);
+        return {eigenvalues, left, coefficients: over(coefficients), data: over(system.data), regional: system.basis};
+      },
       estimate(multiplier) {
         const weights = coefficients.map(
           (c, k) => (Math.sqrt(eigenvalues[k]) * c) / noise / (eigenvalues[k] + multiplier),

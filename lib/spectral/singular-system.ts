@@ -86,11 +86,7 @@ const overRoots = (vectors: Float64Array, length: number, eigenvalues: Float64Ar
 };
 
 const leftFrom = (half: Half, matrix: Float64Array, rows: number, columns: number): Float64Array =>
-  overRoots(
-    multiplyTransposedInto(new Float64Array(half.count * rows), half.vectors, matrix, half.count, columns, rows),
-    rows,
-    half.eigenvalues,
-  );
+  leftOf({...half, rows, columns, right: half.vectors}, matrix);
 
 const rightFrom = (half: Half, matrix: Float64Array, rows: number, columns: number): Float64Array =>
   overRoots(
@@ -150,6 +146,12 @@ export function modesAndCoefficients(
     coefficients.map((c, k) => c * Math.sqrt(eigenvalues[k])),
   );
   return {modes, coefficients, rest: back.map((value, j) => value - seen[j])};
+}
+
+/** u_k = B v_k/√λ_k, count × rows. Those of the smallest λ_k are orthogonal to ε √(λ_0/λ_k) only. */
+export function leftOf({rows, columns, count, eigenvalues, right}: Modes, matrix: Float64Array): Float64Array {
+  const left = multiplyTransposedInto(new Float64Array(count * rows), right, matrix, count, columns, rows);
+  return overRoots(left, rows, eigenvalues);
 }
 
 /** u_kᵀ d for every mode. */

@@ -4,6 +4,7 @@ import {type Support, totalLength} from "../geometry/interval.ts";
 import {apparentNoise, chanceRatio} from "../inverse/apparent-noise.ts";
 import {resolutionOf} from "../inverse/averages.ts";
 import type {BoundChoice, ChannelGain, Resolution} from "../inverse/nouns.ts";
+import type {BoundRule, RuleQuestion} from "../inverse/rules/rule.ts";
 import {doubt, type Notice, remark} from "../notice.ts";
 import type {Panels} from "../operators/panels.ts";
 import type {Solver} from "../solvers/solver.ts";
@@ -13,7 +14,7 @@ import type {Settings} from "./settings.ts";
 
 /**
  * The resolution of the first channel alone, at a multiplier of its own by the same rule and with the bound of all.
- * @returns undefined where there is one channel
+ * @returns undefined where there is one channel, or the first alone gives the rule no hold
  */
 export function gainOf(
   conditioned: ConditionedLine,
@@ -25,8 +26,15 @@ export function gainOf(
   const [, ...further] = conditioned.channels;
   if (further.length === 0) return undefined;
   const first = withChannel(conditioned, 0);
-  const {solver} = operated(first, panels, model.regional);
-  const own = bound.choose({solver, supportLength: totalLength(support), lines: 1, largestNorm: solver.norm});
+  const {solver, readings} = operated(first, panels, model.regional);
+  const own = multiplierBy(bound, {
+    solver,
+    supportLength: totalLength(support),
+    lines: 1,
+    places: readings.x,
+    largestNorm: solver.norm,
+  });
+  if (own === undefined) return undefined;
   const {intervals} = intervalsOn(first, {
     support,
     panels,
@@ -34,8 +42,17 @@ export function gainOf(
     bound: choice.bound,
     confidence: wanted.confidence,
   });
-  const {length} = resolutionOf(intervals, panels, own.multiplier, conditioned.line.stations.chainage);
+  const {length} = resolutionOf(intervals, panels, own, conditioned.line.stations.chainage);
   return {further: further.map(({channel}) => channel.role), without: length};
+}
+
+function multiplierBy(rule: BoundRule, question: RuleQuestion): number | undefined {
+  try {
+    return rule.choose(question).multiplier;
+  } catch (error) {
+    if (error instanceof ModelError) return undefined;
+    throw error;
+  }
 }
 
 /** @param resolution of all channels together */

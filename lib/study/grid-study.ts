@@ -199,6 +199,7 @@ async function poolRows(
     data: readings,
     unknowns: 0,
     modes: order.eigenvalues.length,
+    modal: order,
     evidence: evidenceOf(order.eigenvalues, order.energies, outside, readings - terms, order.repeats),
     estimate: (): Float64Array => new Float64Array(),
     withNoise(): never {

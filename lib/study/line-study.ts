@@ -11,7 +11,7 @@ import {averagingKernels} from "../inverse/averaging-kernels.ts";
 import {estimateSource} from "../inverse/estimate.ts";
 import {multiplierForNorm} from "../inverse/multiplier-for.ts";
 import {partsOf, type SourceEstimate, type Strip} from "../inverse/nouns.ts";
-import {stripEstimate} from "../inverse/strip-estimate.ts";
+import {plainMeanOf, stripEstimate} from "../inverse/strip-estimate.ts";
 import {tradeoffCurve} from "../inverse/tradeoff.ts";
 import {lengthFromLagOne, notWhite, whiteness} from "../inverse/whiteness.ts";
 import {doubt, type Notice} from "../notice.ts";
@@ -28,6 +28,7 @@ import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {SurveyLine} from "../survey/line.ts";
 import {spacingOf} from "../survey/record-noise.ts";
 import {disagreement, gainNotices, gainOf, unlessApart} from "./channels-together.ts";
+import {comparisonOf} from "./comparison.ts";
 import {effectiveDirectionOf} from "./direction-of-line.ts";
 import {feasibility} from "./feasibility.ts";
 import {gradientSignNotices} from "./gradient-sign.ts";
@@ -80,10 +81,17 @@ function studySquare(
   const apart = signs[0] ?? disagreement(first, panels, model.regional, asGiven);
   const strips = stripsOfLine(line, support, wanted.strips, zones.strips);
   const curve = tradeoffCurve(solver);
+  const asked = {
+    solver,
+    supportLength: totalLength(support),
+    lines: 1,
+    places: readings.x,
+    largestNorm: solver.norm,
+  };
   const choice = namingTies(
     ties,
     () => solver.norm(Infinity),
-    () => settings.bound.choose({solver, supportLength: totalLength(support), lines: 1, largestNorm: solver.norm}),
+    () => settings.bound.choose(asked),
   );
   const feasible = unlessApart(apart, () =>
     feasibility(solver, choice, () =>
@@ -107,6 +115,14 @@ function studySquare(
   const remains = whitenedResiduals(conditioned, estimate, readings);
   const noises = noisesOf(conditioned, remains, estimate);
   const resolution = resolutionOf(intervals, panels, choice.multiplier, line.stations.chainage);
+  const {compared} = settings.bound;
+  const comparison =
+    compared === undefined
+      ? undefined
+      : comparisonOf(compared, asked, {
+          resolution: (multiplier) => resolutionOf(intervals, panels, multiplier, line.stations.chainage).length,
+          stripMeans: (density) => strips.map((strip) => ({strip, plainMean: plainMeanOf(panels, density, strip)})),
+        });
   const gain = gainOf(conditioned, settings, panels, support, choice);
   const question = {
     conditioned,
@@ -125,6 +141,7 @@ function studySquare(
     panels,
     curve,
     choice,
+    ...(comparison === undefined ? {} : {comparison}),
     estimate,
     resolution,
     kernels: averagingKernels(intervals, continuum, panels, resolution, choice.multiplier, line.stations.chainage),

@@ -9,6 +9,7 @@ import type {
   ChannelGain,
   PanelAverages,
   Resolution,
+  RuleAnswer,
   SourceEstimate,
   StripEstimate,
   TradeoffCurve,
@@ -27,6 +28,8 @@ export interface LineStudy {
   readonly panels: Panels;
   readonly curve: TradeoffCurve;
   readonly choice: BoundChoice;
+  /** What each rule makes of the line, where that was asked. */
+  readonly comparison?: readonly RuleAnswer[];
   readonly estimate: SourceEstimate;
   readonly resolution: Resolution;
   /** At a handful of places along the line, chainage increasing. */

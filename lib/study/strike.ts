@@ -9,7 +9,7 @@ import type {BoundaryLine} from "../geometry/boundary-line.ts";
 import type {Support} from "../geometry/interval.ts";
 import {totalLength} from "../geometry/interval.ts";
 import {trackDirection} from "../geometry/track-direction.ts";
-import {partsOf, type Strip} from "../inverse/nouns.ts";
+import {partsOf, type RuleAnswer, type Strip} from "../inverse/nouns.ts";
 import type {Notice} from "../notice.ts";
 import type {Panels} from "../operators/panels.ts";
 import type {SurveyLine} from "../survey/line.ts";
@@ -129,7 +129,12 @@ export function acrossStrike(
     throw error;
   }
   const back = (lengths: Float64Array): Float64Array => lengths.map((length) => length / scale);
-  const {conditioned, resolution, gain, averages, noises} = found;
+  const {conditioned, resolution, gain, averages, noises, comparison} = found;
+  const answerBack = ({figures, ...told}: RuleAnswer): RuleAnswer => {
+    if (figures === undefined) return told;
+    const strips = figures.strips.map((mean) => ({...mean, strip: own.get(mean.strip)!}));
+    return {...told, figures: {...figures, resolution: figures.resolution / scale, strips}};
+  };
   return {
     ...found,
     line,
@@ -155,6 +160,7 @@ export function acrossStrike(
       chainage: back(chainage),
       value: value.map((height) => height * scale),
     })),
+    ...(comparison === undefined ? {} : {comparison: comparison.map(answerBack)}),
     gain: gain === undefined ? undefined : {...gain, without: gain.without / scale},
     noises: noises.map((one) => (one.length === undefined ? one : {...one, length: one.length / scale})),
     averages: {...averages, averagedOver: back(averages.averagedOver)},

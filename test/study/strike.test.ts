@@ -127,6 +127,28 @@ describe("a body crossed at 60°", () => {
     expect(Math.abs(want.strips[0]!.upper / square.strips[0]!.upper - 1)).toBeGreaterThan(1e-3);
   });
 
+  test("has its rules compared as if crossed squarely", () => {
+    const bound = boundRuleNamed("compare", 1);
+    const squarely = studyLine(lineTowards(SQUARE, 1), {...asked(1, undefined), bound}).comparison!;
+    const got = studyLine(lineTowards(35, SCALE), {...asked(SCALE, STRIKE), bound}).comparison!;
+    // So little noise leaves the curve without a corner; the other three choose.
+    expect(got.map(({rule}) => rule)).toEqual(squarely.map(({rule}) => rule));
+    expect(got.filter(({figures}) => figures === undefined)).toEqual(
+      squarely.filter(({figures}) => figures === undefined),
+    );
+    const chosen = got.filter(({figures}) => figures !== undefined);
+    expect(chosen.map(({rule}) => rule)).toEqual(["discrepancy", "cross-validation", "balance"]);
+    chosen.forEach(({rule, figures}) => {
+      const want = squarely.find((one) => one.rule === rule)!.figures!;
+      expect(figures!.strips.map((one) => one.strip)).toEqual(asked(SCALE, STRIKE).wanted.strips);
+      const because = "rounding of weak modes, and steps of a search that they may shift";
+      absoluteClose((figures!.resolution * SCALE) / want.resolution, 1, 1e-4, because);
+      figures!.strips.forEach(({plainMean}, i) => {
+        absoluteClose(plainMean / STRENGTH, want.strips[i]!.plainMean / STRENGTH, 1e-4, because);
+      });
+    });
+  });
+
   test("brings the truth back inside the interval of its total, per metre of strike", () => {
     const study = studyLine(lineTowards(35, SCALE), asked(SCALE, STRIKE, {regional: -1}));
     const {total} = stripAnswer(study.strips[0]!, deliveryOf(study.observable));

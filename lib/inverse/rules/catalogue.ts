@@ -1,5 +1,9 @@
 /** Every rule for the bound. Help texts and option parsing read this list; a further rule is one file and one line here. */
 import {InputError} from "../../errors.ts";
+import {balance} from "./balance.ts";
+import {compareRules} from "./compare.ts";
+import {corner} from "./corner.ts";
+import {crossValidation} from "./cross-validation.ts";
 import {discrepancy} from "./discrepancy.ts";
 import {givenBound} from "./given.ts";
 import type {BoundRule} from "./rule.ts";
@@ -24,6 +28,11 @@ const given =
     return givenBound(text, (supportLength) => norm(value, supportLength) * fieldFactor);
   };
 
+const named = (rule: BoundRule) => (text: string) => (text === rule.text ? rule : undefined);
+
+/** Rules that choose for themselves, in the order in which they are compared; the first gives the answer there. */
+const CHOOSING = [discrepancy, crossValidation, corner, balance];
+
 export const BOUND_RULES: readonly RuleEntry[] = [
   {
     usage: "rms:V",
@@ -38,7 +47,29 @@ export const BOUND_RULES: readonly RuleEntry[] = [
   {
     usage: "discrepancy",
     summary: "chosen by the noise: the smoothest source whose misfit the noise explains",
-    parse: (text) => (text === discrepancy.name ? discrepancy : undefined),
+    parse: named(discrepancy),
+  },
+  {
+    usage: "cross-validation",
+    summary: "chosen by leaving out blocks of readings: the smoothest source that foretells them from the others",
+    parse: named(crossValidation),
+  },
+  {
+    usage: "corner",
+    summary: "chosen where the curve of misfit against norm turns most sharply",
+    parse: named(corner),
+  },
+  {
+    usage: "balance",
+    summary: "chosen by the noise: the smoothest source from which less smooth ones differ by no more than noise",
+    parse: named(balance),
+  },
+  {
+    usage: "compare",
+    summary: `answers by ${CHOOSING[0].name} and sets ${CHOOSING.slice(1)
+      .map(({name}) => name)
+      .join(", ")} beside it`,
+    parse: named(compareRules(CHOOSING)),
   },
 ];
 

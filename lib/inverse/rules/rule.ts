@@ -8,6 +8,8 @@ export interface RuleQuestion {
   readonly supportLength: number;
   /** Lines pooled in the solver, one multiplier for all: its misfit is their sum, its squared norm too. */
   readonly lines: number;
+  /** Chainage of each reading in the order of the solver, m; absent where lines are pooled. */
+  readonly places?: Float64Array;
   /** The largest norm of a single line at a multiplier, SI·√m. */
   largestNorm(multiplier: number): number;
 }
@@ -16,5 +18,7 @@ export interface BoundRule {
   readonly name: string;
   /** As the user wrote it, for the record: `rms:0.5`, `discrepancy`. */
   readonly text: string;
+  /** Rules that are to be set beside this one; absent: none. */
+  readonly compared?: readonly BoundRule[];
   choose(question: RuleQuestion): BoundChoice;
 }
