@@ -8,6 +8,6 @@ export const INTERVAL_BASIS: Readonly<Record<IntervalBasis, {readonly lead: stri
   },
   "assumed-bound": {
     lead: "Assumed bound.",
-    text: "No bound on the source was given: a rule chose the multiplier, and the intervals assume that the true source has at most twice the norm of the estimate. That is an assumption, not something the data show; where it fails, the intervals are too narrow. Give --bound rms:V when you know how strong the sources can be.",
+    text: "No bound on the source was given: a rule chose the multiplier, and the intervals assume that the true source has at most twice the norm of the most likely one, and what could hide in the noise. That is an assumption, not something the data show; where it fails, the intervals are too narrow. Give --bound rms:V when you know how strong the sources can be.",
   },
 };

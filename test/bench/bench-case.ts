@@ -16,6 +16,8 @@ export interface CaseResult {
   readonly figures: readonly Figure[];
   /** Sentences: how it was measured, and how far the answers agree. */
   readonly notes: readonly string[];
+  /** Tables of its own, where its figures are many. */
+  readonly tables?: readonly string[];
 }
 
 export interface BenchCase {

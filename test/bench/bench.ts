@@ -4,6 +4,8 @@
  */
 import {mkdirSync, mkdtempSync, rmSync, writeFileSync} from "node:fs";
 import {tmpdir} from "node:os";
+import {assumedCase} from "./assumed-case.ts";
+import {coverageCase} from "./coverage-case.ts";
 import {gridCase} from "./grid-case.ts";
 import {lineCase} from "./line-case.ts";
 import {BENCH_FOLDER} from "./measured.ts";
@@ -11,20 +13,20 @@ import {machineLines, resultsText, type Told, tableOf} from "./results.ts";
 import {rulesCase} from "./rules-case.ts";
 import {startCase} from "./start-case.ts";
 
-/** Those of a full run. */
-const DEFAULT = [lineCase, gridCase, startCase];
-/** The rest measures answers, not speed, and runs when named. */
-const CASES = [...DEFAULT, rulesCase];
+const CASES = [lineCase, gridCase, startCase];
+/** Slower, and of answers rather than speed: run by name alone. */
+const ON_REQUEST = [rulesCase, coverageCase, assumedCase];
+const NAMED = [...CASES, ...ON_REQUEST];
 
 const asked = process.argv.slice(2);
-const unknown = asked.find((name) => !CASES.some((each) => each.name === name));
+const unknown = asked.find((name) => !NAMED.some((each) => each.name === name));
 if (unknown !== undefined) {
   console.error(
-    `There is no case ${unknown}. Give some of ${CASES.map(({name}) => name).join(", ")}, or none for ${DEFAULT.map(({name}) => name).join(", ")}.`,
+    `There is no case ${unknown}. Give some of ${NAMED.map(({name}) => name).join(", ")}, or none for ${CASES.map(({name}) => name).join(", ")}.`,
   );
   process.exit(2);
 }
-const chosen = asked.length === 0 ? DEFAULT : CASES.filter(({name}) => asked.includes(name));
+const chosen = asked.length === 0 ? CASES : NAMED.filter(({name}) => asked.includes(name));
 const folder = mkdtempSync(`${tmpdir()}/groundward-bench-`);
 try {
   const told: Told[] = [];
@@ -36,9 +38,11 @@ try {
   const date = new Date();
   console.log(machineLines(date).join("\n"));
   console.log(`\n${tableOf(told)}\n`);
-  for (const {bench, result} of told) console.log(`${bench.title}\n  ${result.notes.join("\n  ")}\n`);
+  for (const {bench, result} of told)
+    console.log([`${bench.title}\n  ${result.notes.join("\n  ")}`, ...(result.tables ?? [])].join("\n\n"), "\n");
   // Only a full run is kept, so that all figures of the page are of one day and machine.
-  if (chosen === DEFAULT) writeFileSync(`${BENCH_FOLDER}/results.md`, resultsText(told, date));
+  if (chosen.length === CASES.length && CASES.every((each) => chosen.includes(each)))
+    writeFileSync(`${BENCH_FOLDER}/results.md`, resultsText(told, date));
   if (told.some(({result}) => result.figures.some(({met}) => met === false))) process.exitCode = 1;
 } finally {
   rmSync(folder, {recursive: true, force: true});

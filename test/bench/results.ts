@@ -21,11 +21,15 @@ export const tableOf = (told: readonly Told[]): string => {
       figure.met === undefined ? "–" : figure.met ? "yes" : "NO",
     ]),
   );
-  const width = COLUMNS.map((name, k) => Math.max(name.length, ...rows.map((row) => row[k]!.length)));
+  return markdownTable(COLUMNS, rows);
+};
+
+export function markdownTable(columns: readonly string[], rows: readonly (readonly string[])[]): string {
+  const width = columns.map((name, k) => Math.max(name.length, ...rows.map((row) => row[k]!.length)));
   const line = (cells: readonly string[]): string =>
     `| ${cells.map((cell, k) => cell.padEnd(width[k]!)).join(" | ")} |`;
-  return [line(COLUMNS), line(width.map((n) => "-".repeat(n))), ...rows.map(line)].join("\n");
-};
+  return [line(columns), line(width.map((n) => "-".repeat(n))), ...rows.map(line)].join("\n");
+}
 
 /** What the figures were taken on. */
 export function machineLines(date: Date): readonly string[] {

@@ -2,7 +2,7 @@
 import fc from "fast-check";
 import {describe, expect, test} from "vitest";
 import {apparentNoise} from "../../lib/inverse/apparent-noise.ts";
-import {ASSUMED_FACTOR} from "../../lib/inverse/rules/assumed-bound.ts";
+import {assumedBound} from "../../lib/inverse/assumed-bound.ts";
 import {balance, balanced, distanceBetween, propagatedNoise} from "../../lib/inverse/rules/balance.ts";
 import {boundRuleNamed} from "../../lib/inverse/rules/catalogue.ts";
 import {corner, cornerOf, curvatureAt} from "../../lib/inverse/rules/corner.ts";
@@ -66,7 +66,7 @@ describe.each([crossValidation, corner, balance])("$name", (rule) => {
     const solver = bump();
     const choice = rule.choose(question(solver));
     expect([choice.rule, choice.basis, choice.active]).toEqual([rule.name, "assumed-bound", false]);
-    expect(choice.bound).toBe(ASSUMED_FACTOR * solver.norm(choice.multiplier));
+    expect(choice.bound).toBe(assumedBound(question(solver), choice.multiplier));
     expect(choice.reason.length).toBeGreaterThan(30);
     expect(choice.notices).toEqual([]);
   });

@@ -14,7 +14,7 @@ import {InputError} from "../../errors.ts";
 import type {ModalEnergies} from "../../solvers/solver.ts";
 import {apparentNoise} from "../apparent-noise.ts";
 import type {BoundChoice} from "../nouns.ts";
-import {assumedChoice, nothingButNoise, unlessChasingNoise} from "./assumed-bound.ts";
+import {assumedChoice, nothingButNoise, unlessChasingNoise} from "./own-choice.ts";
 import type {BoundRule, RuleQuestion} from "./rule.ts";
 
 /**

@@ -12,7 +12,7 @@ import {ModelError} from "../../errors.ts";
 import {minimise} from "../../numeric/roots.ts";
 import type {Solver} from "../../solvers/solver.ts";
 import type {BoundChoice} from "../nouns.ts";
-import {assumedChoice, nothingButNoise, unlessChasingNoise} from "./assumed-bound.ts";
+import {assumedChoice, nothingButNoise, unlessChasingNoise} from "./own-choice.ts";
 import type {BoundRule, RuleQuestion} from "./rule.ts";
 
 /** Step in ln α of the search for turns; a heuristic, well below the width of one. */

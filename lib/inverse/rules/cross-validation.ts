@@ -13,7 +13,7 @@ import {InputError, ModelError, NumericalError} from "../../errors.ts";
 import {apparentNoise} from "../apparent-noise.ts";
 import {type Blocks, leftOut} from "../left-out.ts";
 import type {BoundChoice} from "../nouns.ts";
-import {assumedChoice, nothingButNoise, unlessChasingNoise} from "./assumed-bound.ts";
+import {assumedChoice, nothingButNoise, unlessChasingNoise} from "./own-choice.ts";
 import type {BoundRule, RuleQuestion} from "./rule.ts";
 
 /**

@@ -7,7 +7,7 @@ import {apparentNoise} from "../apparent-noise.ts";
 import {misfitLimit, misfitTarget} from "../misfit-range.ts";
 import {multiplierForMisfit} from "../multiplier-for.ts";
 import type {BoundChoice} from "../nouns.ts";
-import {assumedChoice, type Found, noiseContradicted, nothingButNoise} from "./assumed-bound.ts";
+import {assumedChoice, type Found, noiseContradicted, nothingButNoise} from "./own-choice.ts";
 import type {BoundRule, RuleQuestion} from "./rule.ts";
 
 export const discrepancy: BoundRule = {
@@ -21,10 +21,11 @@ export const discrepancy: BoundRule = {
 function smoothest({solver}: RuleQuestion): Found {
   const target = misfitTarget(solver.data);
   const found = multiplierForMisfit(solver, target);
+  const apparent = apparentNoise(solver);
   if (found === undefined)
     return {
-      multiplier: solver.least,
-      reason: `no source on this support reaches the misfit target ${target.toPrecision(4)}; the least multiplier that double precision serves was taken`,
+      multiplier: apparent?.multiplier ?? solver.least,
+      reason: `${apparent === undefined ? "the least multiplier that double precision serves" : "the most likely multiplier"}: no source on this support reaches the misfit target ${target.toPrecision(4)}`,
       notices: [
         doubt(
           "bound/target-out-of-reach",
@@ -32,7 +33,6 @@ function smoothest({solver}: RuleQuestion): Found {
         ),
       ],
     };
-  const apparent = apparentNoise(solver);
   // Closer than this the estimate would follow noise: a noise given 10 % too small already asks for that.
   if (apparent !== undefined && apparent.multiplier > found)
     return {

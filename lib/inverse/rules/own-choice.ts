@@ -2,12 +2,10 @@
 import {doubt, type Notice} from "../../notice.ts";
 import type {Solver} from "../../solvers/solver.ts";
 import {type ApparentNoise, apparentNoise, chanceRatio} from "../apparent-noise.ts";
+import {assumedBound} from "../assumed-bound.ts";
 import {misfitTarget} from "../misfit-range.ts";
 import type {BoundChoice} from "../nouns.ts";
 import type {RuleQuestion} from "./rule.ts";
-
-/** The intervals of a rule take twice the norm of its estimate; an assumption, said wherever they are printed. */
-export const ASSUMED_FACTOR = 2;
 
 /** What a rule came to, before any bound is assumed. */
 export interface Found {
@@ -17,11 +15,8 @@ export interface Found {
 }
 
 export function assumedChoice(rule: string, question: RuleQuestion, found: Found): BoundChoice {
-  const {solver, largestNorm} = question;
   const {multiplier, reason, notices = []} = found;
-  // A source of whitened response √(2√(2N)) could hide in the noise: no smaller bound is assumed.
-  const hidden = solver.largest > 0 ? Math.sqrt((2 * Math.sqrt(2 * solver.data)) / solver.largest) : 0;
-  const bound = ASSUMED_FACTOR * Math.max(largestNorm(multiplier), hidden);
+  const bound = assumedBound(question, multiplier);
   return {rule, multiplier, bound, basis: "assumed-bound", active: false, reason, notices};
 }
 
