@@ -30,7 +30,7 @@ export async function carryOut<Outcome extends LineOutcome | RowOutcome>(
   const failures = failureCollector(!form.json);
   const progress = progressOf(host, survey.lineCount, survey.grid?.orientation ?? "lines", form.json || form.quiet);
   doubts.add(survey.notices);
-  const {levels, confidence, levelQuantity} = settings.wanted;
+  const {levels, confidence, intervals, levelQuantity} = settings.wanted;
   for (const product of products)
     await product.begin({
       survey,
@@ -38,6 +38,7 @@ export async function carryOut<Outcome extends LineOutcome | RowOutcome>(
       levels,
       quantity: levelQuantity ?? BOUNDARY_FIELD,
       confidence,
+      intervals,
     });
   try {
     for await (const outcome of outcomes) {

@@ -2,6 +2,8 @@
 import type {FileDigest} from "../lib/products/record.ts";
 import {cautionSentence, cautionsFor} from "../lib/report/cautions.ts";
 import {INTERVAL_BASIS} from "../lib/report/interval-basis.ts";
+import {jointPromise} from "../lib/report/interval-words.ts";
+import {percentText} from "../lib/report/number-text.ts";
 import type {Summary} from "./carry-out.ts";
 import {doubtText} from "./doubts.ts";
 import type {Run} from "./run.ts";
@@ -14,16 +16,18 @@ interface Printable {
 
 /** @param out the folder, as the user named it */
 export function conclude(
-  {host, survey, messages, form}: Run,
+  {host, survey, settings, messages, form}: Run,
   {doubts, bases, counts}: Summary,
   result: Printable,
   files: readonly FileDigest[],
   out: string,
 ): void {
   const cautions = cautionsFor(survey.kind).map(cautionSentence);
+  const {intervals, confidence} = settings.wanted;
+  const promise = jointPromise(intervals, percentText(confidence));
   const grounds = [...bases].map((basis) => ({
     basis,
-    text: `${INTERVAL_BASIS[basis].lead} ${INTERVAL_BASIS[basis].text}`,
+    text: `${promise}${INTERVAL_BASIS[basis].lead} ${INTERVAL_BASIS[basis].text}`,
   }));
   const names = [...files.map(({file}) => file), "record.json", "timing.json"];
   if (form.json) {

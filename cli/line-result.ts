@@ -4,6 +4,7 @@ import type {Observable} from "../lib/potential/observable.ts";
 import {deliveryOf} from "../lib/report/delivery.ts";
 import {stripAnswer} from "../lib/report/strip-answer.ts";
 import type {LineOutcome} from "../lib/study/outcome.ts";
+import type {WantedSettings} from "../lib/study/settings.ts";
 import {boundsResult} from "./bounds-result.ts";
 import {comparisonResult} from "./comparison-result.ts";
 import {reachResult} from "./reach-result.ts";
@@ -20,10 +21,10 @@ export interface RunResult<Outcome> {
 const left = (head: string): Column => ({head, align: "left"});
 const right = (head: string): Column => ({head, align: "right"});
 
-export function lineResult(observable: Observable, confidence: number): RunResult<LineOutcome> {
+export function lineResult(observable: Observable, {confidence, intervals}: WantedSettings): RunResult<LineOutcome> {
   const delivery = deliveryOf(observable);
   const {field, reading, density, total} = delivery;
-  const interval = `${figure(100 * confidence, 3).replace(/\.?0+$/, "")} % interval`;
+  const interval = `${figure(100 * confidence, 3).replace(/\.?0+$/, "")} % ${intervals === "simultaneous" ? "band" : "interval"}`;
   const lineRows: string[][] = [];
   const stripRows: string[][] = [];
   const lines: Record<string, unknown>[] = [];

@@ -37,7 +37,7 @@ export async function lineWork({host, settings, survey, folder}: Run): Promise<W
       take: (outcome) => product.line(outcome),
       end: (across) => product.end(across),
     })),
-    result: lineResult(observableOf(settings), settings.wanted.confidence),
+    result: lineResult(observableOf(settings), settings.wanted),
     across: neighbouringStrips(settings.wanted.confidence),
   };
 }

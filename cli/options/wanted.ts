@@ -2,6 +2,7 @@
 import {type LevelSetting, levelLabel} from "../../lib/continuation/level-profile.ts";
 import {DEFAULT_TRUST_FRACTION, refuseTrustOf} from "../../lib/continuation/trust-fraction.ts";
 import {InputError} from "../../lib/errors.ts";
+import {INTERVAL_KINDS, type IntervalKind} from "../../lib/inverse/interval-kind.ts";
 import type {Strip} from "../../lib/inverse/nouns.ts";
 import {BOUNDARY_FIELD, LEVEL_QUANTITIES, levelQuantityNamed} from "../../lib/potential/level-quantity.ts";
 import {ALSO, type AlsoWord} from "../../lib/products/also.ts";
@@ -88,6 +89,16 @@ export const WANTED: OptionGroup = {
       },
     },
     {
+      name: "intervals",
+      value: "KIND",
+      form: {words: INTERVAL_KINDS},
+      help: "single: each interval holds its number at the confidence; simultaneous: a band that holds all numbers of a line at once; not for grids",
+      default: {
+        value: "single",
+        reason: "one number is asked about at a time; take simultaneous to compare or search many",
+      },
+    },
+    {
       name: "also",
       value: "KIND",
       repeated: true,
@@ -115,6 +126,17 @@ function stripFrom(text: string): Strip {
       `--strip ${shown(text)} is not NAME=A:B. Give a name and an interval of chainage, for example --strip dyke=600:700.`,
     );
   return {name, ...intervalFor(`--strip ${name}=`, text.slice(cut + 1))};
+}
+
+function intervalsFrom(asked: Asked): IntervalKind {
+  const text = oneOf(asked, "intervals") ?? "single";
+  const found = INTERVAL_KINDS.find((kind) => kind === text);
+  if (found === undefined)
+    throw new InputError(
+      "option/unknown-word",
+      `--intervals ${shown(text)} is not known. Give ${INTERVAL_KINDS.join(" or ")}.`,
+    );
+  return found;
 }
 
 function alsoFrom(asked: Asked): AlsoWord[] {
@@ -165,6 +187,7 @@ export function wantedFrom(asked: Asked, maps?: MapFiles): WantedSettings {
     strips,
     confidence: numberFor("--confidence", oneOf(asked, "confidence") ?? DEFAULT_CONFIDENCE, PROBABILITY),
     trustFraction: numberFor("--trust-fraction", fraction ?? `${DEFAULT_TRUST_FRACTION}`, FRACTION),
+    intervals: intervalsFrom(asked),
     ...(also.length === 0 ? {} : {also}),
   };
 }

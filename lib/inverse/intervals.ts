@@ -24,7 +24,7 @@ import type {Continuum} from "../operators/continuum.ts";
 import type {Functional} from "../operators/functional.ts";
 import type {RegionalBasis} from "../operators/regional.ts";
 import type {RegionalReader} from "./regional-reader.ts";
-import {type Layout, type Window, windowsOf} from "./windows.ts";
+import {addOnModes, type Layout, windowsOf} from "./windows.ts";
 
 /**
  * Search range of a, in units of 1/M². The best a is (δ/M)² with δ between one and a few standard deviations of
@@ -53,12 +53,10 @@ export interface AffineEstimate {
 
 export interface IntervalSolver {
   /**
-   * The shortest fixed-length interval for `functional`; value from the readings that the solver was given.
+   * An interval for `functional`; value from the readings that the solver was given.
    * @param loosened the bound is this many times M; at most `loosest`
    */
   interval(functional: Functional, loosened?: number): Interval;
-  /** What `interval` applies to the readings. */
-  affine(functional: Functional, loosened?: number): AffineEstimate;
   /** R(x, x) of the averaging kernel at multiplier α, 1/m, at the place of a point functional. */
   resolvingPower(point: Functional, multiplier: number): number;
   /**
@@ -66,6 +64,12 @@ export interface IntervalSolver {
    * with any functional is Σ w_i times what reading i has in common with that. For readings in the order of the continuum.
    */
   kernelWeights(point: Functional, multiplier: number): Float64Array;
+}
+
+/** Intervals that each cover by themselves, the shortest of fixed length, of estimates fixed before any reading is seen. */
+export interface AffineIntervalSolver extends IntervalSolver {
+  /** What `interval` applies to the readings. */
+  affine(functional: Functional, loosened?: number): AffineEstimate;
 }
 
 export interface IntervalTerms {
@@ -93,7 +97,7 @@ export function intervalSolver(
   basis: RegionalBasis,
   data: Float64Array,
   {bound, confidence, loosest = 1, layout = "by size"}: IntervalTerms,
-): IntervalSolver {
+): AffineIntervalSolver {
   const windows = windowsOf(continuum, basis, data, bound, loosest, layout);
   const {terms} = windows;
   const response = new Float64Array(continuum.count);
@@ -230,29 +234,9 @@ export function intervalSolver(
       const {deviation, bias, halfWidth, weights} = found(functional, loosened);
       return {deviation, bias, halfWidth, weights: weights()};
     },
-    resolvingPower(point, multiplier) {
-      const window = windows.for(point);
-      const eta = windows.seenBy(window, point);
-      let power = 0;
-      for (let k = 0; k < eta.length; ++k) power += (eta[k] * eta[k]) / (window.modes.eigenvalues[k] + multiplier);
-      return power;
-    },
-    kernelWeights(point, multiplier) {
-      const window = windows.for(point);
-      const weights = new Float64Array(continuum.count);
-      addOnModes(weights, window, windows.seenBy(window, point), multiplier);
-      return weights;
-    },
+    resolvingPower: windows.resolvingPower,
+    kernelWeights: windows.kernelWeights,
   };
-}
-
-/** Adds Σ η_k/(λ_k + a) u_k to weights over the whole line. */
-function addOnModes(c: Float64Array, {modes, first, last}: Window, eta: Float64Array, a: number): void {
-  for (let k = 0; k < modes.count; ++k) {
-    const g = eta[k] / (modes.eigenvalues[k] + a);
-    const row = k * (last - first);
-    for (let i = first; i < last; ++i) c[i] += g * modes.left[row + i - first];
-  }
 }
 
 /** c ← c − W (Rᵀc), for c over the whole line. */

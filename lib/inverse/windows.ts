@@ -6,7 +6,7 @@ import {boundaryAt} from "../geometry/boundary-line.ts";
 import {matVecInto, multiplyTransposedInto} from "../numeric/matmul.ts";
 import {type Continuum, nodeMatrix, nodesFor} from "../operators/continuum.ts";
 import type {Functional} from "../operators/functional.ts";
-import {projectOutInPlace, projectOutOfColumnsInPlace, type RegionalBasis} from "../operators/regional.ts";
+import {basisWithin, projectOutInPlace, projectOutOfColumnsInPlace, type RegionalBasis} from "../operators/regional.ts";
 import {dataModes} from "../spectral/singular-system.ts";
 import {type RegionalReader, regionalReader} from "./regional-reader.ts";
 import {type Block, type Patch, type WholeLine, wholeLine} from "./whole-line.ts";
@@ -21,6 +21,8 @@ const WINDOW_MARGIN = 12;
 const WIDEST_WINDOW = 2;
 /** A window reaches out until it holds this many stations. */
 const LEAST_STATIONS = 48;
+/** Blocks beyond either end of the line; further out windows hold the same stations, the last of it. */
+const BLOCKS_BEYOND = 2;
 /** Modes with λ below this share of 1/M² are counted as bias: a relative change of the half-width below 1e-4. */
 const MODE_FLOOR = 1e-5;
 
@@ -30,9 +32,14 @@ const READER_STEP = 6;
 /** One window or many; by size of the line unless a test asks. */
 export type Layout = "by size" | "whole" | "windows";
 
+/** How windows keep blind to the regional: by what the whole line knows of it, or each by its own stations alone. */
+export type RegionalOf = "line" | "window";
+
 export interface Window extends Block {
   /** u_kᵀ d. */
   readonly data: Float64Array;
+  /** The regional of its own stations, projected out of its modes; undefined where a reader of the line sees to it. */
+  readonly projected: RegionalBasis | undefined;
 }
 
 /** A reader of the regional as a window sees it: u_kᵀ W and u_kᵀ G W, modes × terms. */
@@ -43,15 +50,20 @@ export interface WindowReader {
 }
 
 export interface Windows {
-  /** Whether the whole line is the one window; its regional is then projected out of modes, data and responses. */
-  readonly whole: boolean;
+  /** Upper bound on the number of different windows that can ever be asked for. */
+  readonly possible: number;
   /** The longest mean that one window can serve, m. */
   readonly reach: number;
+  /** The pieces that a longer mean may be cut into, m. */
+  readonly piece: number;
   /** The whole line, for numbers beyond the reach of windows; not where it is one window. */
   line(): WholeLine;
   for(functional: Functional): Window;
   /** The functional seen by a window's modes: η_k = u_kᵀ Pq. */
   seenBy(window: Window, functional: Functional): Float64Array;
+  /** See `IntervalSolver`. */
+  resolvingPower(point: Functional, multiplier: number): number;
+  kernelWeights(point: Functional, multiplier: number): Float64Array;
   /** Terms of the regional that a window must be freed of: none where they were projected out before. */
   readonly terms: number;
   /** u_kᵀ R, modes × terms. */
@@ -74,6 +86,7 @@ export function windowsOf(
   bound: number,
   loosest: number,
   layout: Layout,
+  regionalOf: RegionalOf = "line",
 ): Windows {
   const heights = continuum.z.map((_, i) => heightOf(continuum, i)).sort();
   const height = heights[heights.length >> 1];
@@ -84,16 +97,17 @@ export function windowsOf(
   const windows = new Map<string, Window>();
   const response = new Float64Array(continuum.count);
   const floor = MODE_FLOOR / (loosest * bound) ** 2;
-  const terms = whole ? 0 : basis.terms;
+  const terms = whole || regionalOf === "window" ? 0 : basis.terms;
 
   const windowOn = (first: number, last: number): Window => {
     const nodes = nodesFor(continuum, first, last);
     const matrix = nodeMatrix(continuum, nodes, first, last);
     const rows = last - first;
-    if (whole) projectOutOfColumnsInPlace(matrix, nodes.count, basis);
+    const projected = whole ? basis : regionalOf === "window" ? basisWithin(basis, first, last) : undefined;
+    if (projected !== undefined) projectOutOfColumnsInPlace(matrix, nodes.count, projected);
     const modes = dataModes(matrix, rows, nodes.count, floor);
     const seen = matVecInto(new Float64Array(modes.count), modes.left, data.subarray(first, last), modes.count, rows);
-    return {first, last, modes, data: seen};
+    return {first, last, modes, data: seen, projected};
   };
   const remembered = (first: number, last: number): Window => {
     const key = `${first}-${last}`;
@@ -101,7 +115,10 @@ export function windowsOf(
     windows.set(key, found);
     return found;
   };
-  const blockAt = (x: number, core: number): number => Math.floor((x - continuum.x[0]) / core);
+  const span = continuum.x[continuum.count - 1] - continuum.x[0];
+  const blocks = (core: number): number => Math.floor(span / core) + 1;
+  const blockAt = (x: number, core: number): number =>
+    Math.min(Math.max(Math.floor((x - continuum.x[0]) / core), -BLOCKS_BEYOND), blocks(core) - 1 + BLOCKS_BEYOND);
   const around = (from: number, to: number, scale: number): Window => {
     const core = WINDOW_CORE * scale;
     const left = continuum.x[0] + core * blockAt(from, core);
@@ -111,8 +128,7 @@ export function windowsOf(
 
   const cover = (): Patch[] => {
     const core = WINDOW_CORE * height;
-    const blocks = 1 + blockAt(continuum.x[continuum.count - 1], core);
-    return Array.from({length: blocks}, (_, k) => {
+    return Array.from({length: blocks(core)}, (_, k) => {
       const from = continuum.x[0] + core * k;
       return {block: around(from, from, height), from, to: from + core};
     });
@@ -132,31 +148,51 @@ export function windowsOf(
   };
   const regionals = new Map<Window, Float64Array>();
 
+  const windowFor = (functional: Functional): Window => {
+    if (whole) return remembered(0, continuum.count);
+    const scale = functional.spread > height ? WIDEST_WINDOW * height : height;
+    const {from, to} = functional;
+    // Whole blocks, so that neighbouring functionals share a window.
+    if (to - from > WINDOW_CORE * scale) return around(from, to, scale);
+    const middle = 0.5 * (from + to);
+    return around(middle, middle, scale);
+  };
+  const seenBy = (window: Window, functional: Functional): Float64Array => {
+    functional.respondInto(response, continuum, window.first, window.last);
+    // Rounding mixes the regional into modes of small λ, and a response to it is large: both sides must be free of it.
+    if (window.projected !== undefined) projectOutInPlace(response, window.projected);
+    return matVecInto(
+      new Float64Array(window.modes.count),
+      window.modes.left,
+      response,
+      window.modes.count,
+      window.last - window.first,
+    );
+  };
+
   return {
-    whole,
+    // A mean reaches over its own block and up to two more; a point is in one block, of either scale.
+    possible: whole
+      ? 1
+      : 3 * (blocks(WINDOW_CORE * height) + 2 * BLOCKS_BEYOND) +
+        blocks(WIDEST_WINDOW * WINDOW_CORE * height) +
+        2 * BLOCKS_BEYOND,
     reach: whole ? Infinity : 2 * WINDOW_CORE * height,
+    piece: WINDOW_CORE * height,
     line,
     terms,
-    for(functional) {
-      if (whole) return remembered(0, continuum.count);
-      const scale = functional.spread > height ? WIDEST_WINDOW * height : height;
-      const {from, to} = functional;
-      // Whole blocks, so that neighbouring functionals share a window.
-      if (to - from > WINDOW_CORE * scale) return around(from, to, scale);
-      const middle = 0.5 * (from + to);
-      return around(middle, middle, scale);
+    for: windowFor,
+    seenBy,
+    resolvingPower(point, multiplier) {
+      const window = windowFor(point);
+      const {eigenvalues} = window.modes;
+      return seenBy(window, point).reduce((power, eta, k) => power + (eta * eta) / (eigenvalues[k] + multiplier), 0);
     },
-    seenBy(window, functional) {
-      functional.respondInto(response, continuum, window.first, window.last);
-      // Rounding mixes the regional into modes of small λ, and a response to it is large: both sides must be free of it.
-      if (whole) projectOutInPlace(response, basis);
-      return matVecInto(
-        new Float64Array(window.modes.count),
-        window.modes.left,
-        response,
-        window.modes.count,
-        window.last - window.first,
-      );
+    kernelWeights(point, multiplier) {
+      const window = windowFor(point);
+      const weights = new Float64Array(continuum.count);
+      addOnModes(weights, window, seenBy(window, point), multiplier);
+      return weights;
     },
     regionalOn: (window) => remember(regionals, window, () => onModes(window, basis.rows)),
     readerAt(a) {
@@ -173,6 +209,15 @@ export function windowsOf(
       }));
     },
   };
+}
+
+/** Adds Σ η_k/(λ_k + a) u_k to weights over the whole line. */
+export function addOnModes(c: Float64Array, {modes, first, last}: Window, eta: Float64Array, a: number): void {
+  for (let k = 0; k < modes.count; ++k) {
+    const g = eta[k] / (modes.eigenvalues[k] + a);
+    const row = k * (last - first);
+    for (let i = first; i < last; ++i) c[i] += g * modes.left[row + i - first];
+  }
 }
 
 /** What `kept` holds for `key`, made now if it was not asked for before. */

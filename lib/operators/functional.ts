@@ -18,6 +18,8 @@ export interface Functional {
   readonly spread: number;
   /** ‖q‖² in L²(S), 1/m; infinite for a point of the boundary. */
   readonly normSquared: number;
+  /** A mean as the weighted sum of means over so many equal parts of where it looks; absent for a point. */
+  cut?(parts: number): readonly {readonly mean: Functional; readonly share: number}[];
   /** Writes ⟨p_i, q⟩, whitened, for the readings `first … last − 1` to the head of `target`. */
   respondInto(target: Float64Array, continuum: Continuum, first: number, last: number): Float64Array;
 }
@@ -47,6 +49,15 @@ export function meanOver(
     to: interval.to,
     spread: 0,
     normSquared: inside / (length * length),
+    cut: (count) =>
+      Array.from({length: count}, (_, k) => {
+        const at = (place: number): number => interval.from + ((interval.to - interval.from) * place) / count;
+        const piece = {from: at(k), to: k + 1 === count ? interval.to : at(k + 1)};
+        const within = clip(piece, stretches);
+        return within.length === 0
+          ? []
+          : [{mean: meanOver(piece, support, boundary, within), share: totalLength(within) / length}];
+      }).flat(),
     respondInto(target, continuum, first, last) {
       const {x, z, aRe, aIm, order} = continuum;
       const sumAt = (i: number): number => {

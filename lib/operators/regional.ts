@@ -43,18 +43,8 @@ export function regionalBasis(
         channel[i] === k ? legendre(term, (chainage - 0.5 * (low + high)) / half) : 0,
       );
       const row = correlated ? whitened(polynomial, readings) : polynomial;
-      const before = length(row);
-      for (let pass = 0; pass < 2; ++pass)
-        for (const earlier of own) {
-          let dot = 0;
-          for (let i = 0; i < count; ++i) dot += row[i] * earlier[i];
-          for (let i = 0; i < count; ++i) row[i] -= dot * earlier[i];
-        }
-      const after = length(row);
       // 1e-10 of its own length: far above rounding (ε√n), far below any real polynomial on distinct stations.
-      if (!(after > 1e-10 * before)) continue;
-      for (let i = 0; i < count; ++i) row[i] /= after;
-      own.push(row);
+      if (orthonormalise(row, own, 1e-10)) own.push(row);
     }
     rows.push(...own);
   }
@@ -63,6 +53,39 @@ export function regionalBasis(
     flat.set(row, k * count);
   });
   return {terms: rows.length, count, rows: flat};
+}
+
+/**
+ * An orthonormal basis of what the regional can be on the stations `first … last − 1` alone.
+ * A short stretch of a long line sees its terms as nearly alike: a cubic on a hundredth differs by 1e-6 of its length
+ * from the lower ones. Only what is rounding, 1e-12, is left out, since what is left in is not blind to the regional.
+ */
+export function basisWithin({terms, count, rows}: RegionalBasis, first: number, last: number): RegionalBasis {
+  const kept: Float64Array[] = [];
+  for (let t = 0; t < terms; ++t) {
+    const row = rows.slice(t * count + first, t * count + last);
+    if (orthonormalise(row, kept, 1e-12)) kept.push(row);
+  }
+  const flat = new Float64Array(kept.length * (last - first));
+  kept.forEach((row, k) => {
+    flat.set(row, k * (last - first));
+  });
+  return {terms: kept.length, count: last - first, rows: flat};
+}
+
+/** Takes what `earlier` span out of a row and makes it a unit vector; false where less than `least` of it is left. */
+function orthonormalise(row: Float64Array, earlier: readonly Float64Array[], least: number): boolean {
+  const before = length(row);
+  for (let pass = 0; pass < 2; ++pass)
+    for (const other of earlier) {
+      let dot = 0;
+      for (let i = 0; i < row.length; ++i) dot += row[i] * other[i];
+      for (let i = 0; i < row.length; ++i) row[i] -= dot * other[i];
+    }
+  const after = length(row);
+  if (!(after > least * before)) return false;
+  for (let i = 0; i < row.length; ++i) row[i] /= after;
+  return true;
 }
 
 /** Takes the regional out of a vector over the stations. */

@@ -2,6 +2,7 @@
 import {type Gdf2Writer, gdf2Writer, type WrittenField} from "../formats/aseg-gdf2-write.ts";
 import type {ByteSink} from "../formats/byte-source.ts";
 import {type Delivery, deliveryOf} from "../report/delivery.ts";
+import {intervalNoun} from "../report/interval-words.ts";
 import {percentText} from "../report/number-text.ts";
 import type {Opening} from "./opening.ts";
 import type {LineProduct, RunFrame} from "./product.ts";
@@ -43,7 +44,7 @@ export async function levelsGdf2({openBytes, openScratch}: Opening): Promise<Lin
 }
 
 /** The columns of levels.csv, with what their names there do not say. */
-function fieldsFor({survey, confidence}: RunFrame, {field}: Delivery): readonly WrittenField[] {
+function fieldsFor({survey, confidence, intervals}: RunFrame, {field}: Delivery): readonly WrittenField[] {
   const percent = percentText(confidence).replaceAll(/\s/g, " ");
   const where = survey.delivered ?? "coordinates of the data";
   return [
@@ -54,8 +55,8 @@ function fieldsFor({survey, confidence}: RunFrame, {field}: Delivery): readonly 
     {name: "Y", kind: "number", longName: `y in ${where}`},
     {name: "LEVEL", kind: "number", unit: "m", longName: "Height of the level above the boundary"},
     {name: "FIELD", kind: "number", unit: field, longName: "Field on the level"},
-    {name: "LOWER", kind: "number", unit: field, longName: `Lower end of the ${percent} interval`},
-    {name: "UPPER", kind: "number", unit: field, longName: `Upper end of the ${percent} interval`},
+    {name: "LOWER", kind: "number", unit: field, longName: `Lower end of the ${percent} ${intervalNoun(intervals)}`},
+    {name: "UPPER", kind: "number", unit: field, longName: `Upper end of the ${percent} ${intervalNoun(intervals)}`},
     {name: "AVERAGED_OVER", kind: "number", unit: "m", longName: "Length that the field is averaged over"},
     {name: "INTERVAL_BASIS", kind: "text", longName: "What the interval rests on"},
   ];

@@ -3,6 +3,7 @@
  * Its bytes go to sinks that the caller opens, so that nothing here touches a disk.
  */
 import type {LevelSetting} from "../continuation/level-profile.ts";
+import type {IntervalKind} from "../inverse/interval-kind.ts";
 import type {Notice} from "../notice.ts";
 import type {LevelQuantity} from "../potential/level-quantity.ts";
 import type {Observable} from "../potential/observable.ts";
@@ -22,6 +23,8 @@ export interface RunFrame {
   /** What is given on them. */
   readonly quantity: LevelQuantity;
   readonly confidence: number;
+  /** Absent: single. */
+  readonly intervals?: IntervalKind | undefined;
 }
 
 /** A product over survey lines. */

@@ -5,6 +5,8 @@
 import {BOUNDARY_FIELD} from "../potential/level-quantity.ts";
 import {cautionSentence, cautionsFor} from "../report/cautions.ts";
 import {INTERVAL_BASIS} from "../report/interval-basis.ts";
+import {jointPromise} from "../report/interval-words.ts";
+import {percentText} from "../report/number-text.ts";
 import type {Settings, StripSetting, SupportSetting} from "../study/settings.ts";
 import type {Survey} from "../survey/survey.ts";
 
@@ -33,6 +35,7 @@ type Plain = string | number | boolean | null | readonly Plain[] | {readonly [ke
 
 export function recordJson(run: RecordInput): string {
   const {survey, settings} = run;
+  const promise = jointPromise(settings.wanted.intervals, percentText(settings.wanted.confidence));
   const record = {
     program: {name: "groundward", version: run.version, node: run.node, architecture: run.architecture},
     inputs: run.inputs.map(digest),
@@ -64,7 +67,7 @@ export function recordJson(run: RecordInput): string {
       failed: run.outcomes.failed,
     },
     intervals: Object.fromEntries(
-      Object.entries(INTERVAL_BASIS).map(([basis, {lead, text}]) => [basis, `${lead} ${text}`]),
+      Object.entries(INTERVAL_BASIS).map(([basis, {lead, text}]) => [basis, `${promise}${lead} ${text}`]),
     ),
     processing: settings.processing,
     cautions: cautionsFor(survey.kind).map(cautionSentence),

@@ -9,9 +9,10 @@ import {deliveryOf} from "../report/delivery.ts";
 import {type Doubts, doubtsOf} from "../report/doubts.ts";
 import {type MapLine, mapFigure, mapLine} from "../report/figures/map.ts";
 import {escaped, nameText} from "../report/html.ts";
+import {jointPromise} from "../report/interval-words.ts";
 import {lineSection} from "../report/line-section.ts";
 import {type LineRow, lineRow, lineTable} from "../report/line-table.ts";
-import {counted, countText} from "../report/number-text.ts";
+import {counted, countText, percentText} from "../report/number-text.ts";
 import {PAGE_END, pageStart} from "../report/page.ts";
 import {type Selection, selection} from "../report/selection.ts";
 import {definitionList, settingsPairs} from "../report/settings-text.ts";
@@ -96,7 +97,7 @@ function gravityOf(outcome: Extract<LineOutcome, {status: "done" | "doubtful"}>)
 
 function* pieces(page: Page, about: RunAbout): Generator<string> {
   const {frame, counts, doubts} = page;
-  const {survey, observable, confidence} = frame;
+  const {survey, observable, confidence, intervals} = frame;
   const delivery = deliveryOf(observable);
   const total = counts.done + counts.doubtful + counts.skipped + counts.failed;
   const sections = page.sections.kept();
@@ -112,7 +113,7 @@ function* pieces(page: Page, about: RunAbout): Generator<string> {
 
   yield "<h2>The answer</h2>";
   if (strips.length > 0) {
-    yield stripTable(strips, delivery, confidence, true);
+    yield stripTable(strips, delivery, confidence, true, intervals);
     yield partText(
       strips.length,
       page.strips.offered() * (strips.length / page.strips.kept().length),
@@ -122,7 +123,7 @@ function* pieces(page: Page, about: RunAbout): Generator<string> {
   } else if (counts.done + counts.doubtful === 0) yield "<p>No line could be answered; the reasons follow.</p>";
   else
     yield "<p>No strip was asked about. The table of lines gives the strongest average on each; name a strip with --strip NAME=A:B for a figure in physical units.</p>";
-  yield basisParagraphs(page.bases);
+  yield basisParagraphs(page.bases, jointPromise(intervals, percentText(confidence)));
 
   const grave = doubts.list(["failure", "doubt"]);
   yield `<h2 id="doubts">Doubts</h2>${grave === "" ? "<p>None was raised. That is not proof that there is none.</p>" : grave}`;

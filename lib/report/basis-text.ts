@@ -3,8 +3,9 @@ import type {IntervalBasis} from "../inverse/nouns.ts";
 import {messageText} from "./html.ts";
 import {INTERVAL_BASIS} from "./interval-basis.ts";
 
-export const basisParagraphs = (bases: ReadonlySet<IntervalBasis>): string =>
+/** @param promise what stands before them, see `jointPromise` */
+export const basisParagraphs = (bases: ReadonlySet<IntervalBasis>, promise = ""): string =>
   [...bases]
     .sort()
-    .map((basis) => `<p><b>${INTERVAL_BASIS[basis].lead}</b> ${messageText(INTERVAL_BASIS[basis].text)}</p>`)
+    .map((basis) => `<p>${promise}<b>${INTERVAL_BASIS[basis].lead}</b> ${messageText(INTERVAL_BASIS[basis].text)}</p>`)
     .join("");

@@ -8,8 +8,9 @@ import {LEVELS_SHOWN, profileFigure} from "./figures/profile.ts";
 import {tradeoffFigure} from "./figures/tradeoff.ts";
 import {escaped, messageText, nameText} from "./html.ts";
 import {INTERVAL_BASIS} from "./interval-basis.ts";
+import {jointPromise} from "./interval-words.ts";
 import {stateText} from "./line-table.ts";
-import {counted, countText, figureText, fixedText, metreText} from "./number-text.ts";
+import {counted, countText, figureText, fixedText, metreText, percentText} from "./number-text.ts";
 import {levelSentence, resolutionSentence, trustSentence} from "./reach-words.ts";
 import {definitionList} from "./settings-text.ts";
 import {stripRows, stripTable} from "./strip-table.ts";
@@ -29,7 +30,7 @@ export function lineSection(study: LineStudy, status: "done" | "doubtful", index
     `<section class="line" id="line-${index + 1}"><h2>Line ${nameText(line.id)} ${stateText(status)}</h2>`,
     `<p>${counted(line.stations.count, "station")}, sensor ${rangeText(conditioned.height)} m above the boundary (${messageText(conditioned.boundary)}).${omitted}</p>`,
     items.length > 0 ? `<ul class="plain">${items.join("")}</ul>` : "",
-    stripTable(stripRows(study), delivery, confidence, false),
+    stripTable(stripRows(study), delivery, confidence, false, study.intervals),
     boundsTable(study),
     `<figure>${profileFigure(study)}<figcaption>${caption(study)}</figcaption></figure>`,
     reach(study),
@@ -93,7 +94,7 @@ function grounds(study: LineStudy): string {
     ],
     ["Norm of the source", `${figureText(delivery.toNorm(estimate.norm))} ${delivery.field}·√m`],
     ["Bound", `${figureText(delivery.toNorm(choice.bound))} ${delivery.field}·√m, ${boundWords(choice)}`],
-  ])}<p class="small"><b>${basis.lead}</b> ${messageText(basis.text)}</p></div>`;
+  ])}<p class="small">${jointPromise(study.intervals, percentText(study.confidence))}<b>${basis.lead}</b> ${messageText(basis.text)}</p></div>`;
 }
 
 const lengthWords = (length: number): string =>

@@ -64,7 +64,13 @@ export function settingsPairs(
   pairs.push(["Bound", nameText(settings.bound.text)]);
   pairs.push(["Regional", DEGREES[`${model.regional}`]]);
   pairs.push(["Levels", wanted.levels.map(levelWords).join("; ")]);
-  pairs.push(["Intervals", percentText(wanted.confidence)]);
+  const percent = percentText(wanted.confidence);
+  pairs.push([
+    "Intervals",
+    wanted.intervals === "simultaneous"
+      ? `simultaneous band: holds for all numbers of the line at once at ${percent}`
+      : percent,
+  ]);
   pairs.push([
     "Done before",
     settings.processing === undefined ? "nothing was stated" : messageText(settings.processing),

@@ -1,11 +1,14 @@
 /** The answer to what was asked: each strip, line by line, drawn on one axis and in figures. */
+
 import {extent} from "d3-array";
 import {scaleLinear} from "d3-scale";
+import type {IntervalKind} from "../inverse/interval-kind.ts";
 import type {Strip} from "../inverse/nouns.ts";
 import type {LineStudy} from "../study/outcome.ts";
 import {type Delivery, deliveryOf} from "./delivery.ts";
 import {lineMark, px} from "./figures/svg.ts";
 import {nameText} from "./html.ts";
+import {intervalNoun} from "./interval-words.ts";
 import {bracketText, figureText, metreText, percentText} from "./number-text.ts";
 import {type Bracket, type StripAnswer, stripAnswer} from "./strip-answer.ts";
 
@@ -37,6 +40,7 @@ export function stripTable(
   delivery: Delivery,
   confidence: number,
   withLine: boolean,
+  intervals?: IntervalKind,
 ): string {
   if (rows.length === 0) return "";
   const groups = new Map<string, StripRow[]>();
@@ -57,7 +61,7 @@ export function stripTable(
     const heading = withLine ? `<tr class="group"><td colspan="5">${span}</td></tr>` : "";
     return heading + group.map((row) => tableRow(row, [least!, greatest!], withLine)).join("");
   });
-  return `<table><thead><tr><th>${withLine ? "Line" : "Strip"}</th><th><span>${percent} interval of the mean</span></th><th class="n">Mean density<br><span>${delivery.density}</span></th><th class="n">Total<br><span>${delivery.total}, per metre of strike</span></th><th>Sign</th></tr></thead><tbody>${body.join("")}</tbody></table>`;
+  return `<table><thead><tr><th>${withLine ? "Line" : "Strip"}</th><th><span>${percent} ${intervalNoun(intervals)} of the mean</span></th><th class="n">Mean density<br><span>${delivery.density}</span></th><th class="n">Total<br><span>${delivery.total}, per metre of strike</span></th><th>Sign</th></tr></thead><tbody>${body.join("")}</tbody></table>`;
 }
 
 function tableRow({line, strip, answer}: StripRow, domain: readonly [number, number], withLine: boolean): string {

@@ -41,6 +41,7 @@ export function gainOf(
     degree: model.regional,
     bound: choice.bound,
     confidence: wanted.confidence,
+    kind: wanted.intervals,
   });
   const {length} = resolutionOf(intervals, panels, own, conditioned.line.stations.chainage);
   return {further: further.map(({channel}) => channel.role), without: length};

@@ -3,6 +3,7 @@
  * the support must move, and which is cheapest.
  */
 import {ModelError} from "../errors.ts";
+import {enough} from "../inverse/enough.ts";
 import {misfitLimit, misfitTarget} from "../inverse/misfit-range.ts";
 import {multiplierForMisfit} from "../inverse/multiplier-for.ts";
 import type {BoundChoice} from "../inverse/nouns.ts";
@@ -16,12 +17,6 @@ interface Relief {
   readonly words: string;
   /** By how much it moves, relative. */
   readonly cost: number;
-}
-
-/** Three digits, rounded up: who follows the advice must arrive. */
-function enough(value: number): string {
-  const unit = 10 ** (Math.floor(Math.log10(value)) - 2);
-  return String(Number((Math.ceil(value / unit) * unit).toPrecision(3)));
 }
 
 /**

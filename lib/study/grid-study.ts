@@ -52,6 +52,11 @@ export async function* studyGrid(survey: Survey, settings: Settings): AsyncGener
       "strike/grid",
       "--strike turns one line at a time, and the survey is a grid, worked row by row with one bound. Leave it out, or take lines across the strike with --profiles FILE.geojson.",
     );
+  if (settings.wanted.intervals === "simultaneous")
+    throw new InputError(
+      "intervals/grid",
+      "--intervals simultaneous makes a band for all numbers of one line, and the survey is a grid, whose rows share their half-widths whatever they read. Leave it out, or take lines across the grid with --profiles FILE.geojson or --every N.",
+    );
   const zonesOf = zonesFor(settings);
   const geometries = recent<RowGeometry>(KEPT);
   const pooled = await poolRows(survey, settings, zonesOf, geometries);

@@ -27,6 +27,7 @@ import {condition} from "../survey/condition.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {SurveyLine} from "../survey/line.ts";
 import {spacingOf} from "../survey/record-noise.ts";
+import {remarksOnBand} from "./band-remarks.ts";
 import {disagreement, gainNotices, gainOf, unlessApart} from "./channels-together.ts";
 import {comparisonOf} from "./comparison.ts";
 import {effectiveDirectionOf} from "./direction-of-line.ts";
@@ -109,6 +110,7 @@ function studySquare(
       bound: choice.bound,
       confidence: wanted.confidence,
       loosest: choice.basis === "assumed-bound" ? LOOSEST_FACTOR : 1,
+      kind: wanted.intervals,
     },
     tiesHeard(ties, conditioned),
   );
@@ -134,6 +136,9 @@ function studySquare(
     quantity: wanted.levelQuantity ?? BOUNDARY_FIELD,
   };
   const trust = depthToTrust(question, wanted.trustFraction ?? DEFAULT_TRUST_FRACTION);
+  const averages = averagesOn(intervals, panels, resolution, support);
+  const levels = wanted.levels.map((level) => continueField(level, question));
+  const estimates = strips.map((strip) => stripEstimate(intervals, panels, estimate.density, strip, support));
   return {
     line,
     observable: line.channels[0].observable,
@@ -147,13 +152,14 @@ function studySquare(
     kernels: averagingKernels(intervals, continuum, panels, resolution, choice.multiplier, line.stations.chainage),
     gain,
     noises,
-    averages: averagesOn(intervals, panels, resolution, support),
-    levels: wanted.levels.map((level) => continueField(level, question)),
-    strips: strips.map((strip) => stripEstimate(intervals, panels, estimate.density, strip, support)),
+    averages,
+    levels,
+    strips: estimates,
     trust,
     atBounds:
       choice.basis === "assumed-bound" ? answersAtBounds(question, strips, wanted.levels, choice.bound) : undefined,
     confidence: wanted.confidence,
+    intervals: wanted.intervals,
     notices: [
       ...line.notices,
       ...zones.notices,
@@ -164,6 +170,7 @@ function studySquare(
       ...doubtsOfStrips(strips, support),
       ...gainNotices(gain, resolution),
       ...remarksOfLevels(wanted.levels, conditioned, trust),
+      ...remarksOnBand(intervals.tally?.()),
     ],
   };
 }

@@ -1,6 +1,8 @@
 /** A conditioned line with its operator and solver: what every later question is put to. */
 import type {Support} from "../geometry/interval.ts";
+import type {IntervalKind} from "../inverse/interval-kind.ts";
 import {type IntervalSolver, intervalSolver} from "../inverse/intervals.ts";
+import {type BandSolver, simultaneousSolver} from "../inverse/simultaneous.ts";
 import {type Continuum, continuumOf} from "../operators/continuum.ts";
 import {type ForwardOperator, forwardOperator} from "../operators/forward.ts";
 import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
@@ -66,6 +68,9 @@ export const withChannel = (conditioned: ConditionedLine, place: number): Condit
   channels: conditioned.channels.slice(place, place + 1),
 });
 
+/** Of a simultaneous band with its tally. */
+type LineIntervals = IntervalSolver & Partial<Pick<BandSolver, "tally">>;
+
 interface IntervalQuestion {
   readonly support: Support;
   readonly panels: Panels;
@@ -76,7 +81,14 @@ interface IntervalQuestion {
   readonly confidence: number;
   /** How many times M will be asked for; default 1. */
   readonly loosest?: number;
+  /** Default: single. */
+  readonly kind?: IntervalKind | undefined;
 }
+
+const SOLVER: Readonly<Record<IntervalKind, (...given: Parameters<typeof intervalSolver>) => LineIntervals>> = {
+  single: intervalSolver,
+  simultaneous: simultaneousSolver,
+};
 
 /**
  * The solver for intervals on the readings of a line, f anywhere on the support.
@@ -84,9 +96,9 @@ interface IntervalQuestion {
  */
 export function intervalsOn(
   conditioned: ConditionedLine,
-  {support, panels, degree, bound, confidence, loosest = 1}: IntervalQuestion,
+  {support, panels, degree, bound, confidence, loosest = 1, kind = "single"}: IntervalQuestion,
   known: readonly {readonly point: PointReading; readonly value: number}[] = [],
-): {readonly continuum: Continuum; readonly intervals: IntervalSolver} {
+): {readonly continuum: Continuum; readonly intervals: LineIntervals} {
   const readings = readingsWithPoints(
     conditioned,
     known.map(({point}) => point),
@@ -99,5 +111,6 @@ export function intervalsOn(
     continuum,
     sorted,
   );
-  return {continuum, intervals: intervalSolver(continuum, sorted, data, {bound, confidence, loosest})};
+  const intervals = SOLVER[kind](continuum, sorted, data, {bound, confidence, loosest});
+  return {continuum, intervals};
 }

@@ -3,6 +3,7 @@ import type {AtBound} from "../continuation/at-bounds.ts";
 import type {LevelProfile, LevelSetting} from "../continuation/level-profile.ts";
 import type {Trust} from "../continuation/trust.ts";
 import type {ReportableError} from "../errors.ts";
+import type {IntervalKind} from "../inverse/interval-kind.ts";
 import type {
   AveragingKernel,
   BoundChoice,
@@ -46,6 +47,8 @@ export interface LineStudy {
   /** The intervals at multiples of an assumed bound, factor increasing; undefined where the bound was given. */
   readonly atBounds: readonly AtBound[] | undefined;
   readonly confidence: number;
+  /** Absent: single. */
+  readonly intervals?: IntervalKind | undefined;
   /** Every doubt and remark of the line, acquisition to answer. */
   readonly notices: readonly Notice[];
 }

@@ -6,6 +6,7 @@ import type {AcquisitionSettings} from "../acquisition/settings.ts";
 import type {LevelSetting} from "../continuation/level-profile.ts";
 import type {Interval} from "../geometry/interval.ts";
 import type {MapArea} from "../geometry/map-area.ts";
+import type {IntervalKind} from "../inverse/interval-kind.ts";
 import type {Strip} from "../inverse/nouns.ts";
 import type {BoundRule} from "../inverse/rules/rule.ts";
 import type {LevelQuantity} from "../potential/level-quantity.ts";
@@ -53,6 +54,8 @@ export interface WantedSettings {
   readonly confidence: number;
   /** Share of the range of the field that an interval may span at the depth to trust; default 0.25. */
   readonly trustFraction?: number | undefined;
+  /** Whether each interval covers by itself or all of a line at once; absent: single. */
+  readonly intervals?: IntervalKind | undefined;
   /** Products beside those that are always written, by their words; absent: none. */
   readonly also?: readonly string[];
 }

@@ -49,6 +49,7 @@ describe("settings", () => {
       strips: [],
       confidence: 0.95,
       trustFraction: 0.25,
+      intervals: "single",
     });
     expect(processing).toBeUndefined();
   });
@@ -82,6 +83,7 @@ describe("settings", () => {
         ["strip", "dyke=G2/-1:1"],
         ["confidence", "0.9"],
         ["trust-fraction", "0.1"],
+        ["intervals", "simultaneous"],
         ["processing", "drift removed"],
       ),
     );
@@ -124,6 +126,7 @@ describe("settings", () => {
       ],
       confidence: 0.9,
       trustFraction: 0.1,
+      intervals: "simultaneous",
     });
     expect(processing).toBe("drift removed");
   });
@@ -175,6 +178,7 @@ describe("settings", () => {
     ["confidence", "1", /--confidence "1" is out of range.*between 0 and 1/],
     ["confidence", "0", /out of range/],
     ["confidence", "95", /out of range/],
+    ["intervals", "joint", /--intervals "joint" is not known.*single or simultaneous/],
     ["clearance", "-5", /--clearance "-5" is out of range/],
     ["elevation", "high", /--elevation "high" is not a number/],
     ["sensor-offset", "0x10", /--sensor-offset "0x10" is not a number.*-3/],

@@ -1,7 +1,8 @@
 /** The solver of intervals for stations, support and noise given as numbers; the walk of lib/study without a survey. */
 import type {BoundaryLine} from "../../lib/geometry/boundary-line.ts";
 import type {Support} from "../../lib/geometry/interval.ts";
-import {type IntervalSolver, intervalSolver} from "../../lib/inverse/intervals.ts";
+import {type AffineIntervalSolver, intervalSolver} from "../../lib/inverse/intervals.ts";
+import {type BandSolver, simultaneousSolver} from "../../lib/inverse/simultaneous.ts";
 import {continuumOf} from "../../lib/operators/continuum.ts";
 import {type Functional, fieldAt} from "../../lib/operators/functional.ts";
 import {type Readings, readingsOf, verticalReadings} from "../../lib/operators/readings.ts";
@@ -28,18 +29,24 @@ export interface IntervalCase {
   readonly boundary?: BoundaryLine;
 }
 
-export function intervalsOf(given: IntervalCase): IntervalSolver {
+export function intervalsOf(given: IntervalCase): AffineIntervalSolver {
+  const {continuum, basis, data, terms} = prepared(given);
+  return intervalSolver(continuum, basis, data, terms);
+}
+
+export function bandOf(given: IntervalCase): BandSolver {
+  const {continuum, basis, data, terms} = prepared(given);
+  return simultaneousSolver(continuum, basis, data, terms);
+}
+
+function prepared(given: IntervalCase) {
   const {x, z, support, noise, bound, degree = 1, confidence = 0.95, layout = "by size"} = given;
   const continuum = continuumOf(given.readings ?? verticalReadings(x, z, noise), support, given.boundary);
   const basis = regionalBasis(continuum, degree);
   const values = given.values ?? new Float64Array(continuum.count);
   const readings = Float64Array.from(continuum.place, (i) => values[i]);
-  return intervalSolver(continuum, basis, whitenData(readings, continuum, basis), {
-    bound,
-    confidence,
-    layout,
-    loosest: given.loosest ?? 1,
-  });
+  const data = whitenData(readings, continuum, basis);
+  return {continuum, basis, data, terms: {bound, confidence, layout, loosest: given.loosest ?? 1}};
 }
 
 /** What a sensor would read at a point above a flat boundary, or another. */

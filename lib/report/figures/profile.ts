@@ -11,6 +11,7 @@ import {DELIVERY_UNIT} from "../../quantities.ts";
 import type {LineStudy} from "../../study/outcome.ts";
 import {deliveryOf} from "../delivery.ts";
 import {nameText} from "../html.ts";
+import {intervalNoun} from "../interval-words.ts";
 import {levelWords} from "../level-words.ts";
 import {figureText, metreText, percentText} from "../number-text.ts";
 import {abscissaFigures, abscissaGrid, type Frame, frameGround, frameTitle, ordinate, type Scale} from "./frame.ts";
@@ -123,7 +124,7 @@ export function profileFigure(study: LineStudy): string {
     ),
     frameTitle(source, `Source on the boundary, ${delivery.field}`, [
       {mark: "line", kind: "average", text: `average over about ${metreText(typical)} m`},
-      {mark: "box", kind: "band", text: `${percentText(study.confidence)} interval`},
+      {mark: "box", kind: "band", text: `${percentText(study.confidence)} ${intervalNoun(study.intervals)}`},
       {mark: "line", kind: "plain", text: "one source that fits"},
     ]),
   );
@@ -145,7 +146,15 @@ export function profileFigure(study: LineStudy): string {
       curveMark("average", across, station(level.value, frame.y, toLevel)),
       frameTitle(frame, `${name} ${levelWords(level.setting)}, ${unit.symbol}`, [
         {mark: "line", kind: "average", text: "field"},
-        ...(bounded ? [{mark: "box", kind: "band", text: `${percentText(study.confidence)} interval`} as const] : []),
+        ...(bounded
+          ? [
+              {
+                mark: "box",
+                kind: "band",
+                text: `${percentText(study.confidence)} ${intervalNoun(study.intervals)}`,
+              } as const,
+            ]
+          : []),
       ]),
     );
     lowest = frame;
