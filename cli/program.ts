@@ -4,6 +4,7 @@ import {nearestName} from "../lib/acquisition/nearest-name.ts";
 import {InputError} from "../lib/errors.ts";
 import {continueCommand} from "./commands/continue.ts";
 import {inspectCommand} from "./commands/inspect.ts";
+import {planCommand} from "./commands/plan.ts";
 import {schemaCommand} from "./commands/schema.ts";
 import {spectrumCommand} from "./commands/spectrum.ts";
 import {messagesTo, report} from "./messages.ts";
@@ -82,7 +83,7 @@ export async function groundward(host: Host): Promise<number> {
     .helpCommand("help [command]", "show the help of a command")
     // An option after a command belongs to it: a value such as -400:400 is never taken for one of the program's own.
     .enablePositionalOptions();
-  for (const add of [inspectCommand, continueCommand, spectrumCommand, schemaCommand])
+  for (const add of [inspectCommand, continueCommand, planCommand, spectrumCommand, schemaCommand])
     program.addCommand(add((name) => command(name, host), host, finish));
   try {
     if (host.arguments.length === 0) {

@@ -22,6 +22,8 @@ export {studyGrid} from "./study/grid-study.ts";
 export {studyLine} from "./study/line-study.ts";
 export {type AcrossLines, neighbouringStrips} from "./study/neighbouring-strips.ts";
 export type {LineOutcome, LineStudy, RowOutcome, RowStudy} from "./study/outcome.ts";
+export {type Plan, type PlanCase, type PlannedStrip, planSurvey} from "./study/plan.ts";
+export type {PlanSettings} from "./study/planned-work.ts";
 export type {Settings} from "./study/settings.ts";
 export {studySurvey} from "./study/survey-study.ts";
 export {type Inspection, inspectSurvey} from "./survey/inspection.ts";

@@ -13,7 +13,7 @@ describe("the program", () => {
   test("--help names every command", async () => {
     const {status, out} = await run(["--help"]);
     expect(status).toBe(0);
-    for (const name of ["inspect", "continue", "spectrum", "schema"])
+    for (const name of ["inspect", "continue", "plan", "spectrum", "schema"])
       expect(out).toMatch(new RegExp(`^ {2}${name} `, "m"));
   });
 
@@ -42,9 +42,12 @@ describe("the program", () => {
     for (const line of out.split("\n")) expect(line.length).toBeLessThanOrEqual(100);
   });
 
-  test.each(["inspect", "continue", "spectrum", "schema"])("help %s and %s --help say the same", async (name) => {
-    expect(await run(["help", name])).toEqual(await run([name, "--help"]));
-  });
+  test.each(["inspect", "continue", "plan", "spectrum", "schema"])(
+    "help %s and %s --help say the same",
+    async (name) => {
+      expect(await run(["help", name])).toEqual(await run([name, "--help"]));
+    },
+  );
 
   test("an unknown option names the nearest known one", async () => {
     const {status, out, err} = await run(["continue", "a.csv", "--nois", "3"]);

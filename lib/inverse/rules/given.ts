@@ -12,6 +12,7 @@ export function givenBound(text: string, norm: (supportLength: number) => number
   return {
     name: "given",
     text,
+    norm,
     choose({solver, supportLength, lines}: RuleQuestion): BoundChoice {
       const bound = norm(supportLength);
       // Pooled lines share the multiplier, and M holds for the root-mean-square of their norms.

@@ -20,5 +20,7 @@ export interface BoundRule {
   readonly text: string;
   /** Rules that are to be set beside this one; absent: none. */
   readonly compared?: readonly BoundRule[];
+  /** The bound M that the text names, SI·√m, from the length of the support; absent where only data can tell. */
+  readonly norm?: (supportLength: number) => number;
   choose(question: RuleQuestion): BoundChoice;
 }
