@@ -21,14 +21,16 @@ export interface Summary {
 
 export async function carryOut<Outcome extends LineOutcome | RowOutcome>(
   {host, survey, settings, messages, form}: Run,
-  {outcomes, products, result, across}: Work<Outcome>,
+  {outcomes, computed, products, result, across}: Work<Outcome>,
 ): Promise<Summary> {
   const counts = noOutcome();
   const doubts = doubtCollector();
   const bases = new Set<IntervalBasis>();
   const failed = new Set<number>();
   const failures = failureCollector(!form.json);
-  const progress = progressOf(host, survey.lineCount, survey.grid?.orientation ?? "lines", form.json || form.quiet);
+  const noun = computed ? "lines written" : (survey.grid?.orientation ?? "lines");
+  const silent = form.json || form.quiet || (computed && !host.err.isTerminal);
+  const progress = progressOf(host, survey.lineCount, noun, silent);
   doubts.add(survey.notices);
   const {levels, confidence, intervals, levelQuantity} = settings.wanted;
   for (const product of products)

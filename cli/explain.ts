@@ -1,6 +1,7 @@
 /** Every setting in force, where it came from, and why its default is what it is. Nothing is run. */
 import type {Host} from "./nouns.ts";
 import {modelFrom} from "./options/assumed.ts";
+import {batchFrom} from "./options/batch.ts";
 import {observableAsked} from "./options/channels.ts";
 import {JOB_ENTRIES} from "./options/continue-options.ts";
 import {type Asked, allOf, type OptionEntry, oneOf} from "./options/entry.ts";
@@ -36,6 +37,7 @@ export function explain(request: Request, host: Host): number {
 }
 
 function refuseBadSettings(asked: Asked): void {
+  batchFrom(asked);
   if (observableAsked(asked) !== undefined) settingsFrom(asked);
   else {
     // Without an observable the bound alone has no unit to be read in.

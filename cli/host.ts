@@ -1,28 +1,34 @@
 /**
- * The only file that reads, writes, asks the time or prints. Everything else in `cli/` gets a
+ * The only file, with those of `host/`, that reads, writes, asks the time or prints. Everything else in `cli/` gets a
  * `Host`; tests give one of their own or a real one over temporary folders.
  *
  * What the operating system refuses is an `InputError` here: the user acts on it.
  */
 import {createHash} from "node:crypto";
 import {existsSync, readFileSync, rmSync, writeSync} from "node:fs";
-import {type FileHandle, mkdir, mkdtemp, open, readdir, readFile, rename, rm, rmdir, writeFile} from "node:fs/promises";
-import {hostname, tmpdir} from "node:os";
+import {type FileHandle, mkdir, mkdtemp, open, readdir, readFile, rename, rm, rmdir} from "node:fs/promises";
+import {availableParallelism, hostname, tmpdir} from "node:os";
 import {basename, dirname, isAbsolute, join, resolve} from "node:path";
 import {fileURLToPath} from "node:url";
 import {InputError} from "../lib/errors.ts";
-import type {Host, InputFile, OutputFile, OutputFolder, Scratch, Terminal} from "./nouns.ts";
+import {claim, isAlive} from "./host/claim.ts";
+import {openStore} from "./host/store.ts";
+import type {Host, InputFile, Interruptible, OutputFile, OutputFolder, Scratch, Terminal} from "./nouns.ts";
+import {PARTS, UNFINISHED} from "./own-names.ts";
 import {asking} from "./refusals.ts";
 
 const BUFFER_BYTES = 1 << 17;
-const UNFINISHED = ".unfinished";
 
 /** What a signal has to undo before the process ends, and whether it must wait for a moment that may not be cut. */
 interface Interruption {
   readonly undo: Set<() => void>;
   held: boolean;
   pending: boolean;
+  /** Work that can come to an end by itself. */
+  soft: Interruptible | undefined;
 }
+
+const noInterruption = (): Interruption => ({undo: new Set(), held: false, pending: false, soft: undefined});
 
 async function openInput(path: string): Promise<InputFile> {
   const handle = await asking(path, () => open(path, "r"));
@@ -106,42 +112,6 @@ async function createFile(path: string, shown: string, opened: Set<FileHandle>):
   };
 }
 
-/** Whether the run that left `unfinished` behind still works on this machine. */
-async function ownerAlive(unfinished: string): Promise<boolean> {
-  let owner: {pid?: unknown; machine?: unknown};
-  try {
-    owner = JSON.parse(await readFile(join(unfinished, "owner.json"), "utf8"));
-  } catch {
-    return false;
-  }
-  if (owner.machine !== hostname() || typeof owner.pid !== "number") return true;
-  try {
-    process.kill(owner.pid, 0);
-    return owner.pid !== process.pid;
-  } catch (error) {
-    return (error as NodeJS.ErrnoException).code === "EPERM";
-  }
-}
-
-/** The folder's private workplace, which is also the mark that a run is on. */
-async function claim(path: string): Promise<string> {
-  const unfinished = join(path, UNFINISHED);
-  if (existsSync(unfinished)) {
-    if (await ownerAlive(unfinished))
-      throw new InputError(
-        "host/run-in-progress",
-        `Another run is writing to "${path}". Wait for it, choose another folder with --out, or delete "${unfinished}" if no run is on.`,
-        {place: {file: path}},
-      );
-    await asking(path, () => rm(unfinished, {recursive: true, force: true}));
-  }
-  await asking(path, () => mkdir(unfinished));
-  await asking(path, () =>
-    writeFile(join(unfinished, "owner.json"), JSON.stringify({pid: process.pid, machine: hostname()})),
-  );
-  return unfinished;
-}
-
 async function openOutput(path: string, interruption: Interruption): Promise<OutputFolder> {
   const firstMade = await asking(path, () => mkdir(path, {recursive: true}));
   const opened = new Set<FileHandle>();
@@ -173,7 +143,9 @@ async function openOutput(path: string, interruption: Interruption): Promise<Out
   };
   try {
     workplace = await claim(path);
-    const before = (await asking(path, () => readdir(path))).filter((name) => name !== UNFINISHED).sort();
+    const before = (await asking(path, () => readdir(path)))
+      .filter((name) => name !== UNFINISHED && name !== PARTS)
+      .sort();
     const inside = workplace;
     return {
       before,
@@ -246,10 +218,7 @@ function terminalOn(stream: NodeJS.WriteStream): Terminal {
 }
 
 /** The machine itself. Parts can be replaced, which tests do. */
-export function nodeHost(
-  replaced: Partial<Host> = {},
-  interruption: Interruption = {undo: new Set(), held: false, pending: false},
-): Host {
+export function nodeHost(replaced: Partial<Host> = {}, interruption: Interruption = noInterruption()): Host {
   const noColour = (process.env["NO_COLOR"] ?? "") !== "";
   return {
     arguments: process.argv.slice(2),
@@ -265,6 +234,18 @@ export function nodeHost(
     beside: (file, path) => (isAbsolute(path) ? path : join(dirname(file), path)),
     openOutput: (path) => openOutput(path, interruption),
     openScratch: () => openScratch(interruption),
+    openStore,
+    folder: process.cwd(),
+    cores: availableParallelism(),
+    startThreads: async (count, data) => (await import("./host/threads.ts")).startThreads(count, data),
+    self: {pid: process.pid, machine: hostname()},
+    isAlive,
+    interruptible(what) {
+      interruption.soft = what;
+      return () => {
+        if (interruption.soft === what) interruption.soft = undefined;
+      };
+    },
     ...replaced,
   };
 }
@@ -274,16 +255,21 @@ export function nodeHost(
  * Ctrl-C and SIGTERM end it with 130 after removing what is unfinished; a closed pipe ends nothing.
  */
 export async function runAsProcess(program: (host: Host) => Promise<number>): Promise<void> {
-  const interruption: Interruption = {undo: new Set(), held: false, pending: false};
+  const interruption = noInterruption();
   const leave = () => {
     for (const undo of interruption.undo) undo();
-    writeSync(2, "\ninterrupted: nothing of this run was kept\n");
+    writeSync(2, `\ninterrupted: ${interruption.soft?.farewell() ?? "nothing of this run was kept"}\n`);
     process.exit(130);
   };
+  let asked = false;
   for (const signal of ["SIGINT", "SIGTERM"] as const)
     process.on(signal, () => {
       if (interruption.held) interruption.pending = true;
-      else leave();
+      else if (asked || interruption.soft?.stop === undefined) leave();
+      else {
+        asked = true;
+        interruption.soft.stop();
+      }
     });
   for (const stream of [process.stdout, process.stderr])
     stream.on("error", (error: NodeJS.ErrnoException) => {

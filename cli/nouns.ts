@@ -34,6 +34,45 @@ export interface Scratch extends ScratchStore {
   dispose(): Promise<void>;
 }
 
+/** A folder of files that each are whole or absent, whatever happens to the process; made by the first writing. */
+export interface Store {
+  /** Sorted; empty where there is no such folder. */
+  list(): Promise<readonly string[]>;
+  /** Undefined where there is none of that name. */
+  read(name: string): Promise<Uint8Array | undefined>;
+  /** On the disk when it returns. */
+  writeWhole(name: string, bytes: Uint8Array): Promise<void>;
+  /** Creates the file; false where one of that name stands. */
+  claim(name: string, bytes: Uint8Array): Promise<boolean>;
+  /** On the disk when it returns. */
+  append(name: string, bytes: Uint8Array): Promise<void>;
+  remove(name: string): Promise<void>;
+  /** Removes the folder with all that is in it. */
+  dispose(): Promise<void>;
+}
+
+/** Threads of this process that run `cli/batch/worker-thread.ts`. */
+export interface Threads {
+  /** One task on a thread that is free. */
+  run(task: unknown): Promise<unknown>;
+  /** Ends the threads, also at work. */
+  end(): Promise<void>;
+}
+
+/** A process, as others on the same or another machine know it. */
+export interface Owner {
+  readonly pid: number;
+  readonly machine: string;
+}
+
+/** What happens at Ctrl-C or SIGTERM. */
+export interface Interruptible {
+  /** Asks the work to come to an end by itself, once; the next signal ends it at once. Absent: so does the first. */
+  stop?(): void;
+  /** What is said when the process ends at once. */
+  farewell(): string;
+}
+
 export interface Host {
   readonly arguments: readonly string[];
   readonly out: Terminal;
@@ -53,4 +92,16 @@ export interface Host {
   beside(file: string, path: string): string;
   openOutput(path: string): Promise<OutputFolder>;
   openScratch(): Promise<Scratch>;
+  openStore(path: string): Store;
+  /** Where relative paths start from. */
+  readonly folder: string;
+  /** Threads worth starting at most. */
+  readonly cores: number;
+  /** @param data plain, for every thread */
+  startThreads(count: number, data: unknown): Promise<Threads>;
+  readonly self: Owner;
+  /** Whether another process is at work, as far as can be told: one of another machine is. */
+  isAlive(owner: Owner): boolean;
+  /** @returns a function that ends it */
+  interruptible(what: Interruptible): () => void;
 }

@@ -3,6 +3,7 @@ import {Command, CommanderError} from "commander";
 import {nearestName} from "../lib/acquisition/nearest-name.ts";
 import {InputError} from "../lib/errors.ts";
 import {continueCommand} from "./commands/continue.ts";
+import {gatherCommand} from "./commands/gather.ts";
 import {inspectCommand} from "./commands/inspect.ts";
 import {planCommand} from "./commands/plan.ts";
 import {schemaCommand} from "./commands/schema.ts";
@@ -83,7 +84,7 @@ export async function groundward(host: Host): Promise<number> {
     .helpCommand("help [command]", "show the help of a command")
     // An option after a command belongs to it: a value such as -400:400 is never taken for one of the program's own.
     .enablePositionalOptions();
-  for (const add of [inspectCommand, continueCommand, planCommand, spectrumCommand, schemaCommand])
+  for (const add of [inspectCommand, continueCommand, gatherCommand, planCommand, spectrumCommand, schemaCommand])
     program.addCommand(add((name) => command(name, host), host, finish));
   try {
     if (host.arguments.length === 0) {

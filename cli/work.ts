@@ -18,6 +18,8 @@ import {observableOf, type Run} from "./run.ts";
 
 export interface Work<Outcome> {
   readonly outcomes: AsyncIterable<Outcome>;
+  /** Whether they were computed before, and their progress told. */
+  readonly computed: boolean;
   readonly products: readonly {
     begin(frame: RunFrame): Promise<void>;
     take(outcome: Outcome): Promise<void>;
@@ -28,10 +30,15 @@ export interface Work<Outcome> {
   readonly across: {add(outcome: Outcome): void; notices(): readonly Notice[]} | undefined;
 }
 
-export async function lineWork({host, settings, survey, folder}: Run): Promise<Work<LineOutcome>> {
+/** @param computed outcomes of the lines where they are there already */
+export async function lineWork(
+  {host, settings, survey, folder}: Run,
+  computed?: AsyncIterable<LineOutcome>,
+): Promise<Work<LineOutcome>> {
   const products = await lineProducts(folder, {version: host.version, settings});
   return {
-    outcomes: studySurvey(survey, settings),
+    outcomes: computed ?? studySurvey(survey, settings),
+    computed: computed !== undefined,
     products: products.map((product) => ({
       begin: (frame) => product.begin(frame),
       take: (outcome) => product.line(outcome),
@@ -67,6 +74,7 @@ export async function gridWork({host, settings, survey, folder}: Run, file: Byte
   const products = await gridProducts(folder, {version: host.version, settings}, await openRaster(file));
   return {
     outcomes: studyGrid(survey, settings),
+    computed: false,
     products: products.map((product) => ({
       begin: (frame) => product.begin(frame),
       take: (outcome) => product.row(outcome),

@@ -29,7 +29,7 @@ export const continueCommand: AddCommand = (create, host, finish) => {
         "  3    sound input that breaks a hypothesis of the theory",
         "  4    the promised accuracy was missed",
         "  5    several lines, some failed: lines.csv says which and why",
-        "  130  interrupted",
+        "  130  interrupted: finished lines are kept, and the same command goes on from them",
         "  1    a defect of the program",
         "",
         "A computed source is not clearance to dig, drill or enter.",

@@ -1,5 +1,6 @@
 /** Every option of `continue`. A job file may hold all of them, and the files of the survey. */
 import {ASSUMED} from "./assumed.ts";
+import {SHARED_OUT} from "./batch.ts";
 import type {OptionEntry, OptionGroup} from "./entry.ts";
 import {MEASURED} from "./measured.ts";
 import {WRITTEN} from "./output.ts";
@@ -39,7 +40,14 @@ export const SURVEY: OptionEntry = {
   required: "there is nothing to read without it",
 };
 
-export const CONTINUE_OPTIONS: readonly OptionGroup[] = [MEASURED, ASSUMED, WANTED, WRITTEN, JOB_AND_EXPLAIN];
+export const CONTINUE_OPTIONS: readonly OptionGroup[] = [
+  MEASURED,
+  ASSUMED,
+  WANTED,
+  WRITTEN,
+  SHARED_OUT,
+  JOB_AND_EXPLAIN,
+];
 
 /** What a job file may hold. */
 export const JOB_ENTRIES: readonly OptionEntry[] = [

@@ -1,45 +1,69 @@
 /** A survey as a stream of line studies: one line in memory at a time. */
 import {InputError, ReportableError} from "../errors.ts";
 import {isDoubtful} from "../notice.ts";
-import type {Survey} from "../survey/survey.ts";
+import type {LineRecord, Survey} from "../survey/survey.ts";
 import {studyLine} from "./line-study.ts";
 import type {LineOutcome} from "./outcome.ts";
 import type {ChainageZone, Settings} from "./settings.ts";
 import {allSkipped, statusWithout} from "./skipped.ts";
 import {zonesFor} from "./zones.ts";
 
+/** What becomes of one line, as the survey hands it out; the index counts from zero. */
+export type LineAnswer = (record: LineRecord, index: number) => LineOutcome | Promise<LineOutcome>;
+
 /**
- * Outcomes in the order of the files; a line that cannot be answered is an outcome too.
- * @throws {InputError} `support/needs-group`, `tie/no-line`, before the first line; `zone/…`; `survey/all-skipped`, after the last
+ * Computes the answer of each line; what the lines share is prepared once.
+ * @throws {InputError} from the function returned: `zone/…`, since what is wrong with polygons is wrong for every line
  */
-export async function* studySurvey(survey: Survey, settings: Settings): AsyncGenerator<LineOutcome> {
+export function lineAnswers(settings: Settings): (record: LineRecord) => LineOutcome {
+  const zonesOf = zonesFor(settings);
+  const without = (id: string, failure: ReportableError): LineOutcome => ({
+    status: statusWithout(failure),
+    id,
+    failure,
+  });
+  return (record) => {
+    if ("failure" in record) return without(record.id, record.failure);
+    const {id} = record.line;
+    const zones = zonesOf(record.line);
+    try {
+      const study = studyLine(record.line, settings, zones);
+      return {status: isDoubtful(study.notices) ? "doubtful" : "done", id, study};
+    } catch (error) {
+      if (!(error instanceof ReportableError)) throw error;
+      return without(id, error);
+    }
+  };
+}
+
+/**
+ * What must hold before the first line is computed.
+ * @throws {InputError} `support/needs-group`, `support/unknown-group`, `tie/no-line`
+ */
+export async function checkSurvey(survey: Survey, settings: Settings): Promise<void> {
   checkGroups(survey, settings);
   await checkTies(survey, settings);
-  const zonesOf = zonesFor(settings);
+}
+
+/**
+ * Outcomes in the order of the files; a line that cannot be answered is an outcome too.
+ * @param answer where the outcome of a line comes from: computed here, or elsewhere before
+ * @throws {InputError} those of `checkSurvey`, before the first line; `zone/…`; `survey/all-skipped`, after the last
+ */
+export async function* studySurvey(
+  survey: Survey,
+  settings: Settings,
+  answer: LineAnswer = lineAnswers(settings),
+): AsyncGenerator<LineOutcome> {
+  await checkSurvey(survey, settings);
   let skipped: ReportableError | undefined;
   let kept = 0;
-  const without = (id: string, failure: ReportableError): LineOutcome => {
-    const status = statusWithout(failure);
-    if (status === "skipped") skipped ??= failure;
-    else ++kept;
-    return {status, id, failure};
-  };
+  let index = 0;
   for await (const record of survey.lines()) {
-    if ("failure" in record) yield without(record.id, record.failure);
-    else {
-      const {id} = record.line;
-      // What is wrong with polygons is wrong for every line.
-      const zones = zonesOf(record.line);
-      try {
-        const study = studyLine(record.line, settings, zones);
-        ++kept;
-        const doubtful = isDoubtful(study.notices);
-        yield {status: doubtful ? "doubtful" : "done", id, study};
-      } catch (error) {
-        if (!(error instanceof ReportableError)) throw error;
-        yield without(id, error);
-      }
-    }
+    const outcome = await answer(record, index++);
+    if (outcome.status === "skipped") skipped ??= outcome.failure;
+    else ++kept;
+    yield outcome;
   }
   if (kept === 0 && skipped !== undefined) throw allSkipped(skipped);
 }

@@ -363,6 +363,7 @@ describe("what is strange but sound goes through unharmed", () => {
     expect(result.status).toBe(0);
     expect(contents(folder)).toEqual(["out"]);
     expect(contents(out)).toEqual([
+      "bounds_assumed.csv",
       "levels.csv",
       "lines.csv",
       "record.json",
@@ -374,7 +375,7 @@ describe("what is strange but sound goes through unharmed", () => {
     ]);
     expect(result.out + result.err).not.toContain("\u001b");
     const {readFileSync} = await import("node:fs");
-    for (const name of ["lines.csv", "levels.csv", "source.csv", "tradeoff.csv"])
+    for (const name of ["lines.csv", "levels.csv", "source.csv", "tradeoff.csv", "bounds_assumed.csv"])
       expect(readFileSync(join(out, name), "utf8")).not.toMatch(/^"?=/m);
     expect(readFileSync(join(out, "report.html"), "utf8")).not.toContain("<script>alert");
   });

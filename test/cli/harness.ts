@@ -1,4 +1,4 @@
-/** Runs the program in this process, on the real machine but for terminal and clock. */
+/** Runs the program in this process, on the real machine but for terminal, clock and threads, which need the compiled program. */
 import {existsSync, mkdtempSync, readdirSync, rmSync, writeFileSync} from "node:fs";
 import {tmpdir} from "node:os";
 import {join} from "node:path";
@@ -33,7 +33,7 @@ function recorder(isTerminal: boolean): {readonly terminal: Terminal; text(): st
 export async function run(args: readonly string[], replaced: Partial<Host> = {}, isTerminal = false): Promise<Outcome> {
   const out = recorder(isTerminal);
   const err = recorder(isTerminal);
-  const host = nodeHost({arguments: args, out: out.terminal, err: err.terminal, colour: false, ...replaced});
+  const host = nodeHost({arguments: args, out: out.terminal, err: err.terminal, colour: false, cores: 1, ...replaced});
   const status = await groundward(host);
   return {status, out: out.text(), err: err.text()};
 }

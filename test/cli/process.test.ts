@@ -1,11 +1,11 @@
 /** The compiled program as a process: pipes, signals, permissions and disks. `npm run build` comes before. */
 import {type ChildProcess, spawn, spawnSync} from "node:child_process";
 import {once} from "node:events";
-import {chmodSync, existsSync, writeFileSync} from "node:fs";
+import {chmodSync, existsSync} from "node:fs";
 import {join} from "node:path";
 import {fileURLToPath} from "node:url";
 import {beforeAll, describe, expect, test} from "vitest";
-import {contents, fileWith, surveyText, temporaryFolder} from "./harness.ts";
+import {contents, fileWith, gridBytes, surveyText, temporaryFolder} from "./harness.ts";
 
 const MAIN = fileURLToPath(new URL("../../dist/cli/main.js", import.meta.url));
 const SETTINGS = ["--observable", "gravity", "--noise", "0.02", "--bound", "rms:0.5"];
@@ -31,7 +31,9 @@ test("--help loads no mathematics and no file format", () => {
   });
   const loaded = trace.stderr.split("\n").filter((line) => line.startsWith("load "));
   expect(loaded.length).toBeGreaterThan(10);
-  expect(loaded.filter((line) => /geotiff|proj4|csv-parse|d3-|smol-toml|epsg-table|line-study/.test(line))).toEqual([]);
+  expect(
+    loaded.filter((line) => /geotiff|proj4|csv-parse|d3-|smol-toml|epsg-table|line-study|piscina/.test(line)),
+  ).toEqual([]);
 });
 
 /** A module, as a data URL, that tells what is resolved. */
@@ -86,7 +88,7 @@ describe("when writing fails, status 2 and nothing is left", () => {
     const {status, stdout, stderr} = shell('ulimit -f 16; exec "$@"', "continue", survey, ...SETTINGS, "--out", out);
     expect({status, stdout}).toEqual({status: 2, stdout: ""});
     expect(stderr.replaceAll(/\s+/g, " ")).toMatch(
-      /outgrew the largest file allowed here.*--out; nothing of this run was kept/,
+      /outgrew the largest file allowed here.*--out; no file of this run was kept/,
     );
     expect(stderr).not.toMatch(/\n\s+at /);
     expect(contents(folder)).toEqual([]);
@@ -111,39 +113,47 @@ describe("when writing fails, status 2 and nothing is left", () => {
 });
 
 describe.each(["SIGINT", "SIGTERM"] as const)("%s", (signal) => {
-  test("ends the run with 130 and leaves nothing half written", async () => {
+  test("ends the run with 130 and keeps finished lines only, from which the same command goes on", async () => {
     const folder = temporaryFolder();
     const out = join(folder, "out");
     // Enough lines that the first ones are done long before the last.
-    const names = Array.from({length: 300}, (_, i) => `L${i}`);
+    const names = Array.from({length: 80}, (_, i) => `L${i}`);
     const survey = fileWith("lines.csv", surveyText(names));
     const child: ChildProcess = spawn(process.execPath, [MAIN, "continue", survey, ...SETTINGS, "--out", out], {
       stdio: ["ignore", "pipe", "pipe"],
     });
     let err = "";
+    let sent = false;
     child.stderr!.on("data", (data) => {
       err += data;
-      if (/75 of 300/.test(err)) child.kill(signal);
+      if (!sent && /20 of 80/.test(err)) sent = child.kill(signal);
     });
     const [status] = await once(child, "close");
-    expect(err).toMatch(/interrupted: nothing of this run was kept/);
     expect(status).toBe(130);
-    expect(contents(out)).toEqual([]);
+    const [, kept] = /interrupted: (\d+) of 80 lines are kept in .*\.groundward-run; the same command goes on/.exec(
+      err,
+    )!;
+    expect(Number(kept)).toBeGreaterThanOrEqual(20);
+    expect(contents(out)).toEqual([".groundward-run"]);
+    const again = spawnSync(process.execPath, [MAIN, "continue", survey, ...SETTINGS, "--out", out], {
+      encoding: "utf8",
+    });
+    expect(again.status).toBe(0);
+    expect(again.stderr).toContain(`${kept} of 80 lines were finished before and are taken over.`);
+    expect(contents(out)).not.toContain(".groundward-run");
   });
 });
 
-test("a run that was killed outright leaves a mark that the next run clears", async () => {
-  const out = temporaryFolder();
-  const survey = fileWith("lines.csv", surveyText(Array.from({length: 300}, (_, i) => `L${i}`)));
-  const child = spawn(process.execPath, [MAIN, "continue", survey, ...SETTINGS, "--out", out], {
-    stdio: ["ignore", "ignore", "pipe"],
-  });
+test("a grid that is interrupted leaves nothing", async () => {
+  const out = join(temporaryFolder(), "out");
+  const survey = fileWith("grid.tif", gridBytes(60, 400));
+  const args = ["continue", survey, "--observable", "field-vertical", "--clearance", "60", "--noise", "1"];
+  const child = spawn(process.execPath, [MAIN, ...args, "--out", out], {stdio: ["ignore", "ignore", "pipe"]});
+  let sent = false;
   child.stderr.on("data", (data) => {
-    if (/75 of 300/.test(String(data))) child.kill("SIGKILL");
+    if (!sent && /of 400 rows/.test(String(data))) sent = child.kill("SIGINT");
   });
-  await once(child, "close");
-  expect(contents(out)).toEqual([".unfinished"]);
-  writeFileSync(survey, surveyText());
-  expect(spawnSync(process.execPath, [MAIN, "continue", survey, ...SETTINGS, "--out", out]).status).toBe(0);
-  expect(contents(out)).not.toContain(".unfinished");
+  const [status] = await once(child, "close");
+  expect(status).toBe(130);
+  expect(contents(out)).toEqual([]);
 });
