@@ -83,9 +83,9 @@ describe("README", () => {
     });
   });
 
-  test("shows commands, and the output of two of them", () => {
-    expect(SHELL).toHaveLength(6);
-    expect(SHELL.filter(({shown}) => shown !== undefined)).toHaveLength(2);
+  test("shows commands, and the output of three of them", () => {
+    expect(SHELL).toHaveLength(7);
+    expect(SHELL.filter(({shown}) => shown !== undefined)).toHaveLength(3);
   });
 
   test.each(SHELL.map((command) => ({...command, title: command.words.join(" ")})))(
@@ -125,7 +125,7 @@ describe("README", () => {
   });
 
   test("every option, file and folder it names exists", async () => {
-    const help = (await Promise.all(["inspect", "continue", "spectrum"].map((name) => run([name, "--help"]))))
+    const help = (await Promise.all(["inspect", "continue", "plan", "gather", "spectrum"].map((name) => run([name, "--help"]))))
       .map(({out}) => out)
       .join("\n");
     const options = new Set(README.match(/--[a-z][a-z-]+/g));

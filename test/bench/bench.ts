@@ -5,6 +5,7 @@
 import {mkdirSync, mkdtempSync, rmSync, writeFileSync} from "node:fs";
 import {tmpdir} from "node:os";
 import {assumedCase} from "./assumed-case.ts";
+import {bandCase} from "./band-case.ts";
 import {coverageCase} from "./coverage-case.ts";
 import {gridCase} from "./grid-case.ts";
 import {lineCase} from "./line-case.ts";
@@ -15,7 +16,7 @@ import {startCase} from "./start-case.ts";
 
 const CASES = [lineCase, gridCase, startCase];
 /** Slower, and of answers rather than speed: run by name alone. */
-const ON_REQUEST = [rulesCase, coverageCase, assumedCase];
+const ON_REQUEST = [rulesCase, coverageCase, bandCase, assumedCase];
 const NAMED = [...CASES, ...ON_REQUEST];
 
 const asked = process.argv.slice(2);
