@@ -6,6 +6,7 @@
  * inverse on what is orthogonal to R. W = R will not do: it takes the sources for regional, and where the line runs on
  * beyond the support it made intervals up to 400 times longer.
  */
+import {NumericalError} from "../errors.ts";
 import {choleskyInPlace, choleskySolveInto} from "../numeric/cholesky.ts";
 import {matVecInto, multiplyTransposedInto} from "../numeric/matmul.ts";
 import type {RegionalBasis} from "../operators/regional.ts";
@@ -22,16 +23,11 @@ export interface RegionalReader {
   readonly gramWeights: Float64Array;
 }
 
-export function regionalReader(
-  line: WholeLine,
-  {terms, count, rows}: RegionalBasis,
-  data: Float64Array,
-  a: number,
-): RegionalReader {
+export function regionalReader(line: WholeLine, basis: RegionalBasis, data: Float64Array, a: number): RegionalReader {
+  const {terms, count, rows} = basis;
   const solved = new Float64Array(terms * count);
   for (let t = 0; t < terms; ++t) solved.set(line.solve(a, rows.subarray(t * count, (t + 1) * count)), t * count);
-  const size = multiplyTransposedInto(new Float64Array(terms * terms), solved, rows, terms, count, terms);
-  choleskyInPlace(size, terms);
+  const size = steadyFactor(solved, basis);
   const weights = new Float64Array(terms * count);
   const one = new Float64Array(terms);
   for (let i = 0; i < count; ++i) {
@@ -60,4 +56,30 @@ export function regionalReader(
     gram: square(gramWeights),
     data: matVecInto(new Float64Array(terms), weights, data, terms, count),
   };
+}
+
+/** What is added to (G + a)⁻¹, over its largest value on the regional, until rounding leaves RᵀK⁻¹R positive. */
+const LIFTS = [0, 1e-14, 1e-12, 1e-10, 1e-8, 1e-6] as const;
+
+/**
+ * The factor of Rᵀ(K⁻¹ + μ)R, K⁻¹R in `solved`, to which μR is added. Two channels with a level each, of which sources
+ * can mimic the sum and not the difference, make it all but singular. Any μ makes a valid W, and one at rounding costs nothing.
+ */
+function steadyFactor(solved: Float64Array, {terms, count, rows}: RegionalBasis): Float64Array {
+  const plain = multiplyTransposedInto(new Float64Array(terms * terms), solved, rows, terms, count, terms);
+  let largest = 0;
+  for (let t = 0; t < terms; ++t) largest = Math.max(largest, plain[t * terms + t]);
+  for (const lift of LIFTS) {
+    const size = Float64Array.from(plain);
+    for (let t = 0; t < terms; ++t) size[t * terms + t] += lift * largest;
+    try {
+      choleskyInPlace(size, terms);
+    } catch (error) {
+      if (error instanceof NumericalError && lift !== LIFTS[LIFTS.length - 1]) continue;
+      throw error;
+    }
+    for (let e = 0; e < solved.length; ++e) solved[e] += lift * largest * rows[e];
+    return size;
+  }
+  return plain;
 }

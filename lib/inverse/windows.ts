@@ -27,7 +27,7 @@ const BLOCKS_BEYOND = 2;
 const MODE_FLOOR = 1e-5;
 
 /** Readers of the regional are made for values of a this far apart, as a factor; the nearest one serves. A heuristic. */
-const READER_STEP = 6;
+const READER_STEP = 12;
 
 /** One window or many; by size of the line unless a test asks. */
 export type Layout = "by size" | "whole" | "windows";
@@ -134,8 +134,7 @@ export function windowsOf(
     });
   };
   const lines = new Map<"line", WholeLine>();
-  const line = (): WholeLine =>
-    remember(lines, "line", () => wholeLine(continuum, {patches: cover(), margin: WINDOW_MARGIN * height}));
+  const line = (): WholeLine => remember(lines, "line", () => wholeLine(continuum, cover()));
   const readers = new Map<number, RegionalReader>();
   const readerFor = (a: number): RegionalReader => regionalReader(line(), basis, data, a);
   const seenReaders = new Map<RegionalReader, Map<Window, WindowReader>>();

@@ -45,8 +45,8 @@ test.each([1e-2, 1, 1e3])("agrees with Cholesky at a = %d", (a) => {
   const right = normalDeviates(seededRandom(3), count);
   const expected = choleskySolveInto(new Float64Array(count), dense, right, count);
 
-  const found = wholeLine(line, {patches, margin: core}).solve(a, right);
+  const found = wholeLine(line, patches).solve(a, right);
   const error = Math.hypot(...found.map((value, i) => value - expected[i])) / Math.hypot(...expected);
-  // The steps end at 1e-9 of the residual; Cholesky itself loses ε times the condition, λ_0/a.
-  expect(error).toBeLessThan(1e-8 + (Number.EPSILON * 1e8) / a);
+  // The steps end at 1e-7 of the residual; Cholesky itself loses ε times the condition, λ_0/a.
+  expect(error).toBeLessThan(1e-6 + (Number.EPSILON * 1e8) / a);
 });
