@@ -41,6 +41,10 @@ export async function continueRun(request: Request, host: Host): Promise<number>
       const replace = isOn(asked, "replace");
       const plan: BatchPlan = {host, messages, form, opened, request: stored, out, replace, workers: shared.workers};
       if (shared.shard !== undefined) return (await import("./batch/shard-run.ts")).shardRun(plan, shared.shard);
+      if (shared.queue !== undefined) {
+        const work = {queue: shared.queue, detach: isOn(asked, "detach"), started, read};
+        return (await import("./queue/queue-run.ts")).queueRun(plan, work);
+      }
       const run = await runIn(plan, replace);
       const finish = <Outcome extends LineOutcome | RowOutcome>(work: Work<Outcome>): Promise<number> =>
         finishRun(run, work, {opened, out, started, read});

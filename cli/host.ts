@@ -230,6 +230,7 @@ export function nodeHost(replaced: Partial<Host> = {}, interruption: Interruptio
     now: () => Date.now(),
     dateText: (milliseconds) => new Date(milliseconds).toISOString(),
     breathe: () => new Promise((done) => setImmediate(done)),
+    pause: (milliseconds) => new Promise((done) => setTimeout(done, milliseconds)),
     openInput,
     beside: (file, path) => (isAbsolute(path) ? path : join(dirname(file), path)),
     openOutput: (path) => openOutput(path, interruption),
@@ -238,6 +239,7 @@ export function nodeHost(replaced: Partial<Host> = {}, interruption: Interruptio
     folder: process.cwd(),
     cores: availableParallelism(),
     startThreads: async (count, data) => (await import("./host/threads.ts")).startThreads(count, data),
+    openQueue: async (address, lostAfter) => (await import("./host/queue.ts")).openQueue(address, lostAfter),
     self: {pid: process.pid, machine: hostname()},
     isAlive,
     interruptible(what) {

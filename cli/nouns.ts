@@ -1,5 +1,7 @@
 /** What `cli/` asks of the machine. `host.ts` answers; tests give answers of their own. */
+
 import type {ByteSink, ByteSource, ScratchStore} from "../lib/formats/byte-source.ts";
+import type {LineQueue} from "./queue/line-queue.ts";
 
 /** Where text for people or scripts goes. */
 export interface Terminal {
@@ -87,6 +89,8 @@ export interface Host {
   dateText(milliseconds: number): string;
   /** Lets signals and other events in between two pieces of work. */
   breathe(): Promise<void>;
+  /** Lets so many milliseconds go by. */
+  pause(milliseconds: number): Promise<void>;
   openInput(path: string): Promise<InputFile>;
   /** `path` as it reads in the folder of `file`; one that starts at the root stays. */
   beside(file: string, path: string): string;
@@ -99,6 +103,11 @@ export interface Host {
   readonly cores: number;
   /** @param data plain, for every thread */
   startThreads(count: number, data: unknown): Promise<Threads>;
+  /**
+   * @param address as `--queue` takes it
+   * @param lostAfter seconds of silence after which a line is taken from its worker
+   */
+  openQueue(address: string, lostAfter: number): Promise<LineQueue>;
   readonly self: Owner;
   /** Whether another process is at work, as far as can be told: one of another machine is. */
   isAlive(owner: Owner): boolean;

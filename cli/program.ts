@@ -1,19 +1,69 @@
 /** The commands, and what becomes of an error that ends one: the exit status. */
-import {Command, CommanderError} from "commander";
+import {Command, CommanderError, Option} from "commander";
 import {nearestName} from "../lib/acquisition/nearest-name.ts";
 import {InputError} from "../lib/errors.ts";
-import {continueCommand} from "./commands/continue.ts";
-import {gatherCommand} from "./commands/gather.ts";
-import {inspectCommand} from "./commands/inspect.ts";
-import {planCommand} from "./commands/plan.ts";
-import {schemaCommand} from "./commands/schema.ts";
-import {spectrumCommand} from "./commands/spectrum.ts";
+import type {AddCommand} from "./commands/command.ts";
 import {messagesTo, report} from "./messages.ts";
 import type {Host} from "./nouns.ts";
 import {printable, shown} from "./printable.ts";
 
 const DESCRIPTION =
   "Carries gravity and magnetic survey lines down to the boundary of their sources and to any level above it, with a bound on the sources and an interval on every answer.";
+
+interface CommandEntry {
+  readonly name: string;
+  readonly summary: string;
+  /** How the help shows what may follow its name; absent: options alone. */
+  readonly argument?: string;
+  load(): Promise<AddCommand>;
+}
+
+const COMMANDS: readonly CommandEntry[] = [
+  {
+    name: "inspect",
+    summary: "what is in the files and what is doubtful",
+    argument: "[survey...]",
+    load: async () => (await import("./commands/inspect.ts")).inspectCommand,
+  },
+  {
+    name: "continue",
+    summary: "sources on the boundary and fields on levels, with intervals",
+    argument: "[survey...]",
+    load: async () => (await import("./commands/continue.ts")).continueCommand,
+  },
+  {
+    name: "plan",
+    summary: "what a survey can promise, before it is flown",
+    load: async () => (await import("./commands/plan.ts")).planCommand,
+  },
+  {
+    name: "gather",
+    summary: "the files of a run that was computed in shards or by workers",
+    argument: "[survey...]",
+    load: async () => (await import("./commands/gather.ts")).gatherCommand,
+  },
+  {
+    name: "worker",
+    summary: "computes lines of runs that wait in a queue",
+    load: async () => (await import("./commands/worker.ts")).workerCommand,
+  },
+  {
+    name: "spectrum",
+    summary: "what of a source zone can be seen from a height",
+    load: async () => (await import("./commands/spectrum.ts")).spectrumCommand,
+  },
+  {
+    name: "schema",
+    summary: "the JSON Schema of the job file",
+    load: async () => (await import("./commands/schema.ts")).schemaCommand,
+  },
+];
+
+/** A command of which only its line in the help is wanted. */
+function lineOf(own: Command, {argument}: CommandEntry): Command {
+  own.addOption(new Option("--options").hideHelp());
+  return argument === undefined ? own : own.argument(argument);
+}
 
 /** Settings every command shares; its texts go to the host and its errors are thrown. */
 function command(name: string, host: Host): Command {
@@ -84,8 +134,13 @@ export async function groundward(host: Host): Promise<number> {
     .helpCommand("help [command]", "show the help of a command")
     // An option after a command belongs to it: a value such as -400:400 is never taken for one of the program's own.
     .enablePositionalOptions();
-  for (const add of [inspectCommand, continueCommand, gatherCommand, planCommand, spectrumCommand, schemaCommand])
-    program.addCommand(add((name) => command(name, host), host, finish));
+  // Only the command that is meant is made with its options; of the others the help shows a line.
+  const meant = COMMANDS.find(({name}) => host.arguments.includes(name));
+  for (const entry of COMMANDS) {
+    const own = command(entry.name, host).summary(entry.summary);
+    if (entry === meant) program.addCommand((await entry.load())(() => own, host, finish));
+    else program.addCommand(lineOf(own, entry));
+  }
   try {
     if (host.arguments.length === 0) {
       host.err.write(program.helpInformation());

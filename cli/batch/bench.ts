@@ -1,4 +1,6 @@
 /** Computes lines of a survey by their place in it and keeps their parcels. Quickest when the places increase. */
+import type {ReportableError} from "../../lib/errors.ts";
+import type {LineOutcome} from "../../lib/study/outcome.ts";
 import {lineAnswers} from "../../lib/study/survey-study.ts";
 import type {LineRecord, Survey} from "../../lib/survey/survey.ts";
 import type {OpenedRun} from "./opened-run.ts";
@@ -11,16 +13,23 @@ export interface Bench {
    * @throws {ReportableError} for what is wrong with every line
    */
   compute(index: number): Promise<LineNote>;
+  /** A line that is answered by a failure without being computed. */
+  giveUp(index: number, failure: ReportableError): Promise<LineNote>;
 }
 
 export function benchFor({survey, settings, digest}: OpenedRun, parts: Parts): Bench {
   const answer = lineAnswers(settings);
   const recordAt = walker(survey);
+  const keep = (index: number, record: LineRecord, outcome: LineOutcome): Promise<LineNote> =>
+    parts.keep(index, outcome.id, outcome.status, digest, parcelOf(outcome, record));
   return {
     async compute(index) {
       const record = await recordAt(index);
-      const outcome = answer(record);
-      return parts.keep(index, outcome.id, outcome.status, digest, parcelOf(outcome, record));
+      return keep(index, record, answer(record));
+    },
+    async giveUp(index, failure) {
+      const record = await recordAt(index);
+      return keep(index, record, {status: "failed", id: "line" in record ? record.line.id : record.id, failure});
     },
   };
 }

@@ -32,7 +32,7 @@ export async function gatherRun(host: Host, paths: readonly string[], asked: Ask
   if (head === undefined)
     throw new InputError(
       "gather/nothing",
-      `There are no finished lines in "${out}". Compute them first: groundward continue … --shard i/n --out ${out}.`,
+      `There are no finished lines in "${out}". Compute them first: groundward continue … --shard i/n --out ${out}, or with --queue.`,
       {place: {file: out}},
     );
   const request =
@@ -81,7 +81,7 @@ function incomplete(out: string, {lines}: PartsHead, missing: readonly number[])
   const more = missing.length > NAMED ? ` and ${missing.length - NAMED} more` : "";
   return new InputError(
     "gather/incomplete",
-    `${missing.length} of ${lines} lines are not finished: by their place in the survey ${named.join(", ")}${more}. Of n shards, line k belongs to shard 1 + (k − 1) mod n. Run those shards again; what they finished is taken over.`,
+    `${missing.length} of ${lines} lines are not finished: by their place in the survey ${named.join(", ")}${more}. Of n shards, line k belongs to shard 1 + (k − 1) mod n. Run those shards again, or put the run into its queue again; what was finished is taken over.`,
     {place: {file: out}},
   );
 }

@@ -1,5 +1,6 @@
 /** Many lines, on as many threads as are wanted, or in this one. Each is noted as soon as it is done. */
 import type {Host} from "../nouns.ts";
+import type {FolderMap} from "../queue/folder-map.ts";
 import {type Bench, benchFor} from "./bench.ts";
 import type {OpenedRun} from "./opened-run.ts";
 import {type PackedError, unpackedError} from "./packed-error.ts";
@@ -16,6 +17,8 @@ export interface ThreadData {
   readonly out: string;
   /** Digest that the run must still have. */
   readonly run: string;
+  /** Where folders are that the request names otherwise. */
+  readonly folders?: readonly FolderMap[];
 }
 
 export type ThreadAnswer = {readonly note: LineNote} | {readonly failure: PackedError};
@@ -86,7 +89,11 @@ async function withoutThreads(work: PoolWork): Promise<readonly number[]> {
 }
 
 /** As many lines at a time as `abreast`, the next one as soon as one is done: no more are ever in flight. */
-async function inTurn({host, parts, places, finished, stopped}: PoolWork, bench: Bench, abreast: number) {
+async function inTurn(
+  {host, parts, places, finished, stopped}: PoolWork,
+  bench: Pick<Bench, "compute">,
+  abreast: number,
+) {
   let next = 0;
   let failed = false;
   const lane = async (): Promise<void> => {

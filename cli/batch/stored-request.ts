@@ -13,8 +13,11 @@ export interface StoredRequest {
   readonly folder: string;
 }
 
+/** How the work is shared out is of no matter to the lines, and an address may hold a password. */
+const LEFT_OUT: readonly string[] = ["queue", "detach", "lost-after"];
+
 export const storedRequest = ({asked, job}: Request, {folder}: Host): StoredRequest => ({
-  asked: [...asked],
+  asked: [...asked].filter(([name]) => !LEFT_OUT.includes(name)),
   job: job?.digest ?? null,
   folder,
 });

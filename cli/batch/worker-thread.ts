@@ -2,6 +2,7 @@
 import {workerData} from "piscina";
 import {ReportableError} from "../../lib/errors.ts";
 import {nodeHost} from "../host.ts";
+import {mappedHost} from "../queue/folder-map.ts";
 import {type Bench, benchFor} from "./bench.ts";
 import {reopened} from "./opened-run.ts";
 import {packedError} from "./packed-error.ts";
@@ -9,8 +10,8 @@ import {openParts} from "./parts.ts";
 import type {ThreadAnswer, ThreadData} from "./pool.ts";
 
 async function handler(): Promise<(index: number) => Promise<ThreadAnswer>> {
-  const {request, out, run} = workerData as ThreadData;
-  const host = nodeHost();
+  const {request, out, run, folders} = workerData as ThreadData;
+  const host = mappedHost(nodeHost(), folders ?? []);
   // The files stay open as long as the thread lives.
   const opening = new Promise<Bench>((opened, refused) => {
     reopened(host, request, run, (open) => {

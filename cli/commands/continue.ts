@@ -6,7 +6,6 @@ import type {AddCommand} from "./command.ts";
 
 export const continueCommand: AddCommand = (create, host, finish) => {
   const command = declare(create("continue"), CONTINUE_OPTIONS)
-    .summary("sources on the boundary and fields on levels, with intervals")
     .description(
       "The main job, for one line, thousands of them or a grid: estimates the sources on the boundary, carries the field to the levels asked, and answers for strips, each with an interval. Files go to --out; a table goes to standard output.",
     )

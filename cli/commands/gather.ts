@@ -1,13 +1,12 @@
-/** `groundward gather`: the files of a run whose lines were computed in shards. */
+/** `groundward gather`: the files of a run whose lines were computed in shards or by workers. */
 import {askedOf, declare} from "../options/declare.ts";
 import {WRITTEN} from "../options/output.ts";
 import type {AddCommand} from "./command.ts";
 
 export const gatherCommand: AddCommand = (create, host, finish) => {
   const command = declare(create("gather"), [WRITTEN])
-    .summary("the files of a run that was computed in shards")
     .description(
-      "Checks that every line of the run in --out is finished and writes its files, the same bytes as one run on one machine. What was asked is known from the shards. With --json or --quiet as for continue.",
+      "Checks that every line of the run in --out is finished and writes its files, the same bytes as one run on one machine. What was asked is known from the shards or from whoever filled the queue. With --json or --quiet as for continue.",
     )
     .argument("[survey...]", "the files of the survey where they no longer lie where the shards read them")
     .addHelpText(

@@ -7,7 +7,6 @@ import type {AddCommand} from "./command.ts";
 
 export const inspectCommand: AddCommand = (create, host, finish) => {
   const command = declare(create("inspect"), [MEASURED, PRINTED, JOB])
-    .summary("what is in the files and what is doubtful")
     .description(
       "Reads a survey and tells, per line, what is there and what is doubtful: stations, direction, spacing, heights, offsets, gaps, repeats, noise, agreement with neighbouring lines; and which corrections Groundward does not make.",
     )

@@ -5,7 +5,6 @@ import type {AddCommand} from "./command.ts";
 
 export const planCommand: AddCommand = (create, host, finish) => {
   const command = declare(create("plan"), PLAN_OPTIONS)
-    .summary("what a survey can promise, before it is flown")
     .description(
       "Prints the half-widths of the intervals and the resolution that a straight, level line would give, for every combination of heights, spacings, noises and bounds. No readings are needed: intervals depend on where stations stand, on the noise and on the bound, not on what is read.",
     )

@@ -5,7 +5,6 @@ import type {AddCommand} from "./command.ts";
 
 export const schemaCommand: AddCommand = (create, host, finish) => {
   const command = create("schema")
-    .summary("the JSON Schema of the job file")
     .description(
       "Prints the JSON Schema (draft 2020-12) of the job file that groundward continue --job reads, so that an editor can complete and check it.",
     )

@@ -49,7 +49,6 @@ function required(asked: Asked, name: string, example: string): string {
 
 export const spectrumCommand: AddCommand = (create, host, finish) => {
   const command = declare(create("spectrum"), [QUESTION, PRINTED])
-    .summary("what of a source zone can be seen from a height")
     .description(
       "Prints the eigenvalues of the truncated Poisson operator: the share of each mode of a source zone that is left at a height above it, to 1e-12 absolute, and how many modes are above the floor.",
     )

@@ -6,7 +6,7 @@ const JSON_ENTRY: OptionEntry = {
   help: "result as JSON on standard output, every error as one JSON object on standard error",
   default: {value: "off", reason: "a table is easier to read for people"},
 };
-const QUIET: OptionEntry = {
+export const QUIET: OptionEntry = {
   name: "quiet",
   help: "errors only on standard error: no progress, choices, doubts and cautions (files and --json hold them)",
   default: {value: "off", reason: "a doubt that nobody sees helps nobody"},

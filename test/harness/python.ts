@@ -17,7 +17,7 @@ function run(command: string, args: readonly string[], input: string): string {
   const result = spawnSync(command, args, {input, encoding: "utf8", maxBuffer: 1 << 29});
   if (result.error !== undefined)
     throw new Error(
-      `${command} could not be run (${result.error.message}). These tests need the Debian packages gdal-bin, python3-gdal, proj-bin, python3-numpy, python3-scipy and python3-mpmath.`,
+      `${command} could not be run (${result.error.message}). These tests need the Debian packages gdal-bin, python3-gdal, proj-bin, python3-numpy, python3-scipy, python3-mpmath and redis-server.`,
     );
   if (result.status !== 0)
     throw new Error(`${command} ended with status ${result.status ?? result.signal}:\n${result.stderr.slice(-4000)}`);
