@@ -37,6 +37,12 @@ const COMMANDS: readonly CommandEntry[] = [
     load: async () => (await import("./commands/plan.ts")).planCommand,
   },
   {
+    name: "crossings",
+    summary: "differences where lines cross, at the heights flown and at one height",
+    argument: "[survey...]",
+    load: async () => (await import("./commands/crossings.ts")).crossingsCommand,
+  },
+  {
     name: "gather",
     summary: "the files of a run that was computed in shards or by workers",
     argument: "[survey...]",

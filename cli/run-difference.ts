@@ -23,6 +23,7 @@ const SECTION: Readonly<Record<string, string>> = {
   acquisition: "what was measured",
   model: "what is assumed",
   wanted: "what is wanted",
+  crossings: "how readings are compared",
 };
 
 /** @returns a clause without a full stop; undefined where the runs do not differ */

@@ -125,7 +125,9 @@ describe("README", () => {
   });
 
   test("every option, file and folder it names exists", async () => {
-    const help = (await Promise.all(["inspect", "continue", "plan", "gather", "spectrum"].map((name) => run([name, "--help"]))))
+    const help = (
+      await Promise.all(["inspect", "continue", "plan", "gather", "spectrum"].map((name) => run([name, "--help"])))
+    )
       .map(({out}) => out)
       .join("\n");
     const options = new Set(README.match(/--[a-z][a-z-]+/g));

@@ -24,6 +24,8 @@ export interface RecordInput {
   readonly architecture: string;
   readonly settings: Settings;
   readonly survey: Survey;
+  /** Of a comparison at crossings: the common level, null for the higher of two sensors, and whether readings were carried. */
+  readonly crossings?: {readonly level: number | undefined; readonly asMeasured: boolean};
   /** Lines (or rows) by what became of them. */
   readonly outcomes: Readonly<Record<"done" | "doubtful" | "skipped" | "failed", number>>;
   readonly inputs: readonly FileDigest[];
@@ -50,6 +52,7 @@ export function recordJson(run: RecordInput): string {
         strips: settings.wanted.strips.map(zoneText),
       },
       processing: settings.processing,
+      ...(run.crossings === undefined ? {} : {crossings: run.crossings}),
     },
     survey: {
       kind: survey.kind,

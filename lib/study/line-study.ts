@@ -38,7 +38,7 @@ import {type ChannelNoises, lengthText, noisesOf, withNoises} from "./noises.ts"
 import {intervalsOn, type Operated, operated} from "./operated.ts";
 import type {LineStudy} from "./outcome.ts";
 import type {Settings} from "./settings.ts";
-import {acrossStrike, crossingOf} from "./strike.ts";
+import {acrossStrike, crossingOf, squareToStrike} from "./strike.ts";
 import {stripsOfLine} from "./strips-of-line.ts";
 import {cutNotices, panelsOfLine, supportOfLine} from "./support-of-line.ts";
 import {namingTies, type TieRow, tieRows, tiesHeard, tiesOfLine} from "./ties-of-line.ts";
@@ -55,13 +55,42 @@ export function studyLine(line: SurveyLine, settings: Settings, zones = zonesFor
   return acrossStrike(line, settings, zones, crossing, (...scaled) => studySquare(...scaled, direction));
 }
 
-/** The sources run square to the line. */
-function studySquare(
+/** The source of a line without any answer, on chainage times `scale`: square to the strike, where one was given. */
+export interface LineEstimate {
+  readonly conditioned: ConditionedLine;
+  readonly panels: Panels;
+  readonly estimate: SourceEstimate;
+  readonly notices: readonly Notice[];
+}
+
+/**
+ * The estimate of {@link studyLine} alone: no averages, levels, strips and their intervals, which take most of the time.
+ * @throws {ReportableError} as `studyLine`
+ */
+export function estimateLine(line: SurveyLine, settings: Settings, zones = zonesFor(settings)(line)): LineEstimate {
+  const crossing = crossingOf(line, settings);
+  const direction = effectiveDirectionOf(line, settings, crossing?.azimuth);
+  const square =
+    crossing === undefined
+      ? {scaledLine: line, scaledSettings: settings, scaledZones: zones}
+      : squareToStrike(line, settings, zones, crossing.scale);
+  const {conditioned, panels, estimate, choice, feasible} = sourceSquare(
+    square.scaledLine,
+    square.scaledSettings,
+    square.scaledZones,
+    direction,
+  );
+  const notices = [...line.notices, ...zones.notices, ...conditioned.notices, ...choice.notices, ...feasible];
+  return {conditioned, panels, estimate, notices};
+}
+
+/** From readings to the one source, where the sources run square to the line. */
+function sourceSquare(
   line: SurveyLine,
   settings: Settings,
   zones: LineZones,
   direction: EffectiveDirection | undefined,
-): LineStudy {
+) {
   const {model, wanted} = settings;
   const first = condition(line, model.boundary, direction);
   const support = supportOfLine(first, model, zones.support);
@@ -100,7 +129,20 @@ function studySquare(
     ),
   );
   const estimate = estimateSource(solver, choice, operator, readings, regional, values);
+  return {first, support, panels, ties, conditioned, readings, strips, curve, asked, choice, feasible, estimate};
+}
 
+/** The sources run square to the line. */
+function studySquare(
+  line: SurveyLine,
+  settings: Settings,
+  zones: LineZones,
+  direction: EffectiveDirection | undefined,
+): LineStudy {
+  const {model, wanted} = settings;
+  const source = sourceSquare(line, settings, zones, direction);
+  const {first, support, panels, ties, conditioned, readings, strips, curve, asked, choice, feasible, estimate} =
+    source;
   const {continuum, intervals} = intervalsOn(
     conditioned,
     {

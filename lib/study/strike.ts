@@ -71,14 +71,8 @@ export function crossingOf(line: SurveyLine, {model, wanted}: Settings): Crossin
 /** Messages that name a length of the noise. */
 const NOISE_LENGTH = /--noise-length \d|correlated over/;
 
-/** @param study makes the study of a line, with settings and zones, on chainage across the strike */
-export function acrossStrike(
-  line: SurveyLine,
-  settings: Settings,
-  zones: LineZones,
-  {scale, angle}: Crossing,
-  study: (line: SurveyLine, settings: Settings, zones: LineZones) => LineStudy,
-): LineStudy {
+/** Line, settings and zones on chainage times `scale`, across the strike; `own` leads from strips there to those here. */
+export function squareToStrike(line: SurveyLine, settings: Settings, zones: LineZones, scale: number) {
   const own = new Map<Strip, Strip>();
   const across = (strip: Strip): Strip => {
     const {parts, from, to} = strip;
@@ -112,6 +106,18 @@ export function acrossStrike(
     support: zones.support === undefined ? undefined : times(zones.support, scale),
     strips: zones.strips.map(across),
   };
+  return {own, scaledLine, scaledSettings, scaledZones};
+}
+
+/** @param study makes the study of a line, with settings and zones, on chainage across the strike */
+export function acrossStrike(
+  line: SurveyLine,
+  settings: Settings,
+  zones: LineZones,
+  {scale, angle}: Crossing,
+  study: (line: SurveyLine, settings: Settings, zones: LineZones) => LineStudy,
+): LineStudy {
+  const {own, scaledLine, scaledSettings, scaledZones} = squareToStrike(line, settings, zones, scale);
   const words = `Lengths here are square to the strike: ${scale.toPrecision(4)} of those along the line, which crosses it at ${angle.toFixed(1)}°.`;
   const explained = <N extends {readonly code: string; readonly message: string}>(told: N): N =>
     /^(support|strip|bound|channels)\//.test(told.code) || NOISE_LENGTH.test(told.message)

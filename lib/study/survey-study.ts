@@ -69,7 +69,7 @@ export async function* studySurvey(
 }
 
 /** A tie of no line would be lost in silence. */
-async function checkTies(survey: Survey, {model}: Settings): Promise<void> {
+export async function checkTies(survey: Survey, {model}: Settings): Promise<void> {
   if (model.ties === undefined || model.ties.length === 0) return;
   const lines = new Set<string>();
   for await (const record of survey.lines()) lines.add("failure" in record ? record.id : record.line.id);

@@ -24,7 +24,7 @@ export interface BenchCase {
   readonly name: string;
   readonly title: string;
   /** @param folder an empty folder of its own for inputs and results */
-  run(folder: string): CaseResult;
+  run(folder: string): CaseResult | Promise<CaseResult>;
 }
 
 export function median(values: readonly number[]): number {

@@ -7,6 +7,7 @@ import {tmpdir} from "node:os";
 import {assumedCase} from "./assumed-case.ts";
 import {bandCase} from "./band-case.ts";
 import {coverageCase} from "./coverage-case.ts";
+import {crossingsCase} from "./crossings-case.ts";
 import {gridCase} from "./grid-case.ts";
 import {lineCase} from "./line-case.ts";
 import {BENCH_FOLDER} from "./measured.ts";
@@ -14,7 +15,7 @@ import {machineLines, resultsText, type Told, tableOf} from "./results.ts";
 import {rulesCase} from "./rules-case.ts";
 import {startCase} from "./start-case.ts";
 
-const CASES = [lineCase, gridCase, startCase];
+const CASES = [lineCase, gridCase, crossingsCase, startCase];
 /** Slower, and of answers rather than speed: run by name alone. */
 const ON_REQUEST = [rulesCase, coverageCase, bandCase, assumedCase];
 const NAMED = [...CASES, ...ON_REQUEST];
@@ -34,7 +35,7 @@ try {
   for (const bench of chosen) {
     console.error(`${bench.title} …`);
     mkdirSync(`${folder}/${bench.name}`);
-    told.push({bench, result: bench.run(`${folder}/${bench.name}`)});
+    told.push({bench, result: await bench.run(`${folder}/${bench.name}`)});
   }
   const date = new Date();
   console.log(machineLines(date).join("\n"));
