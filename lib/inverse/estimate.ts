@@ -6,17 +6,23 @@ import {projectOutInPlace, type RegionalBasis} from "../operators/regional.ts";
 import type {Solver} from "../solvers/solver.ts";
 import type {BoundChoice, ChannelFit, SourceEstimate} from "./nouns.ts";
 
-/** @param values readings, SI; the regional is what of them the source leaves inside the span of `basis` */
+/**
+ * @param operator not needed where the solver knows the field of its source
+ * @param values readings, SI; the regional is what of them the source leaves inside the span of `basis`
+ */
 export function estimateSource(
   solver: Solver,
   choice: BoundChoice,
-  operator: ForwardOperator,
+  operator: ForwardOperator | undefined,
   readings: Readings,
   basis: RegionalBasis,
   values: Float64Array,
 ): SourceEstimate {
   const density = solver.estimate(choice.multiplier);
-  const field = applyInto(new Float64Array(values.length), operator, density);
+  const field =
+    operator === undefined
+      ? solver.field!(choice.multiplier)
+      : applyInto(new Float64Array(values.length), operator, density);
   const left = values.map((value, i) => value - field[i]);
   const unexplained = projectOutInPlace(whitened(left, readings), basis);
   const residual = unwhitened(unexplained, readings.x, readings);
@@ -38,6 +44,6 @@ export function estimateSource(
     misfit: solver.misfit(choice.multiplier),
     norm: solver.norm(choice.multiplier),
     degreesOfFreedom: solver.degreesOfFreedom(choice.multiplier),
-    modes: solver.modes ?? 0,
+    modes: solver.modes,
   };
 }

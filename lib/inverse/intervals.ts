@@ -23,6 +23,7 @@ import {minimise} from "../numeric/roots.ts";
 import type {Continuum} from "../operators/continuum.ts";
 import type {Functional} from "../operators/functional.ts";
 import type {RegionalBasis} from "../operators/regional.ts";
+import type {SharedPart} from "./far-stations.ts";
 import type {RegionalReader} from "./regional-reader.ts";
 import {addOnModes, type Layout, windowsOf} from "./windows.ts";
 
@@ -33,7 +34,7 @@ import {addOnModes, type Layout, windowsOf} from "./windows.ts";
 const A_RANGE = [0.02, 400] as const;
 /** How well ln a is found: a width feels 1e-5 of the first, and 1e-3 of the second, where each trial is a solution over the whole line. */
 const PRECISION = 5e-3;
-const LONG_PRECISION = 0.1;
+const LONG_STEP = 0.2;
 const NOTHING = new Float64Array();
 
 export interface Interval {
@@ -100,7 +101,6 @@ export function intervalSolver(
 ): AffineIntervalSolver {
   const windows = windowsOf(continuum, basis, data, bound, loosest, layout);
   const {terms} = windows;
-  const response = new Float64Array(continuum.count);
 
   /** Readings that say nothing worth their noise are left alone: a = ∞. */
   const blind = (functional: Functional, most: number): Found => {
@@ -114,12 +114,10 @@ export function intervalSolver(
     const eta = windows.seenBy(window, functional);
     const lambda = window.modes.eigenvalues;
     const regional = terms > 0 ? windows.regionalOn(window) : NOTHING;
-    if (terms > 0) functional.respondInto(response, continuum, 0, continuum.count);
     /** Wᵀ Pq, by reader. */
-    const shared = new Map<RegionalReader, Float64Array>();
-    const sharedWith = (reader: RegionalReader): Float64Array => {
-      const found =
-        shared.get(reader) ?? matVecInto(new Float64Array(terms), reader.weights, response, terms, continuum.count);
+    const shared = new Map<RegionalReader, SharedPart>();
+    const sharedWith = (reader: RegionalReader): SharedPart => {
+      const found = shared.get(reader) ?? windows.sharedWith(reader, functional);
       shared.set(reader, found);
       return found;
     };
@@ -138,7 +136,7 @@ export function intervalSolver(
       let left = functional.normSquared - explained;
       if (terms > 0) {
         const {reader, weights, weightsGram} = windows.readerOn(window, windows.readerAt(a));
-        const pq = sharedWith(reader);
+        const {near, beyond} = sharedWith(reader);
         gamma.fill(0);
         taken.fill(0);
         crossed.fill(0);
@@ -152,7 +150,7 @@ export function intervalSolver(
         }
         for (let t = 0; t < terms; ++t) {
           variance -= 2 * gamma[t] * taken[t];
-          left += 2 * gamma[t] * (pq[t] - crossed[t]);
+          left += 2 * gamma[t] * (near[t] - crossed[t]) + 2 * Math.abs(gamma[t]) * beyond[t];
           for (let u = 0; u < terms; ++u) {
             variance += gamma[t] * gamma[u] * reader.products[t * terms + u];
             left += gamma[t] * gamma[u] * reader.gram[t * terms + u];
@@ -203,13 +201,15 @@ export function intervalSolver(
       const halfWidth = halfWidthOf(deviation, bias, confidence);
       return {deviation, bias, halfWidth, value: () => value, weights: () => c};
     };
+    // Whole steps, so that one mean finds the inverses and readers of another.
+    const unit = -2 * Math.log(most);
     const tried = new Map<number, Found>();
-    const width = (logA: number): number => {
-      const answer = at(logA);
-      tried.set(logA, answer);
+    const width = (step: number): number => {
+      const answer = tried.get(step) ?? at(unit + step * LONG_STEP);
+      tried.set(step, answer);
       return answer.halfWidth;
     };
-    shortest(width, most, LONG_PRECISION);
+    leastOfSteps(width, Math.floor(Math.log(A_RANGE[0]) / LONG_STEP), Math.ceil(Math.log(A_RANGE[1]) / LONG_STEP));
     return [...tried.values()].reduce(
       (best, next) => (next.halfWidth < best.halfWidth ? next : best),
       blind(functional, most),
@@ -250,6 +250,16 @@ function freeOfRegionalInPlace(c: Float64Array, basis: RegionalBasis, reader: Re
 function halfWidthOf(deviation: number, bias: number, confidence: number): number {
   if (!(deviation > 1e-12 * bias)) return bias;
   return foldedNormalQuantile(bias / deviation, confidence) * deviation;
+}
+
+/** Halves a range of whole steps around the least of a function with one minimum, asking at two neighbours each time. */
+function leastOfSteps(width: (step: number) => number, low: number, high: number): void {
+  let [from, to] = [low, high];
+  while (from < to) {
+    const middle = Math.floor((from + to) / 2);
+    if (width(middle) <= width(middle + 1)) to = middle;
+    else from = middle + 1;
+  }
 }
 
 /** ln a with the shortest interval; the width is flat there, its own error second order in that of ln a. */

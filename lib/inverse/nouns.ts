@@ -48,8 +48,8 @@ export interface SourceEstimate {
   readonly misfit: number;
   readonly norm: number;
   readonly degreesOfFreedom: number;
-  /** Modes kept by the eigen-decomposition. */
-  readonly modes: number;
+  /** Modes kept by the eigen-decomposition; undefined where nothing was diagonalised. */
+  readonly modes: number | undefined;
 }
 
 /** Averages of f with intervals, one entry a panel; SI. */

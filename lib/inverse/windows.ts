@@ -2,32 +2,37 @@
  * Windows of stations for functionals: the whole line where it is short, else the stations within a margin around the
  * functional. Sources outside a window still count, through the inner products over the whole support.
  */
-import {boundaryAt} from "../geometry/boundary-line.ts";
 import {matVecInto, multiplyTransposedInto} from "../numeric/matmul.ts";
+import {recent} from "../numeric/recent.ts";
 import {type Continuum, nodeMatrix, nodesFor} from "../operators/continuum.ts";
 import type {Functional} from "../operators/functional.ts";
+import {levelLine} from "../operators/level-cells.ts";
 import {basisWithin, projectOutInPlace, projectOutOfColumnsInPlace, type RegionalBasis} from "../operators/regional.ts";
-import {dataModes} from "../spectral/singular-system.ts";
+import {type DataModes, dataModes} from "../spectral/singular-system.ts";
+import {congruentWindows} from "./congruent.ts";
+import {farStations, type SharedPart} from "./far-stations.ts";
+import {levelWholeLine} from "./level-whole-line.ts";
 import {type RegionalReader, regionalReader} from "./regional-reader.ts";
 import {type Block, type Patch, type WholeLine, wholeLine} from "./whole-line.ts";
+import {BLOCKS_BEYOND, heightOf, windowLayout} from "./window-layout.ts";
 
 /** Lines with no more stations than this, or no more nodes than the next, are one window. Heuristics, for speed alone. */
 const WHOLE_STATIONS = 480;
 const WHOLE_NODES = 640;
-/** Core and margin of a window in heights; what is lost is measured in the tests of `intervals.ts`. */
-const WINDOW_CORE = 12;
-const WINDOW_MARGIN = 12;
+/** Windows, and modes that several of them share, kept at a time: a window takes about a megabyte. */
+const WINDOWS_KEPT = 64;
+const MODES_KEPT = 16;
+/** A support of so many heights has more nodes than one window, and is not asked for them. */
+const SURELY_LONG = 2000;
 /** Windows of levels above the line are this much wider; a level far above would gain from more, at the cost of the cube. */
 const WIDEST_WINDOW = 2;
-/** A window reaches out until it holds this many stations. */
-const LEAST_STATIONS = 48;
-/** Blocks beyond either end of the line; further out windows hold the same stations, the last of it. */
-const BLOCKS_BEYOND = 2;
 /** Modes with λ below this share of 1/M² are counted as bias: a relative change of the half-width below 1e-4. */
 const MODE_FLOOR = 1e-5;
 
 /** Readers of the regional are made for values of a this far apart, as a factor; the nearest one serves. A heuristic. */
 const READER_STEP = 12;
+/** Readers for one `a` alone, kept: those of one search. */
+const READERS_KEPT = 12;
 
 /** One window or many; by size of the line unless a test asks. */
 export type Layout = "by size" | "whole" | "windows";
@@ -43,7 +48,7 @@ export interface Window extends Block {
 }
 
 /** A reader of the regional as a window sees it: u_kᵀ W and u_kᵀ G W, modes × terms. */
-export interface WindowReader {
+interface WindowReader {
   readonly reader: RegionalReader;
   readonly weights: Float64Array;
   readonly weightsGram: Float64Array;
@@ -72,6 +77,8 @@ export interface Windows {
   readerAt(a: number): RegionalReader;
   readerFor(a: number): RegionalReader;
   readerOn(window: Window, reader: RegionalReader): WindowReader;
+  /** Wᵀ Pq. */
+  sharedWith(reader: RegionalReader, functional: Functional): SharedPart;
 }
 
 /**
@@ -90,54 +97,64 @@ export function windowsOf(
 ): Windows {
   const heights = continuum.z.map((_, i) => heightOf(continuum, i)).sort();
   const height = heights[heights.length >> 1];
+  const span = continuum.x[continuum.count - 1] - continuum.x[0];
   const whole =
     layout === "whole" ||
     (layout === "by size" &&
-      (continuum.count <= WHOLE_STATIONS || nodesFor(continuum, 0, continuum.count).count <= WHOLE_NODES));
-  const windows = new Map<string, Window>();
+      (continuum.count <= WHOLE_STATIONS ||
+        (span < SURELY_LONG * height && nodesFor(continuum, 0, continuum.count).count <= WHOLE_NODES)));
+  const even = continuum.boundary === undefined ? levelLine(continuum) : undefined;
+  const {core, blocks, blockAt, stations} = windowLayout(continuum, even);
+  // Shared modes overstate the Gram matrix a little, which is safe for affine estimates alone.
+  const congruent =
+    even === undefined || whole || regionalOf !== "line" ? undefined : congruentWindows(continuum, even);
+  const windows = recent<string, Window>(WINDOWS_KEPT);
+  const sharedModes = recent<string, DataModes>(MODES_KEPT);
   const response = new Float64Array(continuum.count);
   const floor = MODE_FLOOR / (loosest * bound) ** 2;
   const terms = whole || regionalOf === "window" ? 0 : basis.terms;
 
-  const windowOn = (first: number, last: number): Window => {
-    const nodes = nodesFor(continuum, first, last);
-    const matrix = nodeMatrix(continuum, nodes, first, last);
-    const rows = last - first;
-    const projected = whole ? basis : regionalOf === "window" ? basisWithin(basis, first, last) : undefined;
+  const modesOn = (first: number, last: number, over: Continuum, projected: RegionalBasis | undefined): DataModes => {
+    const nodes = nodesFor(over, first, last);
+    const matrix = nodeMatrix(over, nodes, first, last);
     if (projected !== undefined) projectOutOfColumnsInPlace(matrix, nodes.count, projected);
-    const modes = dataModes(matrix, rows, nodes.count, floor);
+    return dataModes(matrix, last - first, nodes.count, floor);
+  };
+  const windowOn = (first: number, last: number): Window => {
+    const projected = whole ? basis : regionalOf === "window" ? basisWithin(basis, first, last) : undefined;
+    const key = congruent?.key(first, last);
+    const modes =
+      key === undefined
+        ? modesOn(first, last, continuum, projected)
+        : sharedModes(key, () => modesOn(first, last, congruent!.extended, undefined));
+    const rows = last - first;
     const seen = matVecInto(new Float64Array(modes.count), modes.left, data.subarray(first, last), modes.count, rows);
     return {first, last, modes, data: seen, projected};
   };
-  const remembered = (first: number, last: number): Window => {
-    const key = `${first}-${last}`;
-    const found = windows.get(key) ?? windowOn(first, last);
-    windows.set(key, found);
-    return found;
-  };
-  const span = continuum.x[continuum.count - 1] - continuum.x[0];
-  const blocks = (core: number): number => Math.floor(span / core) + 1;
-  const blockAt = (x: number, core: number): number =>
-    Math.min(Math.max(Math.floor((x - continuum.x[0]) / core), -BLOCKS_BEYOND), blocks(core) - 1 + BLOCKS_BEYOND);
-  const around = (from: number, to: number, scale: number): Window => {
-    const core = WINDOW_CORE * scale;
-    const left = continuum.x[0] + core * blockAt(from, core);
-    const right = continuum.x[0] + core * (1 + blockAt(to, core));
-    return remembered(...stationsAround(continuum, left, right, scale));
-  };
+  const remembered = (first: number, last: number): Window => windows(`${first}-${last}`, () => windowOn(first, last));
+  const around = (from: number, to: number, scale: number): Window =>
+    remembered(...stations(blockAt(from, scale), blockAt(to, scale), scale));
 
   const cover = (): Patch[] => {
-    const core = WINDOW_CORE * height;
-    return Array.from({length: blocks(core)}, (_, k) => {
-      const from = continuum.x[0] + core * k;
-      return {block: around(from, from, height), from, to: from + core};
+    const size = core(height);
+    return Array.from({length: blocks(height)}, (_, k) => {
+      const from = continuum.x[0] + size * k;
+      const middle = from + 0.5 * size;
+      return {block: around(middle, middle, height), from, to: from + size};
     });
   };
   const lines = new Map<"line", WholeLine>();
-  const line = (): WholeLine => remember(lines, "line", () => wholeLine(continuum, cover()));
+  const line = (): WholeLine =>
+    remember(lines, "line", () => levelWholeLine(continuum) ?? wholeLine(continuum, cover()));
   const readers = new Map<number, RegionalReader>();
-  const readerFor = (a: number): RegionalReader => regionalReader(line(), basis, data, a);
-  const seenReaders = new Map<RegionalReader, Map<Window, WindowReader>>();
+  const exactReaders = recent<number, RegionalReader>(READERS_KEPT);
+  const readerFor = (a: number): RegionalReader => exactReaders(a, () => regionalReader(line(), basis, data, a));
+  const far = even === undefined ? undefined : farStations(continuum, even);
+  const blocksOf = new WeakMap<RegionalReader, Float64Array>();
+  const nothing = new Float64Array(terms);
+  const everywhere = new Float64Array(terms > 0 ? continuum.count : 0);
+  let responded: Functional | undefined;
+  const seenReaders = new WeakMap<Window, Map<RegionalReader, WindowReader>>();
   const onModes = ({first, last, modes}: Window, vectors: Float64Array): Float64Array => {
     const rows = last - first;
     const part = new Float64Array(terms * rows);
@@ -145,14 +162,14 @@ export function windowsOf(
       part.set(vectors.subarray(t * continuum.count + first, t * continuum.count + last), t * rows);
     return multiplyTransposedInto(new Float64Array(modes.count * terms), modes.left, part, modes.count, rows, terms);
   };
-  const regionals = new Map<Window, Float64Array>();
+  const regionals = new WeakMap<Window, Float64Array>();
 
   const windowFor = (functional: Functional): Window => {
     if (whole) return remembered(0, continuum.count);
     const scale = functional.spread > height ? WIDEST_WINDOW * height : height;
     const {from, to} = functional;
     // Whole blocks, so that neighbouring functionals share a window.
-    if (to - from > WINDOW_CORE * scale) return around(from, to, scale);
+    if (to - from > core(scale)) return around(from, to, scale);
     const middle = 0.5 * (from + to);
     return around(middle, middle, scale);
   };
@@ -171,13 +188,9 @@ export function windowsOf(
 
   return {
     // A mean reaches over its own block and up to two more; a point is in one block, of either scale.
-    possible: whole
-      ? 1
-      : 3 * (blocks(WINDOW_CORE * height) + 2 * BLOCKS_BEYOND) +
-        blocks(WIDEST_WINDOW * WINDOW_CORE * height) +
-        2 * BLOCKS_BEYOND,
-    reach: whole ? Infinity : 2 * WINDOW_CORE * height,
-    piece: WINDOW_CORE * height,
+    possible: whole ? 1 : 3 * (blocks(height) + 2 * BLOCKS_BEYOND) + blocks(WIDEST_WINDOW * height) + 2 * BLOCKS_BEYOND,
+    reach: whole ? Infinity : 2 * core(height),
+    piece: core(height),
     line,
     terms,
     for: windowFor,
@@ -196,12 +209,26 @@ export function windowsOf(
     regionalOn: (window) => remember(regionals, window, () => onModes(window, basis.rows)),
     readerAt(a) {
       const place = Math.round(Math.log(a * bound * bound) / Math.log(READER_STEP));
-      return remember(readers, place, () => readerFor(READER_STEP ** place / (bound * bound)));
+      return remember(readers, place, () =>
+        regionalReader(line(), basis, data, READER_STEP ** place / (bound * bound)),
+      );
     },
     readerFor,
+    sharedWith(reader, functional) {
+      if (far !== undefined) {
+        const blocks = remember(blocksOf, reader, () => far.blocks(reader.weights, terms));
+        const found = far.shared(reader.weights, blocks, terms, functional);
+        if (found !== undefined) return found;
+      }
+      // All readers of one functional see the same response.
+      if (responded !== functional) functional.respondInto(everywhere, continuum, 0, continuum.count);
+      responded = functional;
+      const near = matVecInto(new Float64Array(terms), reader.weights, everywhere, terms, continuum.count);
+      return {near, beyond: nothing};
+    },
     readerOn(window, reader) {
-      const seen = remember(seenReaders, reader, () => new Map<Window, WindowReader>());
-      return remember(seen, window, () => ({
+      const seen = remember(seenReaders, window, () => new Map<RegionalReader, WindowReader>());
+      return remember(seen, reader, () => ({
         reader,
         weights: onModes(window, reader.weights),
         weightsGram: onModes(window, reader.gramWeights),
@@ -219,38 +246,16 @@ export function addOnModes(c: Float64Array, {modes, first, last}: Window, eta: F
   }
 }
 
+interface Kept<Key, Value> {
+  get(key: Key): Value | undefined;
+  set(key: Key, value: Value): unknown;
+}
+
 /** What `kept` holds for `key`, made now if it was not asked for before. */
-function remember<Key, Value>(kept: Map<Key, Value>, key: Key, make: () => Value): Value {
+function remember<Key, Value>(kept: Kept<Key, Value>, key: Key, make: () => Value): Value {
   const found = kept.get(key);
   if (found !== undefined) return found;
   const made = make();
   kept.set(key, made);
   return made;
-}
-
-/** Height of reading i above the boundary under it, m. */
-const heightOf = ({boundary, x, z}: Continuum, i: number): number => z[i] - boundaryAt(boundary, x[i]);
-
-/** Sorted stations within a margin of [left, right], at least a few dozen where there are. */
-function stationsAround(continuum: Continuum, left: number, right: number, scale: number): readonly [number, number] {
-  const {x, count} = continuum;
-  const margin = (from: number, to: number): readonly [number, number] => {
-    let first = 0;
-    while (first < count && x[first] < from) ++first;
-    let last = count;
-    while (last > first && x[last - 1] > to) --last;
-    return [first, last];
-  };
-  let [first, last] = margin(left - WINDOW_MARGIN * scale, right + WINDOW_MARGIN * scale);
-  let highest = scale;
-  for (let i = first; i < last; ++i) highest = Math.max(highest, heightOf(continuum, i));
-  if (highest > scale) [first, last] = margin(left - WINDOW_MARGIN * highest, right + WINDOW_MARGIN * highest);
-  const middle = 0.5 * (left + right);
-  while (last - first < Math.min(count, LEAST_STATIONS)) {
-    const before = first > 0 ? Math.abs(middle - x[first - 1]) : Infinity;
-    const after = last < count ? Math.abs(x[last] - middle) : Infinity;
-    if (before <= after) --first;
-    else ++last;
-  }
-  return [first, last];
 }

@@ -16,10 +16,17 @@ export interface ToeplitzInverse {
   /** T⁻¹e₁. */
   readonly first: Float64Array;
   /**
+   * ln det T: the sum of the logarithms of what prediction from ever more neighbours leaves. Beyond the orders that the
+   * recursion serves, that no longer changes (Szegő's limit; for smooth kernels it is met within some heights).
+   */
+  readonly logDeterminant: number;
+  /**
    * Solves T u = a and T v = b at one go, for the transforms are complex; u may be a, v may be b.
    * Each solution is corrected once by what its residual asks for, which brings it to the accuracy of the residual.
    */
   solvePairInto(u: Float64Array, v: Float64Array, a: Float64Array, b: Float64Array): void;
+  /** The same without correction, at half the cost. */
+  roughPairInto(u: Float64Array, v: Float64Array, a: Float64Array, b: Float64Array): void;
   /** Entries (i, i + offset) of T⁻¹, n − offset of them. */
   diagonal(offset: number): Float64Array;
 }
@@ -45,7 +52,8 @@ export function usefulDiagonals(n: number): number {
 export function toeplitzInverse(diagonals: Float64Array, n: number): ToeplitzInverse {
   const column = diagonals.subarray(0, n);
   const product = pairProduct(column);
-  const first = n <= RECURSION_SERVES ? byRecursion(column) : byGradients(diagonals, n, product);
+  const recursion = byRecursion(column.subarray(0, RECURSION_SERVES));
+  const first = n <= RECURSION_SERVES ? recursion.first : byGradients(diagonals, n, product);
   if (!(first[0] > 0))
     throw new NumericalError(
       "numeric/not-positive-definite",
@@ -57,6 +65,7 @@ export function toeplitzInverse(diagonals: Float64Array, n: number): ToeplitzInv
   return {
     size: n,
     first,
+    logDeterminant: recursion.logDeterminant + Math.max(0, n - RECURSION_SERVES) * Math.log(recursion.left),
     solvePairInto(u, v, a, b) {
       const rightU = u === a || v === a ? Float64Array.from(a) : a;
       const rightV = u === b || v === b ? Float64Array.from(b) : b;
@@ -72,6 +81,7 @@ export function toeplitzInverse(diagonals: Float64Array, n: number): ToeplitzInv
         v[i] += restV[i];
       }
     },
+    roughPairInto: apply,
     diagonal(offset) {
       const entries = new Float64Array(n - offset);
       let sum = 0;
@@ -178,12 +188,13 @@ function pairInverse(first: Float64Array): PairMap {
 }
 
 /** T⁻¹e₁ by Durbin's recursion for the prediction coefficients: x = (1, a)/σ², σ² what prediction leaves. */
-function byRecursion(column: Float64Array): Float64Array {
+function byRecursion(column: Float64Array) {
   const n = column.length;
   const x = new Float64Array(n);
   const before = new Float64Array(n);
   x[0] = 1;
   let left = column[0];
+  let logDeterminant = Math.log(left);
   for (let k = 1; k < n && left > 0; ++k) {
     let sum = 0;
     for (let i = 0; i < k; ++i) sum += x[i] * column[k - i];
@@ -192,8 +203,9 @@ function byRecursion(column: Float64Array): Float64Array {
     for (let i = 1; i < k; ++i) x[i] = before[i] + reflection * before[k - i];
     x[k] = reflection;
     left *= 1 - reflection * reflection;
+    logDeterminant += Math.log(left);
   }
-  return x.map((value) => value / left);
+  return {first: x.map((value) => value / left), left, logDeterminant};
 }
 
 /** T⁻¹e₁ by conjugate gradients. */

@@ -20,6 +20,8 @@ export interface Functional {
   readonly normSquared: number;
   /** A mean as the weighted sum of means over so many equal parts of where it looks; absent for a point. */
   cut?(parts: number): readonly {readonly mean: Functional; readonly share: number}[];
+  /** ∫|q| over all that there could be of q, where q is nowhere negative: its kernel then fades as that of a point does. */
+  readonly mass?: number;
   /** Writes ⟨p_i, q⟩, whitened, for the readings `first … last − 1` to the head of `target`. */
   respondInto(target: Float64Array, continuum: Continuum, first: number, last: number): Float64Array;
 }
@@ -49,6 +51,7 @@ export function meanOver(
     to: interval.to,
     spread: 0,
     normSquared: inside / (length * length),
+    mass: inside / length,
     cut: (count) =>
       Array.from({length: count}, (_, k) => {
         const at = (place: number): number => interval.from + ((interval.to - interval.from) * place) / count;
@@ -90,6 +93,7 @@ export function fieldAt(x: number, z: number, response: Response, continuum: Con
       to: x,
       spread: above,
       normSquared: pairOver(continuum.support, point, point),
+      ...(order === 0 && aRe === 0 ? {mass: Math.PI * Math.abs(aIm)} : {}),
       respondInto(target, readings, first, last) {
         const {support, poles, noise} = readings;
         if (readings.correlated)

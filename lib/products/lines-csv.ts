@@ -11,7 +11,7 @@ import type {LineProduct, RowProduct, RunFrame, TextSink} from "./product.ts";
 interface LedgerFigures {
   readonly stations: number;
   readonly panels: number;
-  readonly modes: number;
+  readonly modes: number | undefined;
   readonly choice: BoundChoice;
   readonly norm: number;
   readonly misfit: number;

@@ -57,4 +57,6 @@ export interface Solver {
   withNoise(factor: number): Solver;
   /** f on the panels, SI. */
   estimate(multiplier: number): Float64Array;
+  /** What the source reads at the stations, SI, where it is finer than the panels; absent where the panels are the source. */
+  readonly field?: (multiplier: number) => Float64Array;
 }

@@ -26,7 +26,7 @@ export function gainOf(
   const [, ...further] = conditioned.channels;
   if (further.length === 0) return undefined;
   const first = withChannel(conditioned, 0);
-  const {solver, readings} = operated(first, panels, model.regional);
+  const {solver, readings} = operated(first, panels, model.regional, [], bound.modes);
   const own = multiplierBy(bound, {
     solver,
     supportLength: totalLength(support),

@@ -106,6 +106,7 @@ function sourceSquare(
     panels,
     model.regional,
     rows,
+    settings.bound.modes,
   );
   const signs = gradientSignNotices(conditioned, panels, model.regional);
   const apart = signs[0] ?? disagreement(first, panels, model.regional, asGiven);
@@ -228,8 +229,14 @@ interface Settled extends Operated {
  * A noise taken from the record is raised where the readings show, by what no source explains, that their fourth
  * differences miss part of it. With several channels from the record all are raised alike.
  */
-function settled(first: ConditionedLine, panels: Panels, degree: number, ties: readonly TieRow[] = []): Settled {
-  const asGiven = operated(first, panels, degree, ties);
+function settled(
+  first: ConditionedLine,
+  panels: Panels,
+  degree: number,
+  ties: readonly TieRow[] = [],
+  modes = false,
+): Settled {
+  const asGiven = operated(first, panels, degree, ties, modes);
   const {solver} = asGiven;
   const apparent = first.channels.every(({noiseFrom}) => noiseFrom === "record") ? apparentNoise(solver) : undefined;
   if (apparent === undefined || !(apparent.ratio > chanceRatio(solver.data)))

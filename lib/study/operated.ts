@@ -2,17 +2,22 @@
 import type {Support} from "../geometry/interval.ts";
 import type {IntervalKind} from "../inverse/interval-kind.ts";
 import {type IntervalSolver, intervalSolver} from "../inverse/intervals.ts";
+import {misfitTarget} from "../inverse/misfit-range.ts";
 import {type BandSolver, simultaneousSolver} from "../inverse/simultaneous.ts";
 import {type Continuum, continuumOf} from "../operators/continuum.ts";
 import {type ForwardOperator, forwardOperator} from "../operators/forward.ts";
+import {levelCells} from "../operators/level-cells.ts";
 import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
-import type {Readings} from "../operators/readings.ts";
+import {pick, type Readings} from "../operators/readings.ts";
 import {type PointReading, readingsOfLine, readingsWithPoints, valuesOfLine} from "../operators/readings-of-line.ts";
 import {type RegionalBasis, regionalBasis} from "../operators/regional.ts";
 import {whiten, whitenData} from "../operators/whitened.ts";
 import {constrain} from "../solvers/constraint.ts";
+import {levelSolver} from "../solvers/level.ts";
+import {levelSystem} from "../solvers/level-system.ts";
 import type {Solver} from "../solvers/solver.ts";
 import {spectralSolver} from "../solvers/spectral.ts";
+import {byChainage} from "../survey/by-chainage.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {TieRow} from "./ties-of-line.ts";
 
@@ -21,20 +26,33 @@ export interface Operated {
   readonly readings: Readings;
   readonly values: Float64Array;
   readonly regional: RegionalBasis;
-  readonly operator: ForwardOperator;
+  /** Undefined where the solver itself knows the field of its source. */
+  readonly operator: ForwardOperator | undefined;
   readonly solver: Solver;
 }
 
 /**
+ * From this many stations on level lines are solved without modes: there the two take the same time, choice of the
+ * multiplier and trade-off curve included. A matter of speed alone.
+ */
+export const LEVEL_STATIONS = 600;
+/** Up to this many stations a level line falls back on its modes where the readings ask for a multiplier too small without. */
+const MODES_SERVE = 3000;
+
+/**
  * @param degree of the regional, −1 for none; ties have none
  * @param ties what each asks of the panels
+ * @param modes whether the rule for the bound weighs them one by one
  */
 export function operated(
   conditioned: ConditionedLine,
   panels: Panels,
   degree: number,
   ties: readonly TieRow[] = [],
+  modes = false,
 ): Operated {
+  const level = modes || ties.length > 0 ? undefined : levelOperated(conditioned, panels, degree);
+  if (level !== undefined) return level;
   const soft = ties.filter(({exact}) => !exact);
   const exact = ties.filter((tie) => tie.exact);
   const readings = readingsWithPoints(
@@ -60,6 +78,51 @@ export function operated(
           exact.map(({value}) => value),
         );
   return {readings, values, regional, operator, solver: spectralSolver(tied?.system ?? free, regional.terms, tied)};
+}
+
+/** A long line, level and even, of one channel with white noise; undefined for any other. */
+function levelOperated(conditioned: ConditionedLine, panels: Panels, degree: number): Operated | undefined {
+  if (conditioned.channels.length > 1 || conditioned.line.stations.count < LEVEL_STATIONS) return undefined;
+  const readings = readingsOfLine(conditioned);
+  // Flown backwards, it is the same line.
+  const order = Int32Array.from(byChainage(readings.x));
+  const sorted = pick(readings, order);
+  const cells = levelCells(sorted, panels);
+  if (cells === undefined) return undefined;
+  const values = valuesOfLine(conditioned);
+  const basis = regionalBasis(sorted, degree);
+  const data = whitenData(
+    Float64Array.from(order, (i) => values[i]!),
+    sorted,
+    basis,
+  );
+  const solver = levelSolver(levelSystem(cells, basis), data, panels);
+  if (readings.count <= MODES_SERVE && solver.misfit(solver.least) > misfitTarget(readings.count)) return undefined;
+  return {
+    readings,
+    values,
+    regional: regionalBasis(readings, degree),
+    operator: undefined,
+    solver: inOrderOfFile(solver, order),
+  };
+}
+
+/** @param order `order[k]` is the place in the file of the k-th from the left */
+function inOrderOfFile(solver: Solver, order: Int32Array): Solver {
+  const {field} = solver;
+  if (field === undefined) return solver;
+  return {
+    ...solver,
+    field(multiplier) {
+      const sorted = field(multiplier);
+      const placed = new Float64Array(sorted.length);
+      order.forEach((place, k) => {
+        placed[place] = sorted[k]!;
+      });
+      return placed;
+    },
+    withNoise: (factor) => inOrderOfFile(solver.withNoise(factor), order),
+  };
 }
 
 /** The line with one of its channels only. */

@@ -70,7 +70,8 @@ export interface RowStudy {
   /** For the ledger. */
   readonly stations: number;
   readonly panels: number;
-  readonly modes: number;
+  /** Undefined where nothing was diagonalised. */
+  readonly modes: number | undefined;
   readonly choice: BoundChoice;
   readonly norm: number;
   readonly misfit: number;

@@ -1,26 +1,23 @@
 /**
  * Everything about a row of a grid that does not depend on its readings. Rows with readings at the same places
- * share it: one eigen-decomposition, one set of half-widths.
+ * share it: one eigen-decomposition, or none where the row is long, level and complete; one set of half-widths.
  */
-import {levelRowInto} from "../continuation/field-on-level.ts";
 import type {LevelSetting} from "../continuation/level-profile.ts";
 import {levelHeights, responsesOf} from "../continuation/levels.ts";
 import {type Support, totalLength} from "../geometry/interval.ts";
 import {resolutionOf, stretchAt} from "../inverse/averages.ts";
 import {intervalSolver} from "../inverse/intervals.ts";
-import {multiplyTransposedInto} from "../numeric/matmul.ts";
 import {continuumOf} from "../operators/continuum.ts";
-import {forwardOperator} from "../operators/forward.ts";
 import {fieldAt, meanOver} from "../operators/functional.ts";
 import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
 import type {Readings} from "../operators/readings.ts";
-import {readingsOfLine, valuesOfLine} from "../operators/readings-of-line.ts";
+import {readingsOfLine} from "../operators/readings-of-line.ts";
 import {type RegionalBasis, regionalBasis} from "../operators/regional.ts";
-import {whiten} from "../operators/whitened.ts";
 import type {Response} from "../potential/kernel.ts";
 import {BOUNDARY_FIELD} from "../potential/level-quantity.ts";
-import {type SingularSystem, singularSystem} from "../spectral/singular-system.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
+import {type LevelRows, levelRows} from "./level-rows.ts";
+import {type ModalRows, modalRows} from "./modal-rows.ts";
 import type {Settings} from "./settings.ts";
 import {panelsOfLine, supportOfLine} from "./support-of-line.ts";
 
@@ -30,22 +27,35 @@ export interface RowGeometry {
   readonly supportLength: number;
   readonly readings: Readings;
   readonly basis: RegionalBasis;
-  readonly modes: SingularSystem;
-  readonly rootWidth: Float64Array;
   readonly conditioned: ConditionedLine;
+  readonly rows: ModalRows | LevelRows;
 }
 
-/** Half-widths at every station, and the matrices that turn mode weights into answers there (stations × modes). */
+/** What a row's readings come to at the one multiplier. */
+export interface RowFigures {
+  /** At every station, one for each band asked. */
+  readonly values: readonly Float64Array[];
+  readonly norm: number;
+  readonly misfit: number;
+  readonly degreesOfFreedom: number;
+}
+
+/** A field to be given at every station. */
+export interface BandAsked {
+  /** Height above the boundary at each station; all 0: the source. */
+  readonly height: Float64Array;
+  /** One, or two whose root of squares is the answer. */
+  readonly responses: readonly Response[];
+}
+
 export interface RowAnswers {
   readonly resolution: number;
-  readonly source: RowAnswer;
-  readonly levels: readonly {readonly setting: LevelSetting; readonly answer: RowAnswer}[];
-}
-
-interface RowAnswer {
-  /** One, or two whose root of squares is the answer. */
-  readonly fromModes: readonly Float64Array[];
-  readonly halfWidth: Float64Array;
+  /** Half-widths of each band at every station; the first is the source. */
+  readonly halfWidths: readonly Float64Array[];
+  /** The band of each level. */
+  readonly levels: readonly {readonly setting: LevelSetting; readonly band: number}[];
+  /** @param data Q d/σ of rows that share this geometry */
+  solve(data: readonly Float64Array[]): RowFigures[];
 }
 
 /** @param area the part of the row inside the polygons of the support, if any were asked */
@@ -54,23 +64,40 @@ export function rowGeometry(conditioned: ConditionedLine, settings: Settings, ar
   const panels = panelsOfLine(conditioned, support, settings.model);
   const readings = readingsOfLine(conditioned);
   const basis = regionalBasis(readings, settings.model.regional);
-  const system = whiten(forwardOperator(readings, panels), readings, valuesOfLine(conditioned), basis);
-  const modes = singularSystem(system.matrix, system.rows, system.columns);
+  const level = settings.bound.modes
+    ? undefined
+    : levelRows(readings, panels, settings.model.regional, bandsOf(conditioned, settings).bands);
   return {
     panels,
     support,
     supportLength: totalLength(support),
     readings,
     basis,
-    modes,
-    rootWidth: system.rootWidth,
     conditioned,
+    rows: level ?? modalRows(conditioned, readings, panels, basis),
   };
 }
 
-/** @param bound M, SI·√m; @param multiplier of the estimate, for the resolution */
+/** The bands, the source first, and which of them each level is. */
+function bandsOf(conditioned: ConditionedLine, settings: Settings) {
+  const quantity = settings.wanted.levelQuantity ?? BOUNDARY_FIELD;
+  const {method} = conditioned.channels[0].channel.observable.source;
+  const bands: BandAsked[] = [
+    {height: new Float64Array(conditioned.line.stations.count), responses: BOUNDARY_FIELD.responses(undefined)},
+  ];
+  const levels = settings.wanted.levels.map((setting) => {
+    const height = levelHeights(setting, conditioned);
+    // On the boundary the boundary field is the source.
+    if (quantity === BOUNDARY_FIELD && height.every((z) => z === 0)) return {setting, band: 0};
+    bands.push({height, responses: responsesOf(quantity, method, conditioned.direction)});
+    return {setting, band: bands.length - 1};
+  });
+  return {bands, levels};
+}
+
+/** @param bound M, SI·√m; @param multiplier of the estimate */
 export function rowAnswers(geometry: RowGeometry, settings: Settings, bound: number, multiplier: number): RowAnswers {
-  const {panels, support, conditioned, modes} = geometry;
+  const {panels, support, conditioned} = geometry;
   const {chainage} = conditioned.line.stations;
   const continuum = continuumOf(geometry.readings, support, boundaryOfPanels(panels));
   const sorted = regionalBasis(continuum, settings.model.regional);
@@ -79,42 +106,18 @@ export function rowAnswers(geometry: RowGeometry, settings: Settings, bound: num
     confidence: settings.wanted.confidence,
   });
   const resolution = resolutionOf(solver, panels, multiplier, chainage);
-  const answer = (height: Float64Array, responses: readonly Response[]): RowAnswer => {
-    const halfWidth = chainage.map((x, i) => {
-      if (responses.length > 1) return Number.NaN;
-      if (height[i] > 0) return solver.interval(fieldAt(x, height[i], responses[0], continuum)).halfWidth;
-      const stretch = stretchAt(panels, resolution, x);
-      return stretch === undefined ? 0 : solver.interval(meanOver(stretch, support)).halfWidth;
-    });
-    const fromModes = responses.map((response) => {
-      // Stations × panels on densities √w-free, then onto the modes: answers = (level matrix · D) Vᵀ.
-      const matrix = new Float64Array(chainage.length * panels.count);
-      for (let i = 0; i < chainage.length; ++i) {
-        levelRowInto(matrix, i * panels.count, panels, chainage[i], 0, height[i], response);
-        for (let j = 0; j < panels.count; ++j) matrix[i * panels.count + j] /= geometry.rootWidth[j];
-      }
-      return multiplyTransposedInto(
-        new Float64Array(chainage.length * modes.count),
-        matrix,
-        modes.right,
-        chainage.length,
-        panels.count,
-        modes.count,
-      );
-    });
-    return {fromModes, halfWidth};
-  };
-  const quantity = settings.wanted.levelQuantity ?? BOUNDARY_FIELD;
-  const {method} = conditioned.channels[0].channel.observable.source;
-  const source = answer(new Float64Array(chainage.length), BOUNDARY_FIELD.responses(undefined));
+  const {bands, levels} = bandsOf(conditioned, settings);
   return {
     resolution: resolution.length,
-    source,
-    levels: settings.wanted.levels.map((setting) => {
-      const height = levelHeights(setting, conditioned);
-      // On the boundary the boundary field is the source.
-      if (quantity === BOUNDARY_FIELD && height.every((z) => z === 0)) return {setting, answer: source};
-      return {setting, answer: answer(height, responsesOf(quantity, method, conditioned.direction))};
-    }),
+    levels,
+    halfWidths: bands.map(({height, responses}) =>
+      chainage.map((x, i) => {
+        if (responses.length > 1) return Number.NaN;
+        if (height[i] > 0) return solver.interval(fieldAt(x, height[i], responses[0]!, continuum)).halfWidth;
+        const stretch = stretchAt(panels, resolution, x);
+        return stretch === undefined ? 0 : solver.interval(meanOver(stretch, support)).halfWidth;
+      }),
+    ),
+    solve: geometry.rows.answering(bands, multiplier),
   };
 }

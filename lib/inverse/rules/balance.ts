@@ -77,6 +77,7 @@ export function balanced(modal: ModalEnergies, most: number, least: number): num
 export const balance: BoundRule = {
   name: "balance",
   text: "balance",
+  modes: true,
   choose(question: RuleQuestion): BoundChoice {
     const {solver} = question;
     const nothing = nothingButNoise(solver);

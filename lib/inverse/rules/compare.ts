@@ -6,6 +6,7 @@ import type {BoundRule} from "./rule.ts";
 export const compareRules = (rules: readonly BoundRule[]): BoundRule => ({
   name: "compare",
   text: "compare",
+  modes: true,
   compared: rules,
   choose(question) {
     if (question.places === undefined)

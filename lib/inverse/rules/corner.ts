@@ -17,6 +17,8 @@ import type {BoundRule, RuleQuestion} from "./rule.ts";
 
 /** Step in ln α of the search for turns; a heuristic, well below the width of one. */
 const STEP = 0.1;
+/** And where each step costs a solution. */
+const FEW_STEP = 0.5;
 
 /** Curvature of (ln √E, ln N) at a multiplier, above 0 where the curve is convex; NaN where there is nothing to draw. */
 export function curvatureAt(solver: Solver, multiplier: number): number {
@@ -40,9 +42,11 @@ export function cornerOf(solver: Solver): number | undefined {
   if (!(solver.largest > 0)) return undefined;
   const most = Math.min(0.5 * solver.data, 0.9 * solver.degreesOfFreedom(solver.least));
   const places: number[] = [];
-  for (let t = Math.log(10 * solver.largest); t >= Math.log(solver.least); t -= STEP) {
+  const step = solver.modes === undefined ? FEW_STEP : STEP;
+  for (let t = Math.log(10 * solver.largest); t >= Math.log(solver.least); t -= step) {
     const degrees = solver.degreesOfFreedom(Math.exp(t));
-    if (degrees >= 1 && degrees <= most) places.push(t);
+    if (degrees > most) break;
+    if (degrees >= 1) places.push(t);
   }
   const curvature = places.map((t) => curvatureAt(solver, Math.exp(t)));
   let best: number | undefined;

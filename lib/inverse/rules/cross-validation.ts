@@ -64,6 +64,7 @@ export function excess(scores: Float64Array, least: Float64Array): number {
 export const crossValidation: BoundRule = {
   name: "cross-validation",
   text: "cross-validation",
+  modes: true,
   choose(question: RuleQuestion): BoundChoice {
     const {solver, places, supportLength} = question;
     if (places === undefined || solver.dataSide === undefined)

@@ -18,6 +18,8 @@ export interface BoundRule {
   readonly name: string;
   /** As the user wrote it, for the record: `rms:0.5`, `discrepancy`. */
   readonly text: string;
+  /** Whether it weighs the modes, or leaves readings out: `modal` or `dataSide` of the solver; absent: no. */
+  readonly modes?: boolean;
   /** Rules that are to be set beside this one; absent: none. */
   readonly compared?: readonly BoundRule[];
   /** The bound M that the text names, SI·√m, from the length of the support; absent where only data can tell. */

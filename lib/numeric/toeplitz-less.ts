@@ -1,0 +1,139 @@
+/**
+ * A symmetric Toeplitz matrix less one of low rank, T − VVᵀ: what an endless line would see, less what this one does not.
+ *
+ *   (T + α − VVᵀ)⁻¹ = (T + α)⁻¹ + Z (1 − VᵀZ)⁻¹ Zᵀ,   Z = (T + α)⁻¹V.
+ *
+ * V by pivoted Cholesky on columns made when they are asked for.
+ * Source: Harbrecht, Peters & Schneider, Appl. Numer. Math. 62 (2012) 428; the identity is Woodbury's (from memory).
+ */
+import {choleskyInPlace, choleskySolveInto} from "./cholesky.ts";
+import {type ToeplitzInverse, toeplitzInverse} from "./toeplitz-inverse.ts";
+
+/** V, one array a column, and the largest entry left on the diagonal before each. */
+export interface LowRank {
+  readonly columns: readonly Float64Array[];
+  readonly left: readonly number[];
+}
+
+/** At a shift α as many columns serve as leave so much of α on the diagonal. */
+const LEFT_OF_SHIFT = 1e-7;
+
+/**
+ * V with D ≈ VVᵀ, D positive semidefinite.
+ * @param diagonal of D
+ * @param columnInto writes column j of D
+ * @param leave entries of the diagonal that are rounding
+ */
+export function lowRank(
+  diagonal: Float64Array,
+  columnInto: (target: Float64Array, j: number) => Float64Array,
+  leave: number,
+): LowRank {
+  const n = diagonal.length;
+  const rest = Float64Array.from(diagonal);
+  const columns: Float64Array[] = [];
+  const left: number[] = [];
+  while (columns.length < n) {
+    let pivot = 0;
+    for (let i = 1; i < n; ++i) if (rest[i] > rest[pivot]) pivot = i;
+    if (!(rest[pivot] > leave)) break;
+    const column = columnInto(new Float64Array(n), pivot);
+    for (const earlier of columns) {
+      const share = earlier[pivot];
+      for (let i = 0; i < n; ++i) column[i] -= share * earlier[i];
+    }
+    if (!(column[pivot] > leave)) {
+      // The column is rounded more than the diagonal was: nothing more to be had there.
+      rest[pivot] = 0;
+      continue;
+    }
+    left.push(rest[pivot]);
+    const root = Math.sqrt(column[pivot]);
+    for (let i = 0; i < n; ++i) {
+      column[i] /= root;
+      rest[i] -= column[i] * column[i];
+    }
+    rest[pivot] = 0;
+    columns.push(column);
+  }
+  return {columns, left};
+}
+
+export interface ShiftedInverse {
+  /** (T + α − VVᵀ)⁻¹ of each right-hand side, nearly: V is cut short. */
+  solve(rights: readonly Float64Array[]): Float64Array[];
+  /** The same by products that are not corrected. */
+  rough(rights: readonly Float64Array[]): Float64Array[];
+  /** Of the inverse. */
+  readonly trace: number;
+  /** ln det(T + α − VVᵀ). */
+  readonly logDeterminant: number;
+}
+
+/**
+ * @param diagonals first column of T and as many further entries as `toeplitzInverse` can use
+ * @throws {NumericalError} `numeric/not-positive-definite` where rounding leaves nothing of 1 − VᵀZ
+ */
+export function shiftedInverse(diagonals: Float64Array, less: LowRank, alpha: number, n: number): ShiftedInverse {
+  let rank = 0;
+  while (rank < less.columns.length && less.left[rank]! > LEFT_OF_SHIFT * alpha) ++rank;
+  const outside = less.columns.slice(0, rank);
+  const raised = Float64Array.from(diagonals);
+  raised[0] += alpha;
+  const endless = toeplitzInverse(raised, n);
+  const z = inPairs(endless.solvePairInto, n, outside);
+  const capacity = new Float64Array(rank * rank);
+  const sums = new Float64Array(rank * rank);
+  for (let i = 0; i < rank; ++i)
+    for (let j = 0; j <= i; ++j) {
+      capacity[i * rank + j] = (i === j ? 1 : 0) - dot(outside[i]!, z[j]!);
+      sums[i * rank + j] = dot(z[i]!, z[j]!);
+      sums[j * rank + i] = sums[i * rank + j];
+    }
+  choleskyInPlace(capacity, rank);
+  const one = new Float64Array(rank);
+  let trace = endless.diagonal(0).reduce((sum, value) => sum + value, 0);
+  let logDeterminant = endless.logDeterminant;
+  for (let j = 0; j < rank; ++j) {
+    for (let i = 0; i < rank; ++i) one[i] = sums[i * rank + j];
+    trace += choleskySolveInto(one, capacity, one, rank)[j]!;
+    logDeterminant += 2 * Math.log(capacity[j * rank + j]);
+  }
+  const withOutside = (solutions: Float64Array[], rights: readonly Float64Array[]): Float64Array[] => {
+    rights.forEach((right, k) => {
+      const shares = choleskySolveInto(
+        new Float64Array(rank),
+        capacity,
+        Float64Array.from(z, (column) => dot(column, right)),
+        rank,
+      );
+      const solution = solutions[k]!;
+      z.forEach((column, j) => {
+        const share = shares[j]!;
+        for (let i = 0; i < n; ++i) solution[i] += share * column[i];
+      });
+    });
+    return solutions;
+  };
+  return {
+    trace,
+    logDeterminant,
+    solve: (rights) => withOutside(inPairs(endless.solvePairInto, n, rights), rights),
+    rough: (rights) => withOutside(inPairs(endless.roughPairInto, n, rights), rights),
+  };
+}
+
+function inPairs(solve: ToeplitzInverse["solvePairInto"], n: number, rights: readonly Float64Array[]): Float64Array[] {
+  const nothing = new Float64Array(n);
+  const solutions = rights.map(() => new Float64Array(n));
+  const spare = new Float64Array(n);
+  for (let k = 0; k < rights.length; k += 2)
+    solve(solutions[k]!, solutions[k + 1] ?? spare, rights[k]!, rights[k + 1] ?? nothing);
+  return solutions;
+}
+
+function dot(a: Float64Array, b: Float64Array): number {
+  let sum = 0;
+  for (let i = 0; i < a.length; ++i) sum += a[i] * b[i];
+  return sum;
+}
