@@ -1,6 +1,7 @@
 /** Averaging kernels of the estimate at a handful of places, to look at. */
 import type {Continuum} from "../operators/continuum.ts";
 import {densityAt} from "../operators/functional.ts";
+import {knownProduct} from "../operators/known-means.ts";
 import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
 import type {IntervalSolver} from "./intervals.ts";
 import type {AveragingKernel, Resolution} from "./nouns.ts";
@@ -37,15 +38,17 @@ export function averagingKernels(
   return [...chosen].flatMap((j) => {
     if (!Number.isFinite(local[j] + length)) return [];
     const at = panels.centre[j];
-    const weights = solver.kernelWeights(densityAt(at, boundary), multiplier);
+    const here = densityAt(at, boundary);
+    const weights = solver.kernelWeights(here, multiplier);
     const chainage = Float64Array.from(
       {length: 2 * SAMPLES + 1},
       (_, k) => at + (REACH * length * (k - SAMPLES)) / SAMPLES,
     );
     const value = chainage.map((t) => {
       if (!continuum.support.some(({from, to}) => from <= t && t <= to)) return 0;
-      densityAt(t, boundary).respondInto(response, continuum, 0, continuum.count);
-      return response.reduce((sum, p, i) => sum + p * weights[i], 0);
+      const there = densityAt(t, boundary);
+      there.respondInto(response, continuum, 0, continuum.count);
+      return response.reduce((sum, p, i) => sum + p * weights[i], knownProduct(continuum, here, there));
     });
     return [{at, width: local[j], chainage, value}];
   });

@@ -95,7 +95,11 @@ export function windowsOf(
   layout: Layout,
   regionalOf: RegionalOf = "line",
 ): Windows {
-  const heights = continuum.z.map((_, i) => heightOf(continuum, i)).sort();
+  // A mean over a stretch of the boundary has no height.
+  const heights = continuum.z
+    .map((_, i) => heightOf(continuum, i))
+    .filter((_, i) => continuum.stretches?.[i] === undefined)
+    .sort();
   const height = heights[heights.length >> 1];
   const span = continuum.x[continuum.count - 1] - continuum.x[0];
   const whole =
@@ -103,7 +107,7 @@ export function windowsOf(
     (layout === "by size" &&
       (continuum.count <= WHOLE_STATIONS ||
         (span < SURELY_LONG * height && nodesFor(continuum, 0, continuum.count).count <= WHOLE_NODES)));
-  const even = continuum.boundary === undefined ? levelLine(continuum) : undefined;
+  const even = continuum.boundary === undefined && continuum.known === undefined ? levelLine(continuum) : undefined;
   const {core, blocks, blockAt, stations} = windowLayout(continuum, even);
   // Shared modes overstate the Gram matrix a little, which is safe for affine estimates alone.
   const congruent =

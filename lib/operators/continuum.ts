@@ -6,7 +6,7 @@
  * are short near the sensors and long far from them, and responses to functionals are closed forms.
  */
 import {type BoundaryLine, boundaryAt, breaksWithin} from "../geometry/boundary-line.ts";
-import type {Support} from "../geometry/interval.ts";
+import type {Interval, Support} from "../geometry/interval.ts";
 import {gaussLegendre, type QuadratureRule} from "../numeric/quadrature.ts";
 import {kernelAt} from "../potential/kernel.ts";
 import {logarithmOver, type Pole} from "../potential/pair.ts";
@@ -24,6 +24,17 @@ export interface Continuum extends Readings {
   readonly place: Int32Array;
   /** What `sharedNodes` has made before, by the readings it is for. */
   readonly shared: Map<string, SharedNodes>;
+  /** Means of f that are known exactly: all responses are to what is left of f; see `known-means.ts`. */
+  readonly known: KnownMeans | undefined;
+}
+
+export interface KnownMeans {
+  /** The means m_t as readings, whitened by one. */
+  readonly means: Continuum;
+  /** Cholesky factor of K, their Gram matrix. */
+  readonly factor: Float64Array;
+  /** K⁻¹⟨m_t, p_i⟩, means × readings, row-major; p_i whitened. */
+  readonly shares: Float64Array;
 }
 
 export function continuumOf(readings: Readings, support: Support, boundary?: BoundaryLine): Continuum {
@@ -31,7 +42,7 @@ export function continuumOf(readings: Readings, support: Support, boundary?: Bou
   const place = Int32Array.from(x.keys()).sort((i, j) => x[i] - x[j] || i - j);
   const sorted = pick(readings, place);
   const poles = boundary === undefined ? Array.from(sorted.x, (_, i) => poleOf(support, sorted, i)) : [];
-  return {...sorted, support, boundary, poles, place, shared: new Map()};
+  return {...sorted, support, boundary, poles, place, shared: new Map(), known: undefined};
 }
 
 function poleOf(support: Support, {x, z, aRe, aIm, order}: Readings, i: number): Pole {
@@ -88,7 +99,7 @@ export function nodesFor(continuum: Continuum, first: number, last: number, also
   const lowest = reachingBack(continuum, first, last);
   const far = (a: number, b: number): number => distance(continuum, lowest, last, a, b, also);
   for (const {from, to} of continuum.support) {
-    const breaks = [...breaksWithin(continuum.boundary, from, to), to];
+    const breaks = breaksOf(continuum, from, to, lowest, last);
     let left = from;
     for (const stop of breaks)
       while (left < stop) {
@@ -117,6 +128,16 @@ export function nodesFor(continuum: Continuum, first: number, last: number, also
   };
 }
 
+/** Where elements end whatever their length, up to `to`: breaks of the boundary, and ends of stretches that are means. */
+function breaksOf(continuum: Continuum, from: number, to: number, first: number, last: number): readonly number[] {
+  const ground = [...breaksWithin(continuum.boundary, from, to), to];
+  const {stretches, known} = continuum;
+  if (stretches === undefined && known === undefined) return ground;
+  const own = [...(stretches?.slice(first, last) ?? []), ...(known?.means.stretches ?? [])];
+  const ends = own.flatMap((stretch) => (stretch === undefined ? [] : [stretch.from, stretch.to]));
+  return [...new Set([...ground, ...ends.filter((end) => end > from && end < to)])].sort((a, b) => a - b);
+}
+
 /** The end of the longest element from `left` on that is no longer than REACH times its distance from the sensors. */
 function longestElement(far: (a: number, b: number) => number, left: number, to: number): number {
   const allowed = (right: number): boolean => right - left <= REACH * far(left, right);
@@ -143,8 +164,9 @@ function reachingBack({correlated, before}: Continuum, first: number, last: numb
 function distance(continuum: Continuum, first: number, last: number, a: number, b: number, also?: Place): number {
   const top = Math.max(boundaryAt(continuum.boundary, a), boundaryAt(continuum.boundary, b));
   let least = Infinity;
-  const {x, z} = continuum;
+  const {x, z, stretches} = continuum;
   for (let i = first; i < last; ++i) {
+    if (stretches?.[i] !== undefined) continue;
     const across = x[i] < a ? a - x[i] : x[i] > b ? x[i] - b : 0;
     const above = z[i] - top;
     const d2 = across * across + (above > 0 ? above * above : 0);
@@ -158,7 +180,7 @@ function distance(continuum: Continuum, first: number, last: number, a: number, 
   return Math.sqrt(least);
 }
 
-/** Response of reading i at a node, not whitened. */
+/** Kernel of reading i at a node, not whitened. */
 const rawAt = (continuum: Continuum, nodes: Nodes, i: number, k: number): number =>
   kernelAt(
     continuum.aRe[i],
@@ -168,14 +190,42 @@ const rawAt = (continuum: Continuum, nodes: Nodes, i: number, k: number): number
     continuum.z[i] - nodes.y[k],
   );
 
-/** Whitened, where the noise is white. */
+/** A mean as a function: one over its length on the stretch. */
+export const meanAt = ({from, to}: Interval, t: number): number => (t >= from && t <= to ? 1 / (to - from) : 0);
+
+/** Whether responses are whitened kernels of white noise and nothing else: the common case, and the short road. */
+const isPlain = ({correlated, stretches, known}: Continuum): boolean =>
+  !correlated && stretches === undefined && known === undefined;
+
+/** Whitened responses of the readings `first … last − 1` at a node, to the head of `column`. */
+function columnInto(
+  column: Float64Array,
+  continuum: Continuum,
+  nodes: Nodes,
+  first: number,
+  last: number,
+  k: number,
+): Float64Array {
+  const {stretches, known, count} = continuum;
+  whitenedInto(column, continuum, first, last, (i) => {
+    const stretch = stretches?.[i];
+    return stretch === undefined ? rawAt(continuum, nodes, i, k) : meanAt(stretch, nodes.at[k]);
+  });
+  known?.means.stretches?.forEach((stretch, t) => {
+    const mean = meanAt(stretch!, nodes.at[k]);
+    if (mean > 0) for (let i = first; i < last; ++i) column[i - first] -= known.shares[t * count + i] * mean;
+  });
+  return column;
+}
+
+/** Whitened kernel, where the noise is white. */
 const responseAt = (continuum: Continuum, nodes: Nodes, i: number, k: number): number =>
   rawAt(continuum, nodes, i, k) / continuum.noise[i];
 
 /** (last − first) × nodes, row-major: whitened responses at the nodes times the root of their weights. */
 export function nodeMatrix(continuum: Continuum, nodes: Nodes, first: number, last: number): Float64Array {
   const matrix = new Float64Array((last - first) * nodes.count);
-  if (continuum.correlated) return correlatedNodeMatrixInto(matrix, continuum, nodes, first, last);
+  if (!isPlain(continuum)) return nodeMatrixByColumnsInto(matrix, continuum, nodes, first, last);
   for (let i = first; i < last; ++i) {
     const row = (i - first) * nodes.count;
     for (let k = 0; k < nodes.count; ++k) matrix[row + k] = responseAt(continuum, nodes, i, k) * nodes.rootWeight[k];
@@ -183,7 +233,7 @@ export function nodeMatrix(continuum: Continuum, nodes: Nodes, first: number, la
   return matrix;
 }
 
-function correlatedNodeMatrixInto(
+function nodeMatrixByColumnsInto(
   matrix: Float64Array,
   continuum: Continuum,
   nodes: Nodes,
@@ -192,7 +242,7 @@ function correlatedNodeMatrixInto(
 ): Float64Array {
   const column = new Float64Array(last - first);
   for (let k = 0; k < nodes.count; ++k) {
-    whitenedInto(column, continuum, first, last, (i) => rawAt(continuum, nodes, i, k));
+    columnInto(column, continuum, nodes, first, last, k);
     for (let i = 0; i < column.length; ++i) matrix[i * nodes.count + k] = column[i] * nodes.rootWeight[k];
   }
   return matrix;
@@ -226,12 +276,16 @@ export function sharedNodes(continuum: Continuum, first: number, last: number): 
 /** G R for `terms` vectors over all readings (terms × count, row-major), G the whitened Gram matrix; no matrix is stored. */
 export function gramTimes(continuum: Continuum, vectors: Float64Array, terms: number): Float64Array {
   const nodes = nodesFor(continuum, 0, continuum.count);
+  const plain = isPlain(continuum);
   const result = new Float64Array(terms * continuum.count);
   const row = new Float64Array(continuum.count);
   for (let k = 0; k < nodes.count; ++k) {
-    if (continuum.correlated)
-      whitenedInto(row, continuum, 0, continuum.count, (i) => rawAt(continuum, nodes, i, k) * nodes.rootWeight[k]);
-    else for (let i = 0; i < continuum.count; ++i) row[i] = responseAt(continuum, nodes, i, k) * nodes.rootWeight[k];
+    if (plain)
+      for (let i = 0; i < continuum.count; ++i) row[i] = responseAt(continuum, nodes, i, k) * nodes.rootWeight[k];
+    else {
+      columnInto(row, continuum, nodes, 0, continuum.count, k);
+      for (let i = 0; i < continuum.count; ++i) row[i] *= nodes.rootWeight[k];
+    }
     for (let t = 0; t < terms; ++t) {
       const start = t * continuum.count;
       let dot = 0;
@@ -244,6 +298,8 @@ export function gramTimes(continuum: Continuum, vectors: Float64Array, terms: nu
 
 /** ‖Σ c_i p_i‖² in L²(S), for whitened responses p_i. */
 export function responseNormSquared(continuum: Continuum, weights: Float64Array): number {
+  if (continuum.stretches !== undefined || continuum.known !== undefined)
+    return gramTimes(continuum, weights, 1).reduce((sum, value, i) => sum + value * weights[i], 0);
   const nodes = nodesFor(continuum, 0, continuum.count);
   const {x, z, aRe, aIm, order, count} = continuum;
   const shares = weights.map((weight, i) => weight / continuum.noise[i]);

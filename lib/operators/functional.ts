@@ -7,7 +7,7 @@ import {clip, type Interval, type Support, totalLength} from "../geometry/interv
 import {matVecInto} from "../numeric/matmul.ts";
 import {amplitudeIm, amplitudeRe, kernelAt, kernelOverPiece, type Response} from "../potential/kernel.ts";
 import {logarithmOver, type Pole, pairOver} from "../potential/pair.ts";
-import {type Continuum, type Nodes, nodesFor, sharedNodes} from "./continuum.ts";
+import {type Continuum, meanAt, type Nodes, nodesFor, sharedNodes} from "./continuum.ts";
 import {whitenedInto} from "./correlated-noise.ts";
 
 export interface Functional {
@@ -22,8 +22,50 @@ export interface Functional {
   cut?(parts: number): readonly {readonly mean: Functional; readonly share: number}[];
   /** ∫|q| over all that there could be of q, where q is nowhere negative: its kernel then fades as that of a point does. */
   readonly mass?: number;
-  /** Writes ⟨p_i, q⟩, whitened, for the readings `first … last − 1` to the head of `target`. */
+  /**
+   * Writes ⟨p_i, q⟩, whitened, for the readings `first … last − 1` to the head of `target`; of p_i what is left beside
+   * means that are known exactly.
+   */
   respondInto(target: Float64Array, continuum: Continuum, first: number, last: number): Float64Array;
+}
+
+type Respond = Functional["respondInto"];
+
+/** `whole` is about all of f; where means of it are known, what they have in common with q is taken off. */
+const besideKnown =
+  (whole: Respond): Respond =>
+  (target, continuum, first, last) => {
+    whole(target, continuum, first, last);
+    if (continuum.known === undefined) return target;
+    const {means, shares} = continuum.known;
+    const common = whole(new Float64Array(means.count), means, 0, means.count);
+    for (let t = 0; t < means.count; ++t)
+      for (let i = first; i < last; ++i) target[i - first] -= shares[t * continuum.count + i] * common[t];
+    return target;
+  };
+
+interface Piece {
+  readonly a: number;
+  readonly ya: number;
+  readonly b: number;
+  readonly yb: number;
+}
+
+/** Straight pieces of the boundary within some stretches of it. */
+const piecesOf = (parts: Support, boundary: BoundaryLine | undefined): readonly Piece[] =>
+  parts.flatMap(({from, to}) => {
+    const stops = [from, ...breaksWithin(boundary, from, to), to];
+    return stops.slice(1).map((end, k) => {
+      const start = stops[k];
+      return {a: start, ya: boundaryAt(boundary, start), b: end, yb: boundaryAt(boundary, end)};
+    });
+  });
+
+/** ∫ of the kernel of a sensor at (x, z) over pieces of the boundary. */
+function kernelOver(pieces: readonly Piece[], x: number, z: number, aRe: number, aIm: number, order: number): number {
+  let sum = 0;
+  for (const {a, ya, b, yb} of pieces) sum += kernelOverPiece(aRe, aIm, order, a - x, z - ya, b - x, z - yb);
+  return sum;
 }
 
 /**
@@ -39,13 +81,7 @@ export function meanOver(
   const parts = stretches.flatMap((stretch) => clip(stretch, support));
   const length = totalLength(stretches);
   const inside = parts.reduce((sum, part) => sum + part.to - part.from, 0);
-  const pieces = parts.flatMap(({from, to}) => {
-    const stops = [from, ...breaksWithin(boundary, from, to), to];
-    return stops.slice(1).map((end, k) => {
-      const start = stops[k];
-      return {a: start, ya: boundaryAt(boundary, start), b: end, yb: boundaryAt(boundary, end)};
-    });
-  });
+  const pieces = piecesOf(parts, boundary);
   return {
     from: interval.from,
     to: interval.to,
@@ -61,18 +97,18 @@ export function meanOver(
           ? []
           : [{mean: meanOver(piece, support, boundary, within), share: totalLength(within) / length}];
       }).flat(),
-    respondInto(target, continuum, first, last) {
-      const {x, z, aRe, aIm, order} = continuum;
+    respondInto: besideKnown((target, continuum, first, last) => {
+      const {x, z, aRe, aIm, order, stretches} = continuum;
       const sumAt = (i: number): number => {
-        let sum = 0;
-        for (const {a, ya, b, yb} of pieces)
-          sum += kernelOverPiece(aRe[i], aIm[i], order[i], a - x[i], z[i] - ya, b - x[i], z[i] - yb);
-        return sum;
+        const stretch = stretches?.[i];
+        return stretch === undefined
+          ? kernelOver(pieces, x[i], z[i], aRe[i], aIm[i], order[i])
+          : totalLength(clip(stretch, parts)) / (stretch.to - stretch.from);
       };
       if (continuum.correlated) return whitenedInto(target, continuum, first, last, (i) => sumAt(i) / length);
       for (let i = first; i < last; ++i) target[i - first] = sumAt(i) / (length * continuum.noise[i]);
       return target;
-    },
+    }),
   };
 }
 
@@ -85,6 +121,9 @@ export function fieldAt(x: number, z: number, response: Response, continuum: Con
   const aIm = amplitudeIm(response);
   const {order} = response;
   const above = z - boundaryAt(continuum.boundary, x);
+  /** What the mean over a stretch has in common with the point. */
+  const meanOf = (stretch: Interval): number =>
+    kernelOver(piecesOf([stretch], continuum.boundary), x, z, aRe, aIm, order) / (stretch.to - stretch.from);
   if (continuum.boundary === undefined) {
     const [logRe, logIm, slopeRe, slopeIm] = logarithmOver(continuum.support, x, z);
     const point: Pole = {x, z, aRe, aIm, order, logRe, logIm, slopeRe, slopeIm};
@@ -94,18 +133,45 @@ export function fieldAt(x: number, z: number, response: Response, continuum: Con
       spread: above,
       normSquared: pairOver(continuum.support, point, point),
       ...(order === 0 && aRe === 0 ? {mass: Math.PI * Math.abs(aIm)} : {}),
-      respondInto(target, readings, first, last) {
-        const {support, poles, noise} = readings;
-        if (readings.correlated)
-          return whitenedInto(target, readings, first, last, (i) => pairOver(support, poles[i], point));
-        for (let i = first; i < last; ++i) target[i - first] = pairOver(support, poles[i], point) / noise[i];
+      respondInto: besideKnown((target, readings, first, last) => {
+        const {support, poles, noise, stretches} = readings;
+        const rawAt = (i: number): number => {
+          const stretch = stretches?.[i];
+          return stretch === undefined ? pairOver(support, poles[i], point) : meanOf(stretch);
+        };
+        if (readings.correlated) return whitenedInto(target, readings, first, last, rawAt);
+        for (let i = first; i < last; ++i) target[i - first] = rawAt(i) / noise[i];
         return target;
-      },
+      }),
     };
   }
   const weightsOn = (nodes: Nodes): Float64Array =>
     nodes.at.map((at, k) => kernelAt(aRe, aIm, order, at - x, z - nodes.y[k]) * nodes.rootWeight[k]);
   const own = weightsOn(nodesFor(continuum, 0, 0, {x, z}));
+  const byOwnNodes = besideKnown((target, readings, first, last) => {
+    const nodes = nodesFor(readings, first, last, {x, z});
+    const weights = weightsOn(nodes);
+    const sumAt = (i: number): number => {
+      const stretch = readings.stretches?.[i];
+      if (stretch !== undefined) return meanOf(stretch);
+      let sum = 0;
+      for (let k = 0; k < nodes.count; ++k)
+        sum +=
+          weights[k] *
+          nodes.rootWeight[k] *
+          kernelAt(
+            readings.aRe[i],
+            readings.aIm[i],
+            readings.order[i],
+            nodes.at[k] - readings.x[i],
+            readings.z[i] - nodes.y[k],
+          );
+      return sum;
+    };
+    if (readings.correlated) return whitenedInto(target, readings, first, last, sumAt);
+    for (let i = first; i < last; ++i) target[i - first] = sumAt(i) / readings.noise[i];
+    return target;
+  });
   return {
     from: x,
     to: x,
@@ -122,26 +188,7 @@ export function fieldAt(x: number, z: number, response: Response, continuum: Con
           last - first,
           shared.nodes.count,
         );
-      const nodes = nodesFor(readings, first, last, {x, z});
-      const weights = weightsOn(nodes);
-      const sumAt = (i: number): number => {
-        let sum = 0;
-        for (let k = 0; k < nodes.count; ++k)
-          sum +=
-            weights[k] *
-            nodes.rootWeight[k] *
-            kernelAt(
-              readings.aRe[i],
-              readings.aIm[i],
-              readings.order[i],
-              nodes.at[k] - readings.x[i],
-              readings.z[i] - nodes.y[k],
-            );
-        return sum;
-      };
-      if (readings.correlated) return whitenedInto(target, readings, first, last, sumAt);
-      for (let i = first; i < last; ++i) target[i - first] = sumAt(i) / readings.noise[i];
-      return target;
+      return byOwnNodes(target, readings, first, last);
     },
   };
 }
@@ -154,12 +201,17 @@ export const densityAt = (x: number, boundary?: BoundaryLine): Functional => {
     to: x,
     spread: 0,
     normSquared: Infinity,
-    respondInto(target, continuum, first, last) {
-      const {aRe, aIm, order, noise, z} = continuum;
-      const rawAt = (i: number): number => kernelAt(aRe[i], aIm[i], order[i], x - continuum.x[i], z[i] - y);
+    respondInto: besideKnown((target, continuum, first, last) => {
+      const {aRe, aIm, order, noise, z, stretches} = continuum;
+      const rawAt = (i: number): number => {
+        const stretch = stretches?.[i];
+        return stretch === undefined
+          ? kernelAt(aRe[i], aIm[i], order[i], x - continuum.x[i], z[i] - y)
+          : meanAt(stretch, x);
+      };
       if (continuum.correlated) return whitenedInto(target, continuum, first, last, rawAt);
       for (let i = first; i < last; ++i) target[i - first] = rawAt(i) / noise[i];
       return target;
-    },
+    }),
   };
 };

@@ -40,8 +40,18 @@ export interface LevelLine {
 }
 
 /** The spacing and height of readings of one kind that are level and even, their noise white; undefined for any others. */
-export function levelLine({count, x, z, aRe, aIm, order, noise, correlated}: Readings): LevelLine | undefined {
-  if (count < 3 || correlated) return undefined;
+export function levelLine({
+  count,
+  x,
+  z,
+  aRe,
+  aIm,
+  order,
+  noise,
+  correlated,
+  stretches,
+}: Readings): LevelLine | undefined {
+  if (count < 3 || correlated || stretches !== undefined) return undefined;
   const spacing = (x[count - 1] - x[0]) / (count - 1);
   if (!(spacing > 0)) return undefined;
   for (let i = 0; i < count; ++i) {

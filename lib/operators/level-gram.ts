@@ -23,7 +23,7 @@ const ENDLESS = 1e9;
 
 /** @returns undefined where the readings are not of one kind, level and even, with white noise over a flat boundary */
 export function levelGram(continuum: Continuum): LevelGram | undefined {
-  const line = continuum.boundary === undefined ? levelLine(continuum) : undefined;
+  const line = continuum.boundary === undefined && continuum.known === undefined ? levelLine(continuum) : undefined;
   if (line === undefined) return undefined;
   const {count: n, support, poles, noise} = continuum;
   const scale = 1 / noise[0] ** 2;

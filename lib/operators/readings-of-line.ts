@@ -19,14 +19,14 @@ export function valuesOfLine({channels}: ConditionedLine): Float64Array {
   return values;
 }
 
-/** A known reading at a point, beside the channels. */
+/** A known reading at a point, or of a stretch about it, beside the channels. */
 export type PointReading = Omit<ChannelReadings, "x" | "z"> & {readonly x: number; readonly z: number};
 
 /** The channels and known readings after them, whose noise is white; those share one channel number, past the last of the line. */
 export function readingsWithPoints({line, channels}: ConditionedLine, points: readonly PointReading[]): Readings {
   const readings = readingsOf([
     ...ofChannels(line, channels),
-    ...points.map(({x, z, response, noise}) => ({x: Float64Array.of(x), z: Float64Array.of(z), response, noise})),
+    ...points.map(({x, z, ...point}) => ({x: Float64Array.of(x), z: Float64Array.of(z), ...point})),
   ]);
   readings.channel.fill(channels.length, readings.count - points.length);
   return readings;

@@ -1,4 +1,5 @@
 /** What was read, as the operator sees it: one entry a reading, channel after channel. */
+import type {Interval} from "../geometry/interval.ts";
 import {amplitudeIm, amplitudeRe, type Response} from "../potential/kernel.ts";
 import {chainInto, type Whitening} from "./correlated-noise.ts";
 
@@ -14,6 +15,8 @@ export interface Readings extends Whitening {
   readonly order: Uint8Array;
   /** Place of the channel in the line. */
   readonly channel: Uint8Array;
+  /** Where a reading is the mean of f over a stretch of the boundary: that, and the kernel is not looked at. Undefined where none is. */
+  readonly stretches: readonly (Interval | undefined)[] | undefined;
 }
 
 /** One channel's part. */
@@ -25,6 +28,8 @@ export interface ChannelReadings {
   readonly noise: number;
   /** Length over which the noise is correlated, m; absent or 0: it is white. */
   readonly noiseLength?: number | undefined;
+  /** What was read is the mean of f over this stretch of the boundary; absent: what the response says. */
+  readonly stretch?: Interval | undefined;
 }
 
 export function readingsOf(channels: readonly ChannelReadings[]): Readings {
@@ -53,7 +58,10 @@ export function readingsOf(channels: readonly ChannelReadings[]): Readings {
     readings.channel.fill(channel, at, end);
     at = end;
   });
-  return {...readings, correlated: readings.rho.some((rho) => rho > 0)};
+  const stretches = channels.some(({stretch}) => stretch !== undefined)
+    ? channels.flatMap(({x, stretch}) => Array.from(x, () => stretch))
+    : undefined;
+  return {...readings, correlated: readings.rho.some((rho) => rho > 0), stretches};
 }
 
 /** One channel of the downward component. */
@@ -77,5 +85,6 @@ export function pick(readings: Readings, order: Int32Array): Readings {
     rho: of(readings.rho),
     correlated: readings.correlated,
     channel: Uint8Array.from(order, (i) => readings.channel[i]),
+    stretches: readings.stretches && Array.from(order, (i) => readings.stretches![i]),
   };
 }

@@ -130,7 +130,7 @@ function sourceSquare(
     ),
   );
   const estimate = estimateSource(solver, choice, operator, readings, regional, values);
-  return {first, support, panels, ties, conditioned, readings, strips, curve, asked, choice, feasible, estimate};
+  return {first, support, panels, ties, rows, conditioned, readings, strips, curve, asked, choice, feasible, estimate};
 }
 
 /** The sources run square to the line. */
@@ -142,7 +142,7 @@ function studySquare(
 ): LineStudy {
   const {model, wanted} = settings;
   const source = sourceSquare(line, settings, zones, direction);
-  const {first, support, panels, ties, conditioned, readings, strips, curve, asked, choice, feasible, estimate} =
+  const {first, support, panels, ties, rows, conditioned, readings, strips, curve, asked, choice, feasible, estimate} =
     source;
   const {continuum, intervals} = intervalsOn(
     conditioned,
@@ -155,7 +155,7 @@ function studySquare(
       loosest: choice.basis === "assumed-bound" ? LOOSEST_FACTOR : 1,
       kind: wanted.intervals,
     },
-    tiesHeard(ties, conditioned),
+    tiesHeard(ties, rows, conditioned),
   );
   const remains = whitenedResiduals(conditioned, estimate, readings);
   const noises = noisesOf(conditioned, remains, estimate);

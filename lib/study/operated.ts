@@ -1,11 +1,11 @@
 /** A conditioned line with its operator and solver: what every later question is put to. */
-import type {Support} from "../geometry/interval.ts";
+import type {Interval, Support} from "../geometry/interval.ts";
 import type {IntervalKind} from "../inverse/interval-kind.ts";
-import {type IntervalSolver, intervalSolver} from "../inverse/intervals.ts";
 import {misfitTarget} from "../inverse/misfit-range.ts";
-import {type BandSolver, simultaneousSolver} from "../inverse/simultaneous.ts";
+import {type LineIntervals, solverByKind} from "../inverse/solver-by-kind.ts";
 import {type Continuum, continuumOf} from "../operators/continuum.ts";
 import {type ForwardOperator, forwardOperator} from "../operators/forward.ts";
+import {withKnownMeans} from "../operators/known-means.ts";
 import {levelCells} from "../operators/level-cells.ts";
 import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
 import {pick, type Readings} from "../operators/readings.ts";
@@ -131,9 +131,6 @@ export const withChannel = (conditioned: ConditionedLine, place: number): Condit
   channels: conditioned.channels.slice(place, place + 1),
 });
 
-/** Of a simultaneous band with its tally. */
-type LineIntervals = IntervalSolver & Partial<Pick<BandSolver, "tally">>;
-
 interface IntervalQuestion {
   readonly support: Support;
   readonly panels: Panels;
@@ -148,32 +145,40 @@ interface IntervalQuestion {
   readonly kind?: IntervalKind | undefined;
 }
 
-const SOLVER: Readonly<Record<IntervalKind, (...given: Parameters<typeof intervalSolver>) => LineIntervals>> = {
-  single: intervalSolver,
-  simultaneous: simultaneousSolver,
-};
+/** What is known of a line beside its channels. */
+export interface Known {
+  readonly readings: readonly {readonly point: PointReading; readonly value: number}[];
+  /** Means of f that are known exactly. */
+  readonly means: readonly {readonly stretch: Interval; readonly value: number}[];
+}
+
+const NOTHING: Known = {readings: [], means: []};
 
 /**
  * The solver for intervals on the readings of a line, f anywhere on the support.
- * @param known ties above the boundary, as readings
+ * @param known ties, as readings and as means
  */
 export function intervalsOn(
   conditioned: ConditionedLine,
   {support, panels, degree, bound, confidence, loosest = 1, kind = "single"}: IntervalQuestion,
-  known: readonly {readonly point: PointReading; readonly value: number}[] = [],
+  known = NOTHING,
 ): {readonly continuum: Continuum; readonly intervals: LineIntervals} {
   const readings = readingsWithPoints(
     conditioned,
-    known.map(({point}) => point),
+    known.readings.map(({point}) => point),
   );
-  const continuum = continuumOf(readings, support, boundaryOfPanels(panels));
+  const continuum = withKnownMeans(
+    continuumOf(readings, support, boundaryOfPanels(panels)),
+    known.means.map(({stretch}) => stretch),
+  );
   const sorted = regionalBasis(continuum, degree, conditioned.channels.length);
-  const values = Float64Array.of(...valuesOfLine(conditioned), ...known.map(({value}) => value));
+  const values = Float64Array.of(...valuesOfLine(conditioned), ...known.readings.map(({value}) => value));
   const data = whitenData(
     Float64Array.from(continuum.place, (i) => values[i]),
     continuum,
     sorted,
   );
-  const intervals = SOLVER[kind](continuum, sorted, data, {bound, confidence, loosest});
+  const met = Float64Array.from(known.means, ({value}) => value);
+  const intervals = solverByKind(kind, continuum, sorted, data, {bound, confidence, loosest}, met);
   return {continuum, intervals};
 }

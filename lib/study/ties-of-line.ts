@@ -13,6 +13,7 @@ import {DELIVERY_UNIT} from "../quantities.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {SurveyLine} from "../survey/line.ts";
 import type {Tie} from "../survey/tie.ts";
+import type {Known} from "./operated.ts";
 
 export interface LineTie {
   readonly tie: Tie;
@@ -117,6 +118,8 @@ export interface TieRow {
   readonly value: number;
   readonly exact: boolean;
   readonly point: PointReading;
+  /** What it is the mean of f over; undefined above the boundary. */
+  readonly stretch: Interval | undefined;
 }
 
 /** @param resolution of the line without ties on the boundary; asked for only where there are some */
@@ -136,23 +139,40 @@ export function tieRows(ties: readonly LineTie[], panels: Panels, resolution: ()
       value: tie.tie.value,
       exact: tie.tie.tolerance === 0,
       point: {x, z, response, noise: tie.tie.tolerance},
+      stretch,
     };
   });
 }
 
 /**
- * Ties above the boundary as further readings for the intervals; one to be met exactly is given a thousandth of the
- * noise, which only lengthens them.
+ * Ties as the intervals hear them: above the boundary further readings, where one to be met exactly is given a thousandth
+ * of the noise, which only lengthens them; on it means of f over their stretches, exact ones as known.
+ *
+ * @param rows the same ties put to the panels
  */
-export const tiesHeard = (ties: readonly LineTie[], {channels}: ConditionedLine) =>
-  ties
-    .filter(({above}) => above > 0)
-    .map(({tie, x, z, above, response}) => {
-      const [{noise, response: first}] = channels;
-      // A gradient in units of a field, or the other way: a height turns one into the other.
-      const turned = noise * above ** (first.order - response.order);
-      return {point: {x, z, response, noise: tie.tolerance > 0 ? tie.tolerance : 1e-3 * turned}, value: tie.value};
-    });
+export function tiesHeard(ties: readonly LineTie[], rows: readonly TieRow[], {channels}: ConditionedLine): Known {
+  const [{noise, response: first}] = channels;
+  const readings = ties.flatMap(({tie, x, z, above, response}, k) => {
+    const {stretch} = rows[k];
+    // On the boundary the downward component is f itself, times what it counts.
+    if (stretch !== undefined)
+      return tie.tolerance > 0
+        ? [
+            {
+              point: {x, z, response, noise: tie.tolerance / Math.abs(response.re), stretch},
+              value: tie.value / response.re,
+            },
+          ]
+        : [];
+    // A gradient in units of a field, or the other way: a height turns one into the other.
+    const turned = noise * above ** (first.order - response.order);
+    return [{point: {x, z, response, noise: tie.tolerance > 0 ? tie.tolerance : 1e-3 * turned}, value: tie.value}];
+  });
+  const means = rows.flatMap(({stretch, exact, value}, k) =>
+    stretch !== undefined && exact ? [{stretch, value: value / ties[k].response.re}] : [],
+  );
+  return {readings, means};
+}
 
 /**
  * Says which ties cannot be met within the bound, and the least norm that they need.

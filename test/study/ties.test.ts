@@ -216,3 +216,16 @@ test("by x, y a tie stands at the foot on its line, and one far to the side is r
   expect(error).toMatchObject({code: "tie/far", exitStatus: 2});
   expect(error.message).toMatch(/lies 300 m from/);
 });
+
+test.each(["single", "simultaneous"] as const)("%s intervals know the ties on the boundary", (intervals) => {
+  const strips = [{name: "at the tie", from: -4, to: 4, group: undefined}];
+  const halfWidth = (ties: readonly Tie[] | undefined): number => {
+    const settings = settingsWith(ties, {bound: boundRuleNamed("rms:3", 1), strips});
+    const study = studyLine(lineWith(0.05, 3), {...settings, wanted: {...settings.wanted, intervals}});
+    return study.strips[0].upper - study.strips[0].lower;
+  };
+  const without = halfWidth(undefined);
+  const value = attraction(0, 20);
+  expect(halfWidth([tieAt(0, value, {elevation: -5, tolerance: 0.2})])).toBeLessThan(0.98 * without);
+  expect(halfWidth([tieAt(0, value, {elevation: -5})])).toBeLessThan(0.98 * without);
+});
