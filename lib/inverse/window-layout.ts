@@ -4,7 +4,7 @@ import type {Continuum} from "../operators/continuum.ts";
 import type {LevelLine} from "../operators/level-cells.ts";
 
 /** Core and margin of a window in heights; what is lost is measured in the tests of `intervals.ts`. */
-export const WINDOW_CORE = 12;
+const WINDOW_CORE = 12;
 const WINDOW_MARGIN = 12;
 /** A window reaches out until it holds this many stations. */
 const LEAST_STATIONS = 48;

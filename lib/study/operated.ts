@@ -7,12 +7,14 @@ import {type Continuum, continuumOf} from "../operators/continuum.ts";
 import {type ForwardOperator, forwardOperator} from "../operators/forward.ts";
 import {withKnownMeans} from "../operators/known-means.ts";
 import {levelCells} from "../operators/level-cells.ts";
+import {multipoleOperator} from "../operators/multipole.ts";
 import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
 import {pick, type Readings} from "../operators/readings.ts";
 import {type PointReading, readingsOfLine, readingsWithPoints, valuesOfLine} from "../operators/readings-of-line.ts";
 import {type RegionalBasis, regionalBasis} from "../operators/regional.ts";
 import {whiten, whitenData} from "../operators/whitened.ts";
 import {constrain} from "../solvers/constraint.ts";
+import {iterativeSolver} from "../solvers/iterative.ts";
 import {levelSolver} from "../solvers/level.ts";
 import {levelSystem} from "../solvers/level-system.ts";
 import type {Solver} from "../solvers/solver.ts";
@@ -39,6 +41,9 @@ export const LEVEL_STATIONS = 600;
 /** Up to this many stations a level line falls back on its modes where the readings ask for a multiplier too small without. */
 const MODES_SERVE = 3000;
 
+/** From this many stations on a line of one channel that is not level is solved in steps: modes would take minutes. */
+const LONG_STATIONS = 4000;
+
 /**
  * @param degree of the regional, −1 for none; ties have none
  * @param ties what each asks of the panels
@@ -51,8 +56,11 @@ export function operated(
   ties: readonly TieRow[] = [],
   modes = false,
 ): Operated {
-  const level = modes || ties.length > 0 ? undefined : levelOperated(conditioned, panels, degree);
-  if (level !== undefined) return level;
+  const without =
+    modes || ties.length > 0
+      ? undefined
+      : (levelOperated(conditioned, panels, degree) ?? longOperated(conditioned, panels, degree));
+  if (without !== undefined) return without;
   const soft = ties.filter(({exact}) => !exact);
   const exact = ties.filter((tie) => tie.exact);
   const readings = readingsWithPoints(
@@ -105,6 +113,24 @@ function levelOperated(conditioned: ConditionedLine, panels: Panels, degree: num
     operator: undefined,
     solver: inOrderOfFile(solver, order),
   };
+}
+
+/** A long line of one channel, however uneven; undefined for any other. */
+function longOperated(conditioned: ConditionedLine, panels: Panels, degree: number): Operated | undefined {
+  if (conditioned.channels.length > 1 || conditioned.line.stations.count < LONG_STATIONS) return undefined;
+  const readings = readingsOfLine(conditioned);
+  const values = valuesOfLine(conditioned);
+  const regional = regionalBasis(readings, degree);
+  const operator = multipoleOperator(readings, panels);
+  const solver = iterativeSolver(operator, readings, whitenData(values, readings, regional), regional);
+  const field = (estimate: Solver["estimate"]) => (multiplier: number) =>
+    operator.applyInto(new Float64Array(readings.count), estimate(multiplier));
+  const told = (own: Solver): Solver => ({
+    ...own,
+    field: field(own.estimate),
+    withNoise: (factor) => told(own.withNoise(factor)),
+  });
+  return {readings, values, regional, operator: undefined, solver: told(solver)};
 }
 
 /** @param order `order[k]` is the place in the file of the k-th from the left */

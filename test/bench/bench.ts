@@ -14,10 +14,11 @@ import {BENCH_FOLDER} from "./measured.ts";
 import {machineLines, resultsText, type Told, tableOf} from "./results.ts";
 import {rulesCase} from "./rules-case.ts";
 import {startCase} from "./start-case.ts";
+import {unevenLineCase} from "./uneven-line-case.ts";
 
 const CASES = [lineCase, gridCase, crossingsCase, startCase];
 /** Slower, and of answers rather than speed: run by name alone. */
-const ON_REQUEST = [rulesCase, coverageCase, bandCase, assumedCase];
+const ON_REQUEST = [rulesCase, coverageCase, bandCase, assumedCase, unevenLineCase];
 const NAMED = [...CASES, ...ON_REQUEST];
 
 const asked = process.argv.slice(2);
