@@ -5,7 +5,8 @@
  * Reflections are applied 32 at a time as I − V S Vᵀ, S triangular, so that the work is in
  * matrix products. Source: R. Schreiber & C. Van Loan, SIAM J. Sci. Stat. Comput. 10 (1989) 53–57.
  */
-import {addProductTransposed, block} from "./tile-product.ts";
+import {block} from "./block.ts";
+import {addProductTransposed} from "./tile-product.ts";
 import type {Tridiagonal} from "./tridiagonalise.ts";
 
 /** Reflections applied at once; a heuristic. */

@@ -4,8 +4,10 @@
  * Source: Golub & Van Loan, Matrix Computations, §4.2; N. Higham, Accuracy and
  * Stability of Numerical Algorithms, §10.1 and §10.3.
  */
+
 import {NumericalError} from "../errors.ts";
-import {addProductTransposed, block} from "./tile-product.ts";
+import {block} from "./block.ts";
+import {addProductTransposed} from "./tile-product.ts";
 
 /** Columns finished before the rest is updated; a heuristic. */
 const PANEL = 48;

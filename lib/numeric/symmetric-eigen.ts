@@ -14,28 +14,28 @@ import {type Tridiagonal, tridiagonaliseInPlace} from "./tridiagonalise.ts";
 export interface SymmetricEigen {
   /** n eigenvalues, descending. */
   readonly values: Float64Array;
-  /** n × n row-major: row k is the unit eigenvector of `values[k]`. */
+  /** One row an eigenvalue, as far as they were asked for: row k is the unit eigenvector of `values[k]`. */
   readonly vectors: Float64Array;
 }
 
 /**
  * Eigenvalues and eigenvectors.
  *
+ * @param floor the vectors of eigenvalues that are not above it are not worked out; all are by default
  * @param a n × n row-major, symmetric (the lower triangle is read), not modified
  * @throws {NumericalError} `numeric/not-finite` if an entry is NaN or infinite
  */
-export function symmetricEigen(a: Float64Array, n: number): SymmetricEigen {
+export function symmetricEigen(a: Float64Array, n: number, floor = -Infinity): SymmetricEigen {
   const {reduced, scale} = reduce(a, n);
   const d = reduced.diagonal;
   const z = tridiagonalDivideInPlace(d, reduced.offDiagonal);
   const values = new Float64Array(n);
-  const vectors = new Float64Array(n * n);
-  for (let k = 0; k < n; ++k) {
-    const from = n - 1 - k;
-    values[k] = d[from] * scale;
-    vectors.set(z.subarray(from * n, (from + 1) * n), k * n);
-  }
-  return {values, vectors: backTransformInPlace(vectors, n, reduced)};
+  for (let k = 0; k < n; ++k) values[k] = d[n - 1 - k] * scale;
+  let count = 0;
+  while (count < n && values[count] > floor) ++count;
+  const vectors = new Float64Array(count * n);
+  for (let k = 0; k < count; ++k) vectors.set(z.subarray((n - 1 - k) * n, (n - k) * n), k * n);
+  return {values, vectors: backTransformInPlace(vectors, count, reduced)};
 }
 
 /** Eigenvalues alone, descending, at about a third of the cost. Arguments and errors as `symmetricEigen`. */

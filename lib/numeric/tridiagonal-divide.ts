@@ -9,8 +9,9 @@
  * Source: J. Cuppen, Numer. Math. 36 (1981) 177–195; M. Gu & S. Eisenstat, SIAM J. Matrix
  * Anal. Appl. 16 (1995) 172–191.
  */
+import {block} from "./block.ts";
 import {secularRootInto} from "./secular-equation.ts";
-import {addProductTransposed, block} from "./tile-product.ts";
+import {addProductTransposed} from "./tile-product.ts";
 import {tridiagonalQlInPlace} from "./tridiagonal-ql.ts";
 
 /** Blocks of up to this size go to QL; a heuristic. */

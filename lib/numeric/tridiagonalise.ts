@@ -9,7 +9,8 @@
  * Source: J. Dongarra, D. Sorensen & S. Hammarling, J. Comput. Appl. Math. 27
  * (1989) 215–227, the block form; Golub & Van Loan, Matrix Computations, §8.3.
  */
-import {addProductTransposed, block} from "./tile-product.ts";
+import {block} from "./block.ts";
+import {addProductTransposed} from "./tile-product.ts";
 
 /** Rows in one panel; a heuristic, flat between 16 and 48. */
 const PANEL = 32;

@@ -12,10 +12,11 @@
  * where Nyström's method needs 20 a/h nodes.
  */
 import {InputError, NumericalError} from "../errors.ts";
+import {block} from "../numeric/block.ts";
 import {secondKindImaginaryInto, secondKindWorkspace} from "../numeric/legendre-second-kind.ts";
 import {gaussLegendre} from "../numeric/quadrature.ts";
 import {symmetricEigen, symmetricEigenvalues} from "../numeric/symmetric-eigen.ts";
-import {addProductTransposed, block} from "../numeric/tile-product.ts";
+import {addProductTransposed} from "../numeric/tile-product.ts";
 import {decayLaw, modeDecayRate, modesByLaw} from "./mode-decay.ts";
 
 /** Largest Legendre basis, both parities together: two dense problems of half that order. */

@@ -5,11 +5,13 @@
  * Squaring costs nothing here: multipliers below `USABLE` of the largest eigenvalue are never asked for, since
  * they would trust the readings beyond six digits.
  */
+
 import {
   crossProductInto,
   matVecInto,
   multiplyInto,
   multiplyTransposedInto,
+  outerProductInto,
   transposedMatVecInto,
 } from "../numeric/matmul.ts";
 import {symmetricEigen} from "../numeric/symmetric-eigen.ts";
@@ -54,27 +56,12 @@ function smallerHalf(matrix: Float64Array, rows: number, columns: number, floor:
   const size = tall ? columns : rows;
   const gram = new Float64Array(size * size);
   if (tall) crossProductInto(gram, matrix, rows, columns);
-  else lowerProductInto(gram, matrix, rows, columns);
-  const {values, vectors} = symmetricEigen(gram, size);
+  else outerProductInto(gram, matrix, rows, columns);
+  const {values, vectors} = symmetricEigen(gram, size, floor);
   const least = Math.max(floor, USABLE * Math.max(values[0] ?? 0, 0));
   let count = 0;
   while (count < size && values[count] > least) ++count;
   return {count, eigenvalues: values.slice(0, count), vectors: vectors.subarray(0, count * size)};
-}
-
-/** Rows of BBᵀ formed at a time; a heuristic. */
-const STRIP = 64;
-
-/** The lower triangle of BBᵀ, which is all that the eigen-decomposition reads; what stands above is not set. */
-function lowerProductInto(target: Float64Array, matrix: Float64Array, rows: number, columns: number): Float64Array {
-  const strip = new Float64Array(STRIP * rows);
-  for (let first = 0; first < rows; first += STRIP) {
-    const last = Math.min(rows, first + STRIP);
-    multiplyTransposedInto(strip, matrix.subarray(first * columns), matrix, last - first, columns, last);
-    for (let i = first; i < last; ++i)
-      target.set(strip.subarray((i - first) * last, (i - first) * last + i + 1), i * rows);
-  }
-  return target;
 }
 
 const overRoots = (vectors: Float64Array, length: number, eigenvalues: Float64Array): Float64Array => {

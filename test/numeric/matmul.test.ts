@@ -2,9 +2,12 @@ import {describe, expect, test} from "vitest";
 import {
   crossProductInto,
   matVecInto,
+  matVecsInto,
   multiplyInto,
   multiplyTransposedInto,
+  outerProductInto,
   transposedMatVecInto,
+  transposedMatVecsInto,
 } from "../../lib/numeric/matmul.ts";
 import {normalDeviates, seededRandom} from "../../lib/numeric/random.ts";
 import {assertClose} from "../harness/assert-close.ts";
@@ -63,7 +66,32 @@ describe("dense products", () => {
           expect(c[i * n + j]).toBe(c[j * n + i]);
         }
       }
+      const transposed = new Float64Array(m * n);
+      for (let l = 0; l < m; ++l) for (let j = 0; j < n; ++j) transposed[j * m + l] = a[l * n + j];
+      expect(outerProductInto(new Float64Array(n * n).fill(7), transposed, n, m)).toEqual(c);
     }
+  });
+
+  test("several vectors at once have the bits that each has alone", () => {
+    for (const count of [1, 2, 3, 4])
+      for (const [m, n] of [
+        [1, 1],
+        [6, 5],
+        [7, 4],
+        [9, 11],
+      ] as const) {
+        const a = deviates(m * n, 7);
+        const x = deviates(count * n, 8);
+        const y = deviates(count * m, 9);
+        const ax = matVecsInto(new Float64Array(count * m).fill(9), a, x, m, n, count);
+        const aty = transposedMatVecsInto(new Float64Array(count * n).fill(9), a, y, m, n, count);
+        for (let k = 0; k < count; ++k) {
+          const right = x.subarray(k * n, (k + 1) * n);
+          const left = y.subarray(k * m, (k + 1) * m);
+          expect(ax.subarray(k * m, (k + 1) * m)).toEqual(matVecInto(new Float64Array(m), a, right, m, n));
+          expect(aty.subarray(k * n, (k + 1) * n)).toEqual(transposedMatVecInto(new Float64Array(n), a, left, m, n));
+        }
+      }
   });
 
   test("the two matrix-vector products are adjoint", () => {
@@ -86,6 +114,11 @@ describe("dense products", () => {
         let want = 0;
         for (let j = 0; j < n; ++j) want += a[i * n + j] * x[j];
         assertClose(ax[i], want, {factor: n + 2, scale: 10 * n, because: "n products below 10"});
+      }
+      for (let j = 0; j < n; ++j) {
+        let want = 0;
+        for (let i = 0; i < m; ++i) want += a[i * n + j] * y[i];
+        assertClose(aty[j], want, {factor: m + 2, scale: 10 * m + 1, because: "m products below 10"});
       }
     }
   });

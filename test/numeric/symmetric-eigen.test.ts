@@ -138,6 +138,17 @@ describe("symmetricEigen", () => {
     );
   });
 
+  test("a floor leaves out vectors and moves nothing else", () => {
+    const a = poisson(90);
+    const all = symmetricEigen(a, 90);
+    for (const kept of [0, 1, 40, 90]) {
+      const floor = kept === 90 ? -1 : all.values[kept];
+      const some = symmetricEigen(a, 90, floor);
+      expect(some.values).toEqual(all.values);
+      expect(some.vectors).toEqual(all.vectors.subarray(0, kept * 90));
+    }
+  });
+
   test("the upper triangle is not read", () => {
     const a = random(50, 4);
     const noisy = a.slice();
