@@ -126,7 +126,11 @@ describe("README", () => {
 
   test("every option, file and folder it names exists", async () => {
     const help = (
-      await Promise.all(["inspect", "continue", "plan", "gather", "spectrum"].map((name) => run([name, "--help"])))
+      await Promise.all(
+        ["inspect", "continue", "plan", "crossings", "gather", "worker", "spectrum"].map((name) =>
+          run([name, "--help"]),
+        ),
+      )
     )
       .map(({out}) => out)
       .join("\n");

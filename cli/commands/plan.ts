@@ -13,8 +13,8 @@ export const planCommand: AddCommand = (create, host, finish) => {
       [
         "",
         "Example:",
-        "  groundward plan --observable gravity --clearance 20 --clearance 40 --spacing 2 --noise 0.5 \\",
-        "      --bound rms:30 --strip-width 10 --strip-width 20 --strip-strength 200000",
+        "  groundward plan --observable field-vertical --clearance 10 --clearance 20 --spacing 4 --noise 0.5 \\",
+        "      --bound rms:100 --strip-width 30 --length 320 --strip-strength 0.5",
       ].join("\n"),
     );
   return command.action(async () => {
