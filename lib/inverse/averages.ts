@@ -1,9 +1,9 @@
 /** Resolution of the estimate along the support, and averages of f no narrower than it. */
-import type {Interval, Support} from "../geometry/interval.ts";
+import type {Interval as Stretch, Support} from "../geometry/interval.ts";
 import {lengthOf} from "../geometry/interval.ts";
 import {densityAt, type Functional, meanOver} from "../operators/functional.ts";
 import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
-import type {IntervalSolver} from "./intervals.ts";
+import type {Interval, IntervalSolver} from "./intervals.ts";
 import type {PanelAverages, Resolution} from "./nouns.ts";
 
 /**
@@ -35,7 +35,7 @@ export function resolutionOf(
 }
 
 /** Resolution at x, between panel centres as their weighted geometric mean so that no panel shows in it, and its part of the support; undefined off the support. */
-function localAt(panels: Panels, local: Float64Array, x: number): {length: number; part: Interval} | undefined {
+function localAt(panels: Panels, local: Float64Array, x: number): {length: number; part: Stretch} | undefined {
   for (const {interval, first, count} of panels.components) {
     if (x < interval.from || x > interval.to) continue;
     const place = Math.min(Math.max((x - panels.centre[first]) / panels.width[first], 0), count - 1);
@@ -51,7 +51,7 @@ function localAt(panels: Panels, local: Float64Array, x: number): {length: numbe
 }
 
 /** The stretch that an average at x is taken over: the resolution there, at least that of the line, inside the part of the support that holds x. */
-export function stretchAt(panels: Panels, resolution: Resolution, x: number): Interval | undefined {
+export function stretchAt(panels: Panels, resolution: Resolution, x: number): Stretch | undefined {
   const found = localAt(panels, resolution.local, x);
   if (found === undefined) return undefined;
   const {part} = found;
@@ -82,9 +82,17 @@ export function averagesOn(
   const lower = new Float64Array(panels.count);
   const upper = new Float64Array(panels.count);
   const averagedOver = new Float64Array(panels.count);
+  // Beyond the ends of the line many panels are averaged over all of the support: asked once, for long means are costly.
+  const asked = new Map<string, Interval>();
+  const mean = (stretch: Stretch): Interval => {
+    const key = `${stretch.from}:${stretch.to}`;
+    const found = asked.get(key) ?? solver.interval(meanOver(stretch, support, boundary));
+    asked.set(key, found);
+    return found;
+  };
   for (let j = 0; j < panels.count; ++j) {
     const stretch = stretchAt(panels, resolution, panels.centre[j])!;
-    const answer = solver.interval(meanOver(stretch, support, boundary));
+    const answer = mean(stretch);
     value[j] = answer.value;
     lower[j] = answer.value - answer.halfWidth;
     upper[j] = answer.value + answer.halfWidth;

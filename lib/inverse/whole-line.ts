@@ -10,8 +10,13 @@
  * Sources: Cai & Sarkis, SIAM J. Sci. Comput. 21 (1999) 792; Saad & Schultz, SIAM J. Sci. Stat. Comput. 7 (1986) 856
  * (both from memory).
  */
+
+import {boundaryAt} from "../geometry/boundary-line.ts";
 import {matVecInto, transposedMatVecInto} from "../numeric/matmul.ts";
 import {type Continuum, gramTimes, nodeMatrix, nodesFor} from "../operators/continuum.ts";
+import {multipoleOperator} from "../operators/multipole.ts";
+import {panelsOn} from "../operators/panels.ts";
+import {whitenedOperator} from "../operators/whitened-operator.ts";
 import type {DataModes} from "../spectral/singular-system.ts";
 
 /** The readings `first … last − 1` and their modes. */
@@ -40,13 +45,20 @@ const ENOUGH = 1e-8;
 const MOST_STEPS = 60;
 /** Entries of readings × nodes that are kept for the products, 240 MB; beyond, kernels are computed anew each time. A heuristic. */
 const KEPT = 3e7;
-/** @param patches side by side from the first reading to the last */
-export function wholeLine(continuum: Continuum, patches: readonly Patch[]): WholeLine {
+/** Panels of the products that lead to a solution, over the lowest height: what they average away is short waves, of which G holds least. */
+const PANEL = 0.125;
+
+/**
+ * @param patches side by side from the first reading to the last
+ * @param kept entries of readings × nodes that may be kept
+ */
+export function wholeLine(continuum: Continuum, patches: readonly Patch[], kept = KEPT): WholeLine {
   const {x, count} = continuum;
   const own = ownReadings(x, patches);
   const nodes = nodesFor(continuum, 0, count);
-  const matrix = count * nodes.count <= KEPT ? nodeMatrix(continuum, nodes, 0, count) : undefined;
+  const matrix = count * nodes.count <= kept ? nodeMatrix(continuum, nodes, 0, count) : undefined;
   const onNodes = new Float64Array(nodes.count);
+  let quick: ((vector: Float64Array) => Float64Array) | undefined;
   const gram = (vector: Float64Array): Float64Array => {
     if (matrix === undefined) return gramTimes(continuum, vector, 1);
     transposedMatVecInto(onNodes, matrix, vector, count, nodes.count);
@@ -67,14 +79,29 @@ export function wholeLine(continuum: Continuum, patches: readonly Patch[]): Whol
   return {
     gram,
     solve(a, vector) {
+      quick ??= matrix === undefined ? quickGram(continuum) : gram;
       const normal = (c: Float64Array): Float64Array => {
-        const image = gram(c);
+        const image = quick!(c);
         for (let i = 0; i < count; ++i) image[i] += a * c[i];
         return image;
       };
       return minimalResidual(normal, (residual) => smoothed(residual, a), vector);
     },
   };
+}
+
+/**
+ * Nearly G v, by multipoles over panels in place of the continuum, for lines so long that kernels are not kept. It leads
+ * to nearly the best c; what that is worth is then measured by G itself.
+ */
+function quickGram(continuum: Continuum): (vector: Float64Array) => Float64Array {
+  const {x, z, support, boundary, count, stretches, known} = continuum;
+  if (stretches !== undefined || known !== undefined) return (vector) => gramTimes(continuum, vector, 1);
+  const lowest = z.reduce((least, height, i) => Math.min(least, height - boundaryAt(boundary, x[i])), Infinity);
+  const panels = panelsOn(support, PANEL * lowest, boundary);
+  const operator = whitenedOperator(multipoleOperator(continuum, panels), continuum);
+  const onPanels = new Float64Array(panels.count);
+  return (vector) => operator.applyInto(new Float64Array(count), operator.adjointInto(onPanels, vector));
 }
 
 /** Where each patch's own readings begin among the sorted ones; the first and the last take what lies beyond them. */
