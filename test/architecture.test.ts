@@ -144,6 +144,14 @@ describe("the house", () => {
     expect(sources.flatMap(violations)).toEqual([]);
   });
 
+  test("the top floor holds the rooms and nothing else", () => {
+    const folders = readdirSync(ROOT, {withFileTypes: true}).filter((entry) => entry.isDirectory());
+    const strange = folders.filter(
+      ({name}) => !/^(\.|out|(cli|lib|data-demo|test|dist|node_modules|coverage)$)/.test(name),
+    );
+    expect(strange.map(({name}) => name)).toEqual([]);
+  });
+
   test("there is one host, and it is the one that reads and prints", () => {
     const host = sourcesUnder("cli").find(({path}) => path === "cli/host.ts");
     expect(host?.text).toMatch(/from "node:fs\/promises"/);

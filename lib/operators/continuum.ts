@@ -295,35 +295,3 @@ export function gramTimes(continuum: Continuum, vectors: Float64Array, terms: nu
   }
   return result;
 }
-
-/** ‖Σ c_i p_i‖² in L²(S), for whitened responses p_i. */
-export function responseNormSquared(continuum: Continuum, weights: Float64Array): number {
-  if (continuum.stretches !== undefined || continuum.known !== undefined)
-    return gramTimes(continuum, weights, 1).reduce((sum, value, i) => sum + value * weights[i], 0);
-  const nodes = nodesFor(continuum, 0, continuum.count);
-  const {x, z, aRe, aIm, order, count} = continuum;
-  const shares = weights.map((weight, i) => weight / continuum.noise[i]);
-  // What the weight of a reading takes off the one before it, which stands to its left.
-  for (let i = 0; continuum.correlated && i < count; ++i) {
-    const k = continuum.before[i];
-    if (k >= 0) shares[k] -= (continuum.rho[i] * weights[i]) / continuum.noise[i];
-  }
-  // One kind of kernel is the common case, and its loop the hot one.
-  const vertical = aRe.every((re) => re === 0) && order.every((m) => m === 0);
-  for (let i = 0; vertical && i < count; ++i) shares[i] *= -aIm[i];
-  let total = 0;
-  for (let k = 0; k < nodes.count; ++k) {
-    const at = nodes.at[k];
-    const y = nodes.y[k];
-    let sum = 0;
-    if (vertical)
-      for (let i = 0; i < count; ++i) {
-        const s = at - x[i];
-        const drop = z[i] - y;
-        sum += (shares[i] * drop) / (s * s + drop * drop);
-      }
-    else for (let i = 0; i < count; ++i) sum += shares[i] * kernelAt(aRe[i], aIm[i], order[i], at - x[i], z[i] - y);
-    total += (sum * nodes.rootWeight[k]) ** 2;
-  }
-  return total;
-}
