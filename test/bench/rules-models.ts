@@ -9,6 +9,8 @@ import {type Panels, panelsOn} from "../../lib/operators/panels.ts";
 import {verticalReadings} from "../../lib/operators/readings.ts";
 import {regionalBasis} from "../../lib/operators/regional.ts";
 import {type WhitenedSystem, whiten} from "../../lib/operators/whitened.ts";
+import {massesAt} from "../harness/four-masses.ts";
+import {evenly} from "../harness/synthetic-line.ts";
 
 export interface Model {
   readonly name: string;
@@ -21,19 +23,6 @@ export interface Model {
   readonly at: Float64Array;
   readonly truth: Float64Array;
 }
-
-const evenly = (from: number, to: number, count: number): Float64Array =>
-  Float64Array.from({length: count}, (_, i) => from + ((to - from) * i) / (count - 1));
-
-/** [x, depth below the line, strength]: g = Σ l (z − y)/((x − x_i)² + (z − y)²), y downward from 10 or 20 above the ground. */
-const MASSES = [
-  [-60, 36, 36],
-  [0, 30, 30],
-  [14, 30, 24],
-  [70, 45, 54],
-] as const;
-const massesAt = (x: number, down: number): number =>
-  MASSES.reduce((sum, [at, z, l]) => sum + (l * (z - down)) / ((x - at) ** 2 + (z - down) ** 2), 0);
 
 /** @param ground below the datum of the masses; @param height of the stations above the ground */
 function longLine(name: string, ground: number, height: (x: number) => number): Model {

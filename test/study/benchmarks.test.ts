@@ -17,21 +17,13 @@ import {spectralSolver} from "../../lib/solvers/spectral.ts";
 import {dataCoefficients, singularSystem} from "../../lib/spectral/singular-system.ts";
 import {studyLine} from "../../lib/study/line-study.ts";
 import {absoluteClose} from "../harness/assert-close.ts";
+import {MASSES, massesAt} from "../harness/four-masses.ts";
 import {VERTICAL} from "../harness/interval-case.ts";
 import {evenly, plainSettings, syntheticLine, withNoise} from "../harness/synthetic-line.ts";
 
 const level0 = {kind: "above-boundary", height: 0} as const;
 const most = (values: Float64Array): number => values.reduce((m, v) => Math.max(m, Math.abs(v)), 0);
 
-/** [x, depth below the line, strength]: g = Σ l (z − y)/((x − x_i)² + (z − y)²), y downward from the line. */
-const MASSES = [
-  [-60, 36, 36],
-  [0, 30, 30],
-  [14, 30, 24],
-  [70, 45, 54],
-] as const;
-const fieldAt = (x: number, down: number): number =>
-  MASSES.reduce((sum, [at, z, l]) => sum + (l * (z - down)) / ((x - at) ** 2 + (z - down) ** 2), 0);
 const chainage = evenly(-200, 200, 401);
 const inner = chainage.map((_, i) => i).filter((i) => Math.abs(chainage[i]) <= 120);
 /** Root-mean-square error over root-mean-square of the truth `depth` below the line, on |x| ≤ 120. */
@@ -39,7 +31,7 @@ function score(values: Float64Array, depth: number): number {
   let error = 0;
   let truth = 0;
   for (const i of inner) {
-    const want = fieldAt(chainage[i], depth);
+    const want = massesAt(chainage[i], depth);
     error += (values[i] - want) ** 2;
     truth += want ** 2;
   }
@@ -48,7 +40,7 @@ function score(values: Float64Array, depth: number): number {
 const DRAWS = 16;
 
 describe("a long line over four line masses, 10 m up, 1 m between readings", () => {
-  const clean = chainage.map((x) => fieldAt(x, 0));
+  const clean = chainage.map((x) => massesAt(x, 0));
   const support = [{from: -400, to: 400, group: undefined}];
 
   test.each([
@@ -79,8 +71,8 @@ describe("a long line over four line masses, 10 m up, 1 m between readings", () 
       absoluteClose(score(study.levels[0].value, 10) / score(found, 10), 1, 1e-6, "the same modes and multiplier");
       const {value, lower, upper} = study.levels[0];
       for (const i of inner) {
-        expect(lower[i]).toBeLessThan(fieldAt(chainage[i], 10));
-        expect(upper[i]).toBeGreaterThan(fieldAt(chainage[i], 10));
+        expect(lower[i]).toBeLessThan(massesAt(chainage[i], 10));
+        expect(upper[i]).toBeGreaterThan(massesAt(chainage[i], 10));
         expect(value[i]).toBeGreaterThan(lower[i]);
         expect(value[i]).toBeLessThan(upper[i]);
       }
@@ -138,7 +130,7 @@ describe("the same masses, field and gradient", () => {
       const z = new Float64Array(401).fill(height);
       const got = meanScore(
         [
-          {z, response: gravity.response(), clean: chainage.map((x) => fieldAt(x, 0))},
+          {z, response: gravity.response(), clean: chainage.map((x) => massesAt(x, 0))},
           {z, response: gravityGradient.response(), clean: chainage.map(gradientAt)},
         ],
         share,
@@ -156,7 +148,7 @@ describe("the same masses under a flight from 4 to 16 m over the ground", () => 
   const heights = chainage.map(
     (x) => 10 + 4 * Math.sin((2 * Math.PI * x) / 53) + 2 * Math.sin((2 * Math.PI * x) / 31 + 1),
   );
-  const clean = chainage.map((x, i) => fieldAt(x, 10 - heights[i]));
+  const clean = chainage.map((x, i) => massesAt(x, 10 - heights[i]));
   const response = gravity.response();
   const lowest = heights.reduce((least, h) => Math.min(least, h), Infinity);
 
