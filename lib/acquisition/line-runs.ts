@@ -3,7 +3,7 @@
  * of one heading. Every cell used is checked on the way. Memory: the longest line and one block of rows.
  */
 import type {Table} from "../formats/delimited.ts";
-import {parseCell, requireNumber} from "../formats/number-cell.ts";
+import {type DecimalMark, requireNumber} from "../formats/number-cell.ts";
 import {foldLongitude} from "../geometry/transformation.ts";
 import {cutBefore, LEAST_STATIONS, type TrackPoint} from "./auto-split.ts";
 import {type ColumnChoice, isText} from "./choose-columns.ts";
@@ -63,7 +63,6 @@ async function* runsOfTable(table: Table, choices: readonly ColumnChoice[], plan
   const rows = growingColumn();
   const times = growingColumn();
   const required = used.map(({role}) => plan.required.has(role));
-  const numbers = new Float64Array(used.length);
   const track = trackOf(columns, times);
   let name: string | undefined;
   let begun = false;
@@ -90,21 +89,18 @@ async function* runsOfTable(table: Table, choices: readonly ColumnChoice[], plan
     return run;
   };
 
-  for await (const block of table.blocks())
-    for (let r = 0; r < block.rows.length; ++r) {
-      const cells = block.rows[r]!;
+  const texts = [line, time].flatMap((choice) => choice?.index ?? []);
+  for await (const block of table.columns({numbers: used.map(({index}) => index), texts})) {
+    const names = line === undefined ? undefined : block.texts[0]!;
+    const clocks = time === undefined ? undefined : block.texts.at(-1)!;
+    for (let r = 0; r < block.count; ++r) {
       const row = block.rowNumbers[r]!;
+      if (r === block.unread?.at) refuse(used, block.unread.cells, decimal, file, row);
       let whole = true;
-      for (let c = 0; c < used.length; ++c) {
-        const {index, column} = used[c]!;
-        const text = cells[index]!;
-        numbers[c] = parseCell(text, decimal) ?? requireNumber(text, decimal, {file, row, column});
-        if (required[c] && Number.isNaN(numbers[c])) whole = false;
-      }
-      const seconds =
-        time === undefined ? NaN : requireTime(cells[time.index]!, decimal, {file, row, column: time.column});
-      if (line !== undefined) {
-        const next = cells[line.index]!.trim();
+      for (let c = 0; c < used.length; ++c) if (required[c] && Number.isNaN(block.numbers[c]![r])) whole = false;
+      const seconds = clocks === undefined ? NaN : requireTime(clocks[r]!, decimal, {file, row, column: time!.column});
+      if (names !== undefined) {
+        const next = names[r]!.trim();
         if (next === "") {
           ++unnamed;
           continue;
@@ -123,7 +119,7 @@ async function* runsOfTable(table: Table, choices: readonly ColumnChoice[], plan
       }
       rows.push(row);
       times.push(seconds);
-      for (let c = 0; c < used.length; ++c) growing[c]!.push(numbers[c]!);
+      for (let c = 0; c < used.length; ++c) growing[c]!.push(block.numbers[c]![r]!);
       if (plan.split !== "auto") continue;
       const cut = cutBefore(track, rows.length - 1);
       if (cut === undefined) continue;
@@ -137,8 +133,22 @@ async function* runsOfTable(table: Table, choices: readonly ColumnChoice[], plan
       }
       firstRow = rows.at(0);
     }
+  }
   if (!begun) return;
   yield takeRun(rows.length, cutOnce && rows.length < LEAST_STATIONS);
+}
+
+/** @throws {InputError} for the first of the cells that is no number */
+function refuse(
+  used: readonly ColumnChoice[],
+  cells: readonly string[],
+  decimal: DecimalMark,
+  file: string,
+  row: number,
+): void {
+  used.forEach(({column}, c) => {
+    requireNumber(cells[c]!, decimal, {file, row, column});
+  });
 }
 
 /** The run without the stations that lack a number in one of `roles`. */

@@ -9,6 +9,7 @@ import {type Definition, DOS_END, type ProjectionEntry, parseDefinition} from ".
 import {isOverflow} from "./aseg-gdf2-format.ts";
 import {cutRow, type Layout, layoutsOf, type Misfit} from "./aseg-gdf2-layout.ts";
 import type {ByteSource} from "./byte-source.ts";
+import {columnsOfRows} from "./column-block.ts";
 import type {Table, TableBlock} from "./delimited.ts";
 import {detectEncoding, type TextEncoding} from "./text-encoding.ts";
 import {type TextRow, textRows} from "./text-rows.ts";
@@ -59,6 +60,7 @@ export async function openGdf2(files: Gdf2Files): Promise<Gdf2Table> {
     decimal: ".",
     notices,
     blocks: () => blocks(reading),
+    columns: (asked) => columnsOfRows(blocks(reading), ".", asked),
     definition: definition.file,
     projection: definition.projection,
     description: files.description === undefined ? "" : withoutRecordNames(await wholeText(files.description)),

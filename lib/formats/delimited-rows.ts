@@ -20,10 +20,19 @@ export interface RawRow {
   readonly cells: readonly string[];
 }
 
+/** Where reading begins: a byte of the file, and the row that begins there. */
+export interface RowStart {
+  readonly offset: number;
+  readonly row: number;
+  /** Where the first piece read ends, so that the pieces are those of a reading from the beginning. */
+  readonly chunkEnd: number;
+}
+
 /**
  * The rows of a text in bunches, header included, blank lines left out.
  *
  * @param chunkBytes bytes read at a time
+ * @param from the beginning of a row; absent: of the text
  * @throws {InputError} `table/cell-too-large`, `table/row-too-large`, `table/quote`
  */
 export async function* delimitedRows(
@@ -31,12 +40,12 @@ export async function* delimitedRows(
   encoding: TextEncoding,
   delimiter: Delimiter,
   chunkBytes: number,
+  from: RowStart = {offset: encoding.start, row: 1, chunkEnd: encoding.start + chunkBytes},
 ): AsyncGenerator<readonly RawRow[]> {
   let rows: RawRow[] = [];
-  const count = rowCounter();
+  const count = rowCounter(from.row);
   const parser = parse({
     delimiter,
-    encoding: encoding.name,
     record_delimiter: ["\r\n", "\n", "\r"],
     relax_column_count: true,
     skip_empty_lines: true,
@@ -53,10 +62,11 @@ export async function* delimitedRows(
   // Each failure also reaches the callback of the write that caused it.
   parser.on("error", () => undefined);
   try {
-    for (let offset = encoding.start; offset < source.size; offset += chunkBytes) {
-      const bytes = await source.read(offset, Math.min(chunkBytes, source.size - offset));
+    let chunkEnd = Math.min(from.chunkEnd, source.size);
+    for (let offset = from.offset; offset < source.size; offset = chunkEnd, chunkEnd += chunkBytes) {
+      const bytes = await source.read(offset, Math.min(chunkEnd, source.size) - offset);
       // csv-parse keeps a view of the last bytes of a chunk; the source may reuse its buffer.
-      await settle((done) => parser.write(Buffer.from(bytes), done));
+      await settle((done) => parser.write(asUtf8(bytes, encoding.name), done));
       if (rows.length > 0) {
         refuseLargeCells(rows, source.name);
         yield rows;
@@ -69,11 +79,18 @@ export async function* delimitedRows(
       yield rows;
     }
   } catch (error) {
-    throw isCsvError(error) ? explained(error, source.name, delimiter) : error;
+    throw isCsvError(error) ? explained(error, source.name, delimiter, from.row) : error;
   } finally {
     parser.destroy();
   }
 }
+
+/**
+ * A copy in UTF-8. csv-parse takes Latin-1, too, but then trims letters for white space that has no place there:
+ * of "(12)" the opening bracket, whose byte is the last of U+2028.
+ */
+const asUtf8 = (bytes: Uint8Array, encoding: TextEncoding["name"]): Buffer =>
+  encoding === "utf8" ? Buffer.from(bytes) : Buffer.from(Buffer.from(bytes).toString("latin1"), "utf8");
 
 const settle = (start: (done: (error?: Error | null) => void) => void): Promise<void> =>
   new Promise((resolve, reject) => start((error) => (error ? reject(error) : resolve())));
@@ -82,8 +99,8 @@ const settle = (start: (done: (error?: Error | null) => void) => void): Promise<
  * The line on which each record begins. csv-parse gives the line on which it ends and
  * counts CRLF inside quotes twice, so a record's own line breaks are counted here.
  */
-function rowCounter(): (record: readonly string[], lines: number, emptyLines: number) => number {
-  let next = 1;
+function rowCounter(firstRow: number): (record: readonly string[], lines: number, emptyLines: number) => number {
+  let next = firstRow;
   let lastLines = 0;
   let lastEmpty = 0;
   return (record, lines, emptyLines) => {
@@ -112,8 +129,8 @@ function refuseLargeCells(rows: readonly RawRow[], file: string): void {
 const isCsvError = (error: unknown): error is CsvError =>
   error instanceof Error && "code" in error && "lines" in error && typeof error.code === "string";
 
-function explained(error: CsvError, file: string, delimiter: Delimiter): InputError {
-  const row = Number(error["lines"]);
+function explained(error: CsvError, file: string, delimiter: Delimiter, firstRow: number): InputError {
+  const row = Number(error["lines"]) + firstRow - 1;
   const cell = Number(error["index"]) + 1;
   const place = {file, row};
   const where = `${file}, row ${row}, cell ${cell}`;

@@ -6,7 +6,9 @@
 import {InputError} from "../errors.ts";
 import {doubt, type Notice, remark} from "../notice.ts";
 import type {ByteSource} from "./byte-source.ts";
-import {type Delimiter, delimitedRows, type RawRow} from "./delimited-rows.ts";
+import type {AskedColumns, ColumnBlock} from "./column-block.ts";
+import {delimitedColumns} from "./delimited-columns.ts";
+import {type Delimiter, delimitedRows, type RawRow, type RowStart} from "./delimited-rows.ts";
 import {decimalOf, delimiterOf} from "./dialect.ts";
 import {type DecimalMark, parseCell} from "./number-cell.ts";
 import {detectEncoding, type TextEncoding} from "./text-encoding.ts";
@@ -28,6 +30,8 @@ export interface Table {
   readonly notices: readonly Notice[];
   /** The rows in order, from the beginning at every call. Rows in which every cell is empty are left out. */
   blocks(): AsyncIterable<TableBlock>;
+  /** The same rows, of which only some columns are wanted: much faster, for tables of millions of rows. */
+  columns(asked: AskedColumns): AsyncIterable<ColumnBlock>;
 }
 
 export interface DelimitedTable extends Table {
@@ -67,24 +71,37 @@ export async function openTable(source: ByteSource): Promise<DelimitedTable> {
   const header = columnNames(headerRow, source.name, notices);
   const decimal = decimalOf(sample, delimiter, source.name);
   notices.push(...decimal.notices);
+  const reading = {source, encoding, delimiter, width: header.length, mark: decimal.mark, chunk: CHUNK};
   return {
     name: source.name,
     header,
     delimiter,
     decimal: decimal.mark,
     notices,
-    blocks: () => blocks(source, encoding, delimiter, header),
+    blocks: () => tableBlocks(reading),
+    columns: (asked) => delimitedColumns(reading, asked, tableBlocks),
   };
 }
 
-async function* blocks(
-  source: ByteSource,
-  encoding: TextEncoding,
-  delimiter: Delimiter,
-  header: readonly string[],
+/** A text as it was found to be written. */
+export interface DelimitedReading {
+  readonly source: ByteSource;
+  readonly encoding: TextEncoding;
+  readonly delimiter: Delimiter;
+  /** Cells in a row. */
+  readonly width: number;
+  readonly mark: DecimalMark;
+  /** Bytes read at a time. */
+  readonly chunk: number;
+}
+
+/** @param from the beginning of a row below the header; absent: everything below the header */
+export async function* tableBlocks(
+  {source, encoding, delimiter, width, chunk}: DelimitedReading,
+  from?: RowStart,
 ): AsyncGenerator<TableBlock> {
-  let isHeader = true;
-  for await (const bunch of delimitedRows(source, encoding, delimiter, CHUNK)) {
+  let isHeader = from === undefined;
+  for await (const bunch of delimitedRows(source, encoding, delimiter, chunk, from)) {
     const rowNumbers: number[] = [];
     const rows: (readonly string[])[] = [];
     for (const raw of bunch) {
@@ -93,7 +110,7 @@ async function* blocks(
         continue;
       }
       if (isBlank(raw)) continue;
-      requireWidth(raw, header.length, source.name, delimiter);
+      requireWidth(raw, width, source.name, delimiter);
       rowNumbers.push(raw.row);
       rows.push(raw.cells);
     }

@@ -17,6 +17,11 @@ export const NULL_SPELLINGS: readonly string[] = ["", "*", "-", "na", "n/a", "#n
  */
 export const NULL_SENTINELS: readonly number[] = [-9999999.99, 9999999, -99999, 1e32, -1e32];
 
+/** The same at the cost of one comparison for most readings. */
+export const isNullSentinel = (value: number): boolean =>
+  (value >= LEAST_SENTINEL || value <= -LEAST_SENTINEL) && NULL_SENTINELS.includes(value);
+const LEAST_SENTINEL = Math.min(...NULL_SENTINELS.map(Math.abs));
+
 const NUMBER = /^[+-]?(?:\d+\.?\d*|\.\d+)(?:[eEdD][+-]?\d+)?$/;
 const INFINITE = /^[+-]?inf(?:inity)?$/i;
 
@@ -45,7 +50,7 @@ export function parseCell(
   if (!NUMBER.test(plain)) return NULL_SPELLINGS.includes(plain.toLowerCase()) ? NaN : undefined;
   const value = Number(/[dD]/.test(plain) ? plain.replace(/[dD]/, "e") : plain);
   if (!Number.isFinite(value)) return undefined;
-  return NULL_SENTINELS.includes(value) || declaredNulls.includes(value) ? NaN : value;
+  return isNullSentinel(value) || declaredNulls.includes(value) ? NaN : value;
 }
 
 /** Where a cell stands, for `requireNumber`. */

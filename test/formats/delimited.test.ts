@@ -101,6 +101,10 @@ describe("what is found out", () => {
     expect([table.header, codes(table)]).toEqual([["Höhe", "wert"], ["table/latin1"]]);
     expect((await contents(table)).rows).toEqual([["1", "é"]]);
   });
+  test("a cell in Latin-1 keeps the brackets and strokes it begins with", async () => {
+    const table = await open(Buffer.from("a,b,c,d\n(12),_3,/4,é\n", "latin1"));
+    expect((await contents(table)).rows).toEqual([["(12)", "_3", "/4", "é"]]);
+  });
   test("Latin-1 far behind the header is found, too", async () => {
     const table = await open(
       Buffer.concat([Buffer.from("a\n"), Buffer.alloc(3 << 20, "abc\n"), Buffer.from("é\n", "latin1")]),
