@@ -45,7 +45,7 @@ async function openInput(path: string): Promise<InputFile> {
     return {
       name: path,
       size: stat.size,
-      read: (offset, length) => readAt(handle, path, stat.size, offset, length),
+      read: (offset, length, into) => readAt(handle, path, stat.size, offset, length, into),
       close: () => handle.close(),
     };
   } catch (error) {
@@ -55,8 +55,16 @@ async function openInput(path: string): Promise<InputFile> {
 }
 
 /** The bytes [offset, offset + length) of a file of `size` bytes; fewer where it ends. */
-async function readAt(handle: FileHandle, shown: string, size: number, offset: number, length: number) {
-  const bytes = new Uint8Array(Math.max(0, Math.min(length, size - offset)));
+async function readAt(
+  handle: FileHandle,
+  shown: string,
+  size: number,
+  offset: number,
+  length: number,
+  into?: Uint8Array,
+) {
+  const wanted = Math.max(0, Math.min(length, size - offset));
+  const bytes = into !== undefined && into.length >= wanted ? into.subarray(0, wanted) : new Uint8Array(wanted);
   let filled = 0;
   while (filled < bytes.length) {
     const left = bytes.length - filled;

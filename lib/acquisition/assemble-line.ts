@@ -2,6 +2,7 @@
 import {InputError, type Place, type ReportableError} from "../errors.ts";
 import type {Track} from "../geometry/track.ts";
 import {doubt, type Notice, remark} from "../notice.ts";
+import {byChainage} from "../survey/by-chainage.ts";
 import type {Channel, Stations, SurveyLine} from "../survey/line.ts";
 import {chainageAt, offsetAt, pointAt} from "../survey/line-axis.ts";
 import {spacingOf} from "../survey/record-noise.ts";
@@ -148,12 +149,18 @@ function unusable(id: string, run: LineRun, chainage: Float64Array, place: Place
   return undefined;
 }
 
+/** Stations no farther from the one before, in the order of chainage, than `distance`. */
+function repeatsWithin(chainage: Float64Array, distance: number): number {
+  const order = byChainage(chainage);
+  let repeats = 0;
+  for (let i = 1; i < order.length; ++i) if (chainage[order[i]!]! - chainage[order[i - 1]!]! <= distance) ++repeats;
+  return repeats;
+}
+
 function shapeNotices(chainage: Float64Array, course: TrackKnots, {group}: Placing, place: Place): Notice[] {
   const notices: Notice[] = [];
   const spacing = spacingOf(chainage);
-  const sorted = chainage.toSorted();
-  let repeats = 0;
-  for (let i = 1; i < sorted.length; ++i) if (sorted[i]! - sorted[i - 1]! <= SAME_PLACE * spacing) ++repeats;
+  const repeats = repeatsWithin(chainage, SAME_PLACE * spacing);
   if (repeats > 0)
     notices.push(
       remark(

@@ -93,19 +93,35 @@ async function* runsOfTable(table: Table, choices: readonly ColumnChoice[], plan
   for await (const block of table.columns({numbers: used.map(({index}) => index), texts})) {
     const names = line === undefined ? undefined : block.texts[0]!;
     const clocks = time === undefined ? undefined : block.texts.at(-1)!;
+    const needed = block.numbers.filter((_, c) => required[c]);
+    // Stations of the block that are whole and of one line are taken together, the rows [taken, r).
+    let taken = 0;
+    const take = (to: number): void => {
+      if (to > taken) {
+        rows.append(block.rowNumbers, taken, to);
+        for (let c = 0; c < used.length; ++c) growing[c]!.append(block.numbers[c]!, taken, to);
+      }
+      taken = to;
+    };
+    let [written, next] = ["", ""];
     for (let r = 0; r < block.count; ++r) {
       const row = block.rowNumbers[r]!;
       if (r === block.unread?.at) refuse(used, block.unread.cells, decimal, file, row);
-      let whole = true;
-      for (let c = 0; c < used.length; ++c) if (required[c] && Number.isNaN(block.numbers[c]![r])) whole = false;
+      const whole = isWhole(needed, r);
       const seconds = clocks === undefined ? NaN : requireTime(clocks[r]!, decimal, {file, row, column: time!.column});
       if (names !== undefined) {
-        const next = names[r]!.trim();
+        if (names[r] !== written) {
+          written = names[r]!;
+          next = written.trim();
+        }
         if (next === "") {
           ++unnamed;
+          take(r);
+          taken = r + 1;
           continue;
         }
         if (begun && next !== name) {
+          take(r);
           yield takeRun(rows.length);
           firstRow = row;
         }
@@ -115,12 +131,13 @@ async function* runsOfTable(table: Table, choices: readonly ColumnChoice[], plan
       begun = true;
       if (!whole) {
         ++omitted;
+        take(r);
+        taken = r + 1;
         continue;
       }
-      rows.push(row);
-      times.push(seconds);
-      for (let c = 0; c < used.length; ++c) growing[c]!.push(block.numbers[c]![r]!);
       if (plan.split !== "auto") continue;
+      take(r + 1);
+      times.push(seconds);
       const cut = cutBefore(track, rows.length - 1);
       if (cut === undefined) continue;
       cutOnce = true;
@@ -133,9 +150,15 @@ async function* runsOfTable(table: Table, choices: readonly ColumnChoice[], plan
       }
       firstRow = rows.at(0);
     }
+    take(block.count);
   }
   if (!begun) return;
   yield takeRun(rows.length, cutOnce && rows.length < LEAST_STATIONS);
+}
+
+function isWhole(needed: readonly Float64Array[], row: number): boolean {
+  for (let c = 0; c < needed.length; ++c) if (Number.isNaN(needed[c]![row]!)) return false;
+  return true;
 }
 
 /** @throws {InputError} for the first of the cells that is no number */
@@ -154,9 +177,9 @@ function refuse(
 /** The run without the stations that lack a number in one of `roles`. */
 export function completeRun(run: LineRun, roles: Iterable<string>): LineRun {
   const looked = [...roles].flatMap((role) => run.columns.get(role) ?? []);
+  if (!looked.some(hasGap)) return run;
   const kept = run.row.map((_, i) => (looked.every((column) => !Number.isNaN(column[i]!)) ? 1 : 0));
   const count = kept.reduce((sum, one) => sum + one, 0);
-  if (count === kept.length) return run;
   const only = (column: Float64Array) => column.filter((_, i) => kept[i] === 1);
   return {
     ...run,
@@ -164,6 +187,11 @@ export function completeRun(run: LineRun, roles: Iterable<string>): LineRun {
     columns: new Map([...run.columns].map(([role, column]) => [role, only(column)])),
     omitted: run.omitted + kept.length - count,
   };
+}
+
+function hasGap(column: Float64Array): boolean {
+  for (let i = 0; i < column.length; ++i) if (Number.isNaN(column[i]!)) return true;
+  return false;
 }
 
 /** Positions good enough to tell a heading by, from whatever places the stations. */

@@ -6,8 +6,11 @@ export interface ByteSource {
   readonly name: string;
   /** Bytes. */
   readonly size: number;
-  /** The bytes [offset, offset + length); fewer only where the source ends. */
-  read(offset: number, length: number): Promise<Uint8Array>;
+  /**
+   * The bytes [offset, offset + length); fewer only where the source ends.
+   * @param into may be used for them, if it is long enough, and saves memory that is asked for and given back
+   */
+  read(offset: number, length: number, into?: Uint8Array): Promise<Uint8Array>;
 }
 
 /** Receives bytes in order. `bytes` may be reused by the caller once the promise is fulfilled. */

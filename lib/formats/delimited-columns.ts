@@ -33,10 +33,11 @@ export async function* delimitedColumns(
   let line = 1;
   let into: PlainRows | undefined;
   for (let offset = encoding.start; offset < source.size; offset += chunk) {
-    const bytes = await source.read(offset, Math.min(chunk, source.size - offset));
+    const room = held.subarray(holds, holds + chunk);
+    const bytes = await source.read(offset, Math.min(chunk, source.size - offset), room);
     const started = offset - holds;
     const chunkEnd = offset + bytes.length;
-    held.set(bytes, holds);
+    if (bytes.buffer !== held.buffer) held.set(bytes, holds);
     holds += bytes.length;
     if (chunkEnd >= source.size && held[holds - 1] !== LF) held[holds++] = LF;
     const end = held.subarray(0, holds).lastIndexOf(LF) + 1;

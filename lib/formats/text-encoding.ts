@@ -36,8 +36,9 @@ export async function detectEncoding(source: ByteSource): Promise<TextEncoding> 
     );
   let utf8 = true;
   let carried: Uint8Array = new Uint8Array(0);
+  const room = new Uint8Array(Math.min(CHUNK, source.size));
   for (let offset = start; offset < source.size; offset += CHUNK) {
-    const chunk = await source.read(offset, Math.min(CHUNK, source.size - offset));
+    const chunk = await source.read(offset, Math.min(CHUNK, source.size - offset), room);
     const nul = chunk.indexOf(0);
     if (nul >= 0)
       throw new InputError(

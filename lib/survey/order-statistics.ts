@@ -2,7 +2,7 @@
 
 /** The middle value, or the mean of the two; NaN for no values. Leaves `values` as it is. */
 export function median(values: ArrayLike<number>): number {
-  const sorted = Float64Array.from(values).sort();
+  const sorted = new Float64Array(values).sort();
   const half = sorted.length >> 1;
   if (sorted.length === 0) return NaN;
   return sorted.length % 2 === 1 ? sorted[half]! : (sorted[half - 1]! + sorted[half]!) / 2;
@@ -16,7 +16,7 @@ export interface Spread {
 
 /** Least, middle and greatest; NaN for no values. */
 export function spread(values: ArrayLike<number>): Spread {
-  const sorted = Float64Array.from(values).sort();
+  const sorted = new Float64Array(values).sort();
   if (sorted.length === 0) return {least: NaN, median: NaN, greatest: NaN};
   return {least: sorted[0]!, median: median(sorted), greatest: sorted[sorted.length - 1]!};
 }
