@@ -37,7 +37,7 @@ export async function* delimitedColumns(
     const bytes = await source.read(offset, Math.min(chunk, source.size - offset), room);
     const started = offset - holds;
     const chunkEnd = offset + bytes.length;
-    if (bytes.buffer !== held.buffer) held.set(bytes, holds);
+    if (bytes.buffer !== room.buffer || bytes.byteOffset !== room.byteOffset) held.set(bytes, holds);
     holds += bytes.length;
     if (chunkEnd >= source.size && held[holds - 1] !== LF) held[holds++] = LF;
     const end = held.subarray(0, holds).lastIndexOf(LF) + 1;
