@@ -1,216 +1,20 @@
 /**
  * The only file, with those of `host/`, that reads, writes, asks the time or prints. Everything else in `cli/` gets a
- * `Host`; tests give one of their own or a real one over temporary folders.
+ * `Host`; tests give one of their own or a real one over temporary folders. What a start does not need is loaded when
+ * it is first asked for.
  *
  * What the operating system refuses is an `InputError` here: the user acts on it.
  */
-import {createHash} from "node:crypto";
-import {existsSync, readFileSync, rmSync, writeSync} from "node:fs";
-import {type FileHandle, mkdir, mkdtemp, open, readdir, readFile, rename, rm, rmdir} from "node:fs/promises";
-import {availableParallelism, hostname, tmpdir} from "node:os";
-import {basename, dirname, isAbsolute, join, resolve} from "node:path";
+import {existsSync, readFileSync, writeSync} from "node:fs";
+import {availableParallelism, hostname} from "node:os";
+import {dirname, isAbsolute, join} from "node:path";
 import {fileURLToPath} from "node:url";
-import {InputError} from "../lib/errors.ts";
-import {claim, isAlive} from "./host/claim.ts";
+import type {Interruption} from "./host/interruption.ts";
+import {isAlive} from "./host/is-alive.ts";
 import {openStore} from "./host/store.ts";
-import type {Host, InputFile, Interruptible, OutputFile, OutputFolder, Scratch, Terminal} from "./nouns.ts";
-import {PARTS, UNFINISHED} from "./own-names.ts";
-import {asking} from "./refusals.ts";
-
-const BUFFER_BYTES = 1 << 17;
-
-/** What a signal has to undo before the process ends, and whether it must wait for a moment that may not be cut. */
-interface Interruption {
-  readonly undo: Set<() => void>;
-  held: boolean;
-  pending: boolean;
-  /** Work that can come to an end by itself. */
-  soft: Interruptible | undefined;
-}
+import type {Host, Terminal} from "./nouns.ts";
 
 const noInterruption = (): Interruption => ({undo: new Set(), held: false, pending: false, soft: undefined});
-
-async function openInput(path: string): Promise<InputFile> {
-  const handle = await asking(path, () => open(path, "r"));
-  try {
-    const stat = await asking(path, () => handle.stat());
-    if (stat.isDirectory())
-      throw new InputError("host/is-a-folder", `"${path}" is a folder. Name a file inside it.`, {place: {file: path}});
-    if (!stat.isFile())
-      throw new InputError(
-        "host/not-a-file",
-        `"${path}" is not a file that can be read at any place. Save it to a file first.`,
-        {place: {file: path}},
-      );
-    return {
-      name: path,
-      size: stat.size,
-      read: (offset, length, into) => readAt(handle, path, stat.size, offset, length, into),
-      close: () => handle.close(),
-    };
-  } catch (error) {
-    await handle.close();
-    throw error;
-  }
-}
-
-/** The bytes [offset, offset + length) of a file of `size` bytes; fewer where it ends. */
-async function readAt(
-  handle: FileHandle,
-  shown: string,
-  size: number,
-  offset: number,
-  length: number,
-  into?: Uint8Array,
-) {
-  const wanted = Math.max(0, Math.min(length, size - offset));
-  const bytes = into !== undefined && into.length >= wanted ? into.subarray(0, wanted) : new Uint8Array(wanted);
-  let filled = 0;
-  while (filled < bytes.length) {
-    const left = bytes.length - filled;
-    const {bytesRead} = await asking(shown, () => handle.read(bytes, filled, left, offset + filled));
-    if (bytesRead === 0) break;
-    filled += bytesRead;
-  }
-  return bytes.subarray(0, filled);
-}
-
-/** Writes every byte from `position` on. */
-async function writeAt(handle: FileHandle, shown: string, bytes: Uint8Array, position: number): Promise<void> {
-  let done = 0;
-  while (done < bytes.length) {
-    const left = bytes.length - done;
-    const {bytesWritten} = await asking(shown, () => handle.write(bytes, done, left, position + done));
-    done += bytesWritten;
-  }
-}
-
-/** A new file, written through a buffer and digested on the way; `shown` stands in messages. */
-async function createFile(path: string, shown: string, opened: Set<FileHandle>): Promise<OutputFile> {
-  const handle = await asking(shown, () => open(path, "wx"));
-  opened.add(handle);
-  const digest = createHash("sha256");
-  const buffer = new Uint8Array(BUFFER_BYTES);
-  let filled = 0;
-  let written = 0;
-  const flush = async () => {
-    const bytes = buffer.subarray(0, filled);
-    digest.update(bytes);
-    await writeAt(handle, shown, bytes, written);
-    written += filled;
-    filled = 0;
-  };
-  return {
-    async write(bytes) {
-      for (let taken = 0; taken < bytes.length; ) {
-        const step = Math.min(bytes.length - taken, BUFFER_BYTES - filled);
-        buffer.set(bytes.subarray(taken, taken + step), filled);
-        filled += step;
-        taken += step;
-        if (filled === BUFFER_BYTES) await flush();
-      }
-    },
-    async close() {
-      await flush();
-      await asking(shown, () => handle.sync());
-      await asking(shown, () => handle.close());
-      opened.delete(handle);
-      return {sha256: digest.digest("hex"), bytes: written};
-    },
-  };
-}
-
-async function openOutput(path: string, interruption: Interruption): Promise<OutputFolder> {
-  const firstMade = await asking(path, () => mkdir(path, {recursive: true}));
-  const opened = new Set<FileHandle>();
-  const created: string[] = [];
-  let workplace: string | undefined;
-  const removeMade = async () => {
-    // Folders made for this run go, from the inside out, as long as they are empty.
-    if (firstMade === undefined) return;
-    const top = resolve(firstMade);
-    for (let at = resolve(path); at.length >= top.length; at = dirname(at)) {
-      try {
-        await rmdir(at);
-      } catch {
-        return;
-      }
-    }
-  };
-  const undo = () => {
-    if (workplace !== undefined) rmSync(workplace, {recursive: true, force: true});
-  };
-  interruption.undo.add(undo);
-  const abandon = async () => {
-    interruption.undo.delete(undo);
-    if (workplace === undefined) return;
-    for (const handle of opened) await handle.close().catch(() => undefined);
-    await rm(workplace, {recursive: true, force: true});
-    workplace = undefined;
-    await removeMade();
-  };
-  try {
-    workplace = await claim(path);
-    const before = (await asking(path, () => readdir(path)))
-      .filter((name) => name !== UNFINISHED && name !== PARTS)
-      .sort();
-    const inside = workplace;
-    return {
-      before,
-      readText: (name) => asking(join(path, name), () => readFile(join(path, name), "utf8")),
-      async create(name) {
-        if (name === "" || name !== basename(name) || name.startsWith("."))
-          throw new Error(`"${name}" is no name for a file of a run`);
-        const file = await createFile(join(inside, name), join(path, name), opened);
-        created.push(name);
-        return file;
-      },
-      async commit(stale) {
-        interruption.held = true;
-        try {
-          for (const name of created)
-            await asking(join(path, name), () => rename(join(inside, name), join(path, name)));
-          for (const name of stale)
-            if (name === basename(name) && !created.includes(name))
-              await asking(join(path, name), () => rm(join(path, name), {force: true}));
-          await rm(inside, {recursive: true, force: true});
-          workplace = undefined;
-          interruption.undo.delete(undo);
-        } finally {
-          interruption.held = false;
-        }
-      },
-      abandon,
-    };
-  } catch (error) {
-    interruption.undo.delete(undo);
-    if (workplace !== undefined) await rm(workplace, {recursive: true, force: true});
-    await removeMade();
-    throw error;
-  }
-}
-
-async function openScratch(interruption: Interruption): Promise<Scratch> {
-  const folder = await asking(tmpdir(), () => mkdtemp(join(tmpdir(), "groundward-")));
-  const undo = () => rmSync(folder, {recursive: true, force: true});
-  interruption.undo.add(undo);
-  const path = join(folder, "scratch");
-  const handle = await asking(path, () => open(path, "w+"));
-  let size = 0;
-  return {
-    async append(bytes) {
-      const at = size;
-      size += bytes.length;
-      await writeAt(handle, path, bytes, at);
-    },
-    read: (offset, length) => readAt(handle, path, size, offset, length),
-    async dispose() {
-      await handle.close();
-      await rm(folder, {recursive: true, force: true});
-      interruption.undo.delete(undo);
-    },
-  };
-}
 
 /** `version` of the nearest package.json above this file; it stands two folders up once compiled. */
 function ownVersion(): string {
@@ -239,10 +43,10 @@ export function nodeHost(replaced: Partial<Host> = {}, interruption: Interruptio
     dateText: (milliseconds) => new Date(milliseconds).toISOString(),
     breathe: () => new Promise((done) => setImmediate(done)),
     pause: (milliseconds) => new Promise((done) => setTimeout(done, milliseconds)),
-    openInput,
+    openInput: async (path) => (await import("./host/input.ts")).openInput(path),
     beside: (file, path) => (isAbsolute(path) ? path : join(dirname(file), path)),
-    openOutput: (path) => openOutput(path, interruption),
-    openScratch: () => openScratch(interruption),
+    openOutput: async (path) => (await import("./host/output.ts")).openOutput(path, interruption),
+    openScratch: async () => (await import("./host/scratch.ts")).openScratch(interruption),
     openStore,
     folder: process.cwd(),
     cores: availableParallelism(),

@@ -1,11 +1,7 @@
 /** The commands, and what becomes of an error that ends one: the exit status. */
 import {Command, CommanderError, Option} from "commander";
-import {nearestName} from "../lib/acquisition/nearest-name.ts";
-import {InputError} from "../lib/errors.ts";
 import type {AddCommand} from "./commands/command.ts";
-import {messagesTo, report} from "./messages.ts";
 import type {Host} from "./nouns.ts";
-import {printable, shown} from "./printable.ts";
 
 const DESCRIPTION =
   "Carries gravity and magnetic survey lines down to the boundary of their sources and to any level above it, with a bound on the sources and an interval on every answer.";
@@ -88,48 +84,9 @@ function command(name: string, host: Host): Command {
     });
 }
 
-/** What the command-line library found wrong, in the form of every other error. */
-function asInputError(error: CommanderError, program: Command): InputError {
-  const found = error.message.replace(/^error: /, "").split("\n")[0]!;
-  const word = /'([^']*)'/s.exec(error.message)?.[1] ?? "";
-  const current = program.commands.find((candidate) => candidate.name() === program.args[0]) ?? program;
-  switch (error.code) {
-    case "commander.unknownOption": {
-      const known = current.options.map((option) => option.long!);
-      return new InputError(
-        "option/unknown",
-        `${printable(word, 60)} is no option here. Nearest is ${nearestName(word.split("=")[0]!, [...known, "--help"])}; groundward ${current === program ? "" : `${current.name()} `}--help lists all.`,
-      );
-    }
-    case "commander.unknownCommand":
-      return new InputError(
-        "command/unknown",
-        `"${printable(word, 60)}" is no command. Nearest is ${nearestName(
-          word,
-          program.commands.map((candidate) => candidate.name()),
-        )}; groundward --help lists all.`,
-      );
-    case "commander.optionMissingArgument":
-      return new InputError("option/missing-value", `${word.split(" ")[0]!} has no value. Write it as ${word}.`);
-    case "commander.excessArguments": {
-      const [first] = current.args;
-      return new InputError(
-        "argument/too-many",
-        `${current.name()} takes options only, but got ${shown(first ?? "")}. Leave it out; groundward ${current.name()} --help lists all.`,
-      );
-    }
-    default:
-      return new InputError(
-        "option/refused",
-        `${printable(found, 300).replace(/\.$/, "")}. See groundward ${current === program ? "" : `${current.name()} `}--help.`,
-      );
-  }
-}
-
 /** Runs the command line of `host`; @returns the exit status */
 export async function groundward(host: Host): Promise<number> {
   const form = {json: host.arguments.includes("--json"), quiet: host.arguments.includes("--quiet")};
-  const messages = messagesTo(host, form);
   let status = 0;
   const finish = (result: number): void => {
     status = result;
@@ -156,6 +113,9 @@ export async function groundward(host: Host): Promise<number> {
     return status;
   } catch (error) {
     if (error instanceof CommanderError && error.exitCode === 0) return 0;
-    return report(messages, error instanceof CommanderError ? asInputError(error, program) : error);
+    const {messagesTo, report} = await import("./messages.ts");
+    const found =
+      error instanceof CommanderError ? (await import("./argument-error.ts")).argumentError(error, program) : error;
+    return report(messagesTo(host, form), found);
   }
 }

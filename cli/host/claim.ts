@@ -4,22 +4,9 @@ import {mkdir, readFile, rm, writeFile} from "node:fs/promises";
 import {hostname} from "node:os";
 import {join} from "node:path";
 import {InputError} from "../../lib/errors.ts";
-import type {Owner} from "../nouns.ts";
 import {UNFINISHED} from "../own-names.ts";
 import {asking} from "../refusals.ts";
-
-/** Whether another process is at work, as far as can be told: one of another machine is. */
-export function isAlive({pid, machine}: Owner): boolean {
-  if (machine !== hostname()) return true;
-  // Numbers are used again: whoever had ours before is gone.
-  if (pid === process.pid) return false;
-  try {
-    process.kill(pid, 0);
-    return true;
-  } catch (error) {
-    return (error as NodeJS.ErrnoException).code === "EPERM";
-  }
-}
+import {isAlive} from "./is-alive.ts";
 
 /** Whether the run that left `unfinished` behind still works. */
 async function ownerAlive(unfinished: string): Promise<boolean> {

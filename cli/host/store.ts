@@ -2,7 +2,6 @@
 import {type FileHandle, mkdir, open, readdir, readFile, rename, rm} from "node:fs/promises";
 import {hostname} from "node:os";
 import {join} from "node:path";
-import {threadId} from "node:worker_threads";
 import type {Store} from "../nouns.ts";
 import {asking} from "../refusals.ts";
 
@@ -51,6 +50,7 @@ export function openStore(path: string): Store {
     read: (name) => present(at(name), () => readFile(at(name))),
     writeWhole: (name, bytes) =>
       writing(name, async () => {
+        const {threadId} = await import("node:worker_threads");
         // Machines, processes and threads that share the folder never share a name.
         const own = at(`${name}.${hostname()}-${process.pid}-${threadId}.tmp`);
         await withFile(own, "w", async (file) => {
