@@ -1,6 +1,5 @@
 /** One block (tile or strip) of a TIFF image, from compressed bytes to readings. Predictors and most decoders are geotiff's. */
 import {inflateSync} from "node:zlib";
-import {BaseDecoder, getDecoder} from "geotiff";
 import {InputError} from "../errors.ts";
 import {decodeLzw} from "./lzw.ts";
 import type {NodataRange} from "./nodata.ts";
@@ -34,18 +33,6 @@ const HOST_IS_LITTLE_ENDIAN = new Uint8Array(Uint16Array.of(1).buffer)[0] === 1;
 /** Gives the samples of a block by its index, or undefined when it was never written. */
 export type BlockReader = (index: number) => Promise<Samples | undefined>;
 
-/** A decoder of ours in place of geotiff's, whose predictors still follow. */
-class OwnDecoder extends BaseDecoder {
-  readonly decompress: (bytes: Uint8Array) => Uint8Array;
-  constructor(parameters: ConstructorParameters<typeof BaseDecoder>[0], decompress: (bytes: Uint8Array) => Uint8Array) {
-    super(parameters);
-    this.decompress = decompress;
-  }
-  override decodeBlock(buffer: ArrayBufferLike): ArrayBuffer {
-    return ownBuffer(this.decompress(new Uint8Array(buffer)));
-  }
-}
-
 /**
  * A reader of blocks. `samples[(row · blockWidth + column) · bands + band]`, or without
  * bands when the image is not interleaved.
@@ -69,8 +56,8 @@ export async function blockReader(file: TiffFile, layout: TiffLayout): Promise<B
     [COMPRESSION.oldDeflate]: inflate,
     [COMPRESSION.lzw]: (bytes) => decodeLzw(bytes, limit),
   };
-  const decompress = own[compression];
-  const decoder = decompress ? new OwnDecoder(parameters, decompress) : await getDecoder(compression, parameters);
+  const {decoderFor, ownBuffer} = await import("./tiff-decoder.ts");
+  const decoder = await decoderFor(compression, parameters, own[compression]);
   const swap = file.littleEndian !== HOST_IS_LITTLE_ENDIAN;
   const perBand = layout.blocksAcross * layout.blocksDown;
   return async (index) => {
@@ -95,14 +82,6 @@ export async function blockReader(file: TiffFile, layout: TiffLayout): Promise<B
     if (swap) swapInPlace(decoded as ArrayBuffer, bytesPerSample);
     return new VIEW[layout.sampleType](decoded as ArrayBuffer, 0, expected / bytesPerSample);
   };
-}
-
-/** The same bytes alone in a buffer, which is what geotiff's decoders take. */
-function ownBuffer(bytes: Uint8Array): ArrayBuffer {
-  const {buffer, byteOffset, byteLength} = bytes;
-  if (byteOffset === 0 && byteLength === buffer.byteLength && buffer instanceof ArrayBuffer) return buffer;
-  // Not `slice`: Node's Buffer has one that copies nothing.
-  return new Uint8Array(bytes).buffer;
 }
 
 function swapInPlace(buffer: ArrayBuffer, bytesPerSample: number): void {

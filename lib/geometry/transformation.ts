@@ -4,11 +4,11 @@
  * proj4 takes latitude 95 without a word, answers NaN outside a projection's domain, and
  * throws on NaN: all three are turned into errors that say which position is at fault.
  */
-import proj4 from "proj4";
 import {InputError, type Place} from "../errors.ts";
 import type {Notice} from "../notice.ts";
 import type {CoordinateSystem} from "./crs-definition.ts";
 import {type Datum, datumChange} from "./datum.ts";
+import {proj4Library} from "./proj4-library.ts";
 
 /** x, y of a system: longitude, latitude in degrees, or its own unit. */
 export type Position = readonly [x: number, y: number];
@@ -58,7 +58,7 @@ export function transformation(from: CoordinateSystem, to: CoordinateSystem): Tr
   const change = datumChange(from.datum, to.datum);
   const definition = (system: CoordinateSystem): string =>
     change.shifted ? system.definition + shiftWords(system.datum) : system.definition;
-  const converter = proj4(definition(from), definition(to));
+  const converter = proj4Library()(definition(from), definition(to));
   const fromGeographic = from.kind === "geographic";
   const toGeographic = to.kind === "geographic";
   const apply = (x: number, y: number, place?: Place): Position => {
