@@ -21,6 +21,8 @@ interface Relief {
 
 /**
  * @param wider misfit within the same bound on a support wider by so many metres either side
+ * @param noiseCauseOf why the noise given is the likelier cause of a misfit within a bound, in whole sentences; of no
+ *   bound where that is undefined, and undefined where it is not
  * @returns a doubt while the misfit is above the target; nothing when it is not
  * @throws {ModelError} `bound/infeasible`, `support/misses-sources` beyond six standard deviations
  */
@@ -28,6 +30,7 @@ export function feasibility(
   solver: Solver,
   choice: BoundChoice,
   wider: () => {readonly metres: number; readonly share: number; readonly misfit: number},
+  noiseCauseOf: (misfit: number, bound: number | undefined) => string | undefined,
 ): Notice[] {
   // A rule may leave more than it must; a given bound leaves what it leaves.
   const bounded = choice.basis === "given-bound";
@@ -35,9 +38,11 @@ export function feasibility(
   const target = misfitTarget(solver.data);
   if (misfit <= target * (1 + 1e-9)) return [];
   const beyond = misfit > misfitLimit(solver.data);
+  const cause = noiseCauseOf(misfit, bounded ? choice.bound : undefined);
   const reliefs: Relief[] = [];
   const factor = Math.sqrt(misfit / target);
-  if (factor <= MOST_NOISE) reliefs.push({words: `the noise ${enough(factor)} times larger`, cost: factor - 1});
+  if (cause === undefined && factor <= MOST_NOISE)
+    reliefs.push({words: `the noise ${enough(factor)} times larger`, cost: factor - 1});
   const best = solver.misfit(0);
   const freed = multiplierForMisfit(solver, target);
   if (bounded && freed !== undefined && freed !== Infinity) {
@@ -51,23 +56,30 @@ export function feasibility(
   }
   reliefs.sort((a, b) => a.cost - b.cost);
   const found = `The misfit is ${misfit.toPrecision(4)} for ${solver.data} readings; noise alone gives at most ${target.toPrecision(4)}.`;
-  const cure =
-    reliefs.length === 0
-      ? "No noise that would explain it is plausible: give a wider --support, to where sources may be."
-      : `Cheapest cure: ${reliefs[0].words}${
-          reliefs.length > 1
-            ? `; else ${reliefs
-                .slice(1)
-                .map(({words}) => words)
-                .join(", or ")}`
-            : ""
-        }.`;
+  const cure = cureText(reliefs, cause);
+  const lead = cause === undefined ? "" : `${cause} `;
   if (bounded && best <= misfitLimit(solver.data)) {
-    const message = `No source within the bound explains the readings. ${found} ${cure}`;
+    const message = `${lead}No source within the bound explains the readings${cause === undefined ? "" : " with the noise given"}. ${found} ${cure}`;
     if (beyond) throw new ModelError("bound/infeasible", message);
     return [doubt("bound/tight", message)];
   }
-  const message = `No source on this support explains the readings, however strong: the support misses sources, the noise is given too small, or the ground is not two-dimensional. ${found} ${cure}`;
+  const message =
+    cause === undefined
+      ? `No source on this support explains the readings, however strong: the support misses sources, the noise is given too small, or the ground is not two-dimensional. ${found} ${cure}`
+      : `${lead}No source on this support explains the readings with the noise given, however strong. ${found} ${cure}`;
   if (beyond) throw new ModelError("support/misses-sources", message);
   return [doubt("support/fits-poorly", message)];
+}
+
+function cureText(reliefs: readonly Relief[], cause: string | undefined): string {
+  const [first, ...others] = reliefs.map(({words}) => words);
+  if (cause !== undefined)
+    return `If the noise is right as given, ${
+      first === undefined
+        ? "the support misses sources or the ground is not two-dimensional: give a wider --support, to where sources may be"
+        : `the cheapest cure is ${[first, ...others].join("; else ")}`
+    }.`;
+  if (first === undefined)
+    return "No noise that would explain it is plausible: give a wider --support, to where sources may be.";
+  return `Cheapest cure: ${first}${others.length > 0 ? `; else ${others.join(", or ")}` : ""}.`;
 }

@@ -34,10 +34,13 @@ import {effectiveDirectionOf} from "./direction-of-line.ts";
 import {feasibility} from "./feasibility.ts";
 import {gradientSignNotices} from "./gradient-sign.ts";
 import {remarksOfLevels} from "./levels-below-trust.ts";
+import {noiseCause} from "./noise-cause.ts";
 import {type ChannelNoises, lengthText, noisesOf, withNoises} from "./noises.ts";
 import {intervalsOn, type Operated, operated} from "./operated.ts";
 import type {LineStudy} from "./outcome.ts";
+import {remarksOfRegional} from "./regional-remark.ts";
 import type {Settings} from "./settings.ts";
+import {doubtsOfSpacing} from "./spacing-doubt.ts";
 import {acrossStrike, crossingOf, squareToStrike} from "./strike.ts";
 import {stripsOfLine} from "./strips-of-line.ts";
 import {cutNotices, panelsOfLine, supportOfLine} from "./support-of-line.ts";
@@ -125,8 +128,17 @@ function sourceSquare(
     () => settings.bound.choose(asked),
   );
   const feasible = unlessApart(apart, () =>
-    feasibility(solver, choice, () =>
-      widerMisfit(conditioned, support, settings, choice.basis === "given-bound" ? choice.bound : undefined),
+    feasibility(
+      solver,
+      choice,
+      () => widerMisfit(conditioned, support, settings, choice.basis === "given-bound" ? choice.bound : undefined),
+      (misfit, bound) =>
+        noiseCause(
+          conditioned,
+          misfit,
+          () => whiteMisfit(conditioned, panels, model.regional, bound),
+          bound === undefined ? "a source on this support" : "a source within the bound",
+        ),
     ),
   );
   const estimate = estimateSource(solver, choice, operator, readings, regional, values);
@@ -213,6 +225,10 @@ function studySquare(
       ...doubtsOfStrips(strips, support),
       ...gainNotices(gain, resolution),
       ...remarksOfLevels(wanted.levels, conditioned, trust),
+      ...(wanted.intervals === "simultaneous"
+        ? []
+        : remarksOfRegional(question, model.regional, wanted.confidence, levels)),
+      ...doubtsOfSpacing(resolution, spacingOf(line.stations.chainage)),
       ...remarksOnBand(intervals.tally?.()),
     ],
   };
@@ -272,6 +288,13 @@ function widerMisfit(conditioned: ConditionedLine, support: Support, settings: S
   const {solver} = settled(conditioned, panelsOfLine(conditioned, joined, settings.model), settings.model.regional);
   const multiplier = bound === undefined ? 0 : multiplierForNorm(solver, bound);
   return {metres, share: totalLength(joined) / totalLength(support) - 1, misfit: solver.misfit(multiplier)};
+}
+
+/** Misfit within the bound were the noise not correlated, for the message of `feasibility`. */
+function whiteMisfit(conditioned: ConditionedLine, panels: Panels, degree: number, bound: number | undefined): number {
+  const channels = conditioned.channels.map((channel) => ({...channel, noiseLength: 0}));
+  const {solver} = operated({...conditioned, channels}, panels, degree);
+  return solver.misfit(bound === undefined ? 0 : multiplierForNorm(solver, bound));
 }
 
 /** Of each channel, over the standard deviation and in the order of chainage. */

@@ -35,7 +35,7 @@ interface Apart {
 type Way = "given" | "record" | "spectrum";
 
 /** Ways that differ by less are good enough: half as much again moves an interval by no more. A heuristic. */
-const DIFFERENT = 1.5;
+export const DIFFERENT = 1.5;
 /** Standard errors that chance is allowed. */
 const BY_CHANCE = 3;
 /** Doubts that already say that the noise of the line is not what it was taken for. */
@@ -69,7 +69,8 @@ export function noisesOf(
 /** Relative standard error of the noise by n fourth differences, times √n; as `chanceRatio` has it. */
 const RECORD_ERROR = 1.2;
 
-function recordOf(chainage: Float64Array, values: Float64Array, length: number): RecordNoise | undefined {
+/** @returns undefined where the record does not say */
+export function recordOf(chainage: Float64Array, values: Float64Array, length: number): RecordNoise | undefined {
   try {
     return recordNoise(chainage, values, length);
   } catch (error) {

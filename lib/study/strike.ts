@@ -120,7 +120,7 @@ export function acrossStrike(
   const {own, scaledLine, scaledSettings, scaledZones} = squareToStrike(line, settings, zones, scale);
   const words = `Lengths here are square to the strike: ${scale.toPrecision(4)} of those along the line, which crosses it at ${angle.toFixed(1)}°.`;
   const explained = <N extends {readonly code: string; readonly message: string}>(told: N): N =>
-    /^(support|strip|bound|channels)\//.test(told.code) || NOISE_LENGTH.test(told.message)
+    /^(support|strip|bound|channels|resolution)\//.test(told.code) || NOISE_LENGTH.test(told.message)
       ? {...told, message: `${told.message} ${words}`}
       : told;
   let found: LineStudy;
