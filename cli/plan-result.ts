@@ -84,7 +84,8 @@ export function planJson({settings, cases}: Plan): Readonly<Record<string, unkno
         [`end_half_width_${density}`]: toDensity(strip.end),
         [`with_gradient_half_width_${density}`]: toDensity(strip.withGradient),
         [`with_second_half_width_${density}`]: toDensity(strip.withSecond),
-        told_up_to_m: strip.highest ?? null,
+        // As in plan.csv: 0 at no height, null where it was not asked.
+        told_up_to_m: settings.stripStrength === undefined ? null : (strip.highest ?? 0),
       })),
       levels: one.levels.map(({level, halfWidth}) => ({
         level_m: level,

@@ -53,8 +53,11 @@ function setting(name: string, there: unknown, here: unknown): string {
       those.filter((one) => !others.some((other) => same(one, other)));
     const [gone, come] = [only(there, here), only(here, there)];
     const drawn = [...gone, ...come].some((one) => fieldsOf(one)["area"] !== undefined);
-    if (gone.length + come.length > 0)
-      return `${drawn && name === "strips" ? "--strips" : option} was ${valueText(gone)} and is ${valueText(come)}`;
+    const own = drawn && name === "strips" ? "--strips" : option;
+    // Of a list with more entries than these, "was X and is Y" would be untrue.
+    if (gone.length > 0)
+      return `${own} ${valueText(gone)} was given and ${come.length > 0 ? `is now ${valueText(come)}` : "is not any more"}`;
+    if (come.length > 0) return `${own} ${valueText(come)} was not given and is now`;
   }
   return `${option} was ${valueText(there)} and is ${valueText(here)}`;
 }

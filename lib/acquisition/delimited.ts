@@ -11,6 +11,7 @@ import {coordinateSystem} from "../geometry/coordinate-system.ts";
 import {doubt, type Notice, remark} from "../notice.ts";
 import {chainageAt, movedAlong} from "../survey/line-axis.ts";
 import type {Axis, LineRecord, RoleChoice, Survey} from "../survey/survey.ts";
+import {ownHeights} from "./asked-columns.ts";
 import {assembleLine, type Placing} from "./assemble-line.ts";
 import {channelPlans} from "./channel-plan.ts";
 import {type ColumnPlan, chooseColumns} from "./choose-columns.ts";
@@ -60,6 +61,7 @@ export async function openTableSurvey(files: readonly Table[], settings: Acquisi
   const filled = heights.filter((role) => scan.filled.has(role));
   const filledPlan: RunPlan = {...plan, roles: new Set([...required, ...filled])};
   notices.push(...checkHeightSettings(filledPlan.roles, settings, {file: files[0]!.name, row: 1}));
+  notices.push(...sharedHeights(channels, filledPlan.roles));
   const {ids, repeated} = identify(scan.runs.map(({name}) => name));
   notices.push(
     ...scanNotices(
@@ -100,6 +102,20 @@ export async function openTableSurvey(files: readonly Table[], settings: Acquisi
       }
     },
   };
+}
+
+/** Further channels that have no height of their own. */
+function sharedHeights(channels: ReturnType<typeof channelPlans>, roles: ReadonlySet<string>): Notice[] {
+  return channels.slice(1).flatMap(({role}) => {
+    const own = ownHeights(role);
+    if (own.some((height) => roles.has(height))) return [];
+    return [
+      remark(
+        "channel/height-of-first",
+        `${role} has no height of its own and is taken to be read where value is. If its sensor stands elsewhere, give --column ${own.map((height) => `${height}=NAME`).join(" or --column ")}.`,
+      ),
+    ];
+  });
 }
 
 /** What the columns of one table are; `needed`: roles that an earlier table of the survey was read with. */

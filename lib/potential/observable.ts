@@ -12,6 +12,8 @@ export interface SourceLaw {
   readonly method: "gravity" | "magnetic";
   /** What the density is, for headings and prose. */
   readonly density: string;
+  /** The same in the few words that a column has room for. */
+  readonly densityNoun: string;
   /** Unit of the density and of its integral across a strip, per metre of strike. */
   readonly densityUnit: "kg/m2" | "A/m";
   readonly totalUnit: "kg/m" | "A";

@@ -11,6 +11,7 @@ import type {SourceLaw} from "./observable.ts";
 export const GRAVITY_LAYER: SourceLaw = {
   method: "gravity",
   density: "surface density",
+  densityNoun: "surface density",
   densityUnit: "kg/m2",
   totalUnit: "kg/m",
   densityPerField: 1 / (2 * Math.PI * GRAVITATIONAL_CONSTANT),
@@ -20,6 +21,7 @@ export const GRAVITY_LAYER: SourceLaw = {
 export const MAGNETIC_LAYER: SourceLaw = {
   method: "magnetic",
   density: "sheet magnetisation, positive down",
+  densityNoun: "sheet magnetisation",
   densityUnit: "A/m",
   totalUnit: "A",
   densityPerField: 2 / VACUUM_PERMEABILITY,

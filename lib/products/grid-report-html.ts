@@ -123,7 +123,7 @@ function* pieces(page: Page, about: RunAbout): Generator<string> {
   const pairs = page.ledger.pairs(delivery);
   if (pairs.length > 0) yield `<h2>All ${noun}s together</h2>${definitionList(pairs)}`;
   yield `<p class="small">lines.csv holds every ${noun}.</p>`;
-  yield `<h2>Settings</h2>${definitionList([...settingsPairs(about.settings, survey, delivery), ["Pixels", `${metreText(grid.step)} m along a ${noun}, ${metreText(grid.spacing)} m from one to the next`]])}<p class="small">record.json holds every setting and the digests of all files.</p>`;
+  yield `<h2>Settings</h2>${definitionList([...settingsPairs(about.settings, survey), ["Pixels", `${metreText(grid.step)} m along a ${noun}, ${metreText(grid.spacing)} m from one to the next`]])}<p class="small">record.json holds every setting and the digests of all files.</p>`;
   yield `<h2>Once more</h2>${cautionBox("grid")}`;
   yield PAGE_END;
 }

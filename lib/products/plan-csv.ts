@@ -1,4 +1,4 @@
-/** plan.csv: one row a combination and strip or level. */
+/** plan.csv: one row a combination and strip or level. A strip that is told from nothing at no height has 0 there; empty: not asked. */
 import {csvCell, csvNumber} from "../formats/csv-text.ts";
 import {deliveryOf} from "../report/delivery.ts";
 import type {Plan} from "../study/plan.ts";
@@ -51,7 +51,7 @@ export async function planCsv(sink: TextSink, {settings, cases}: Plan): Promise<
         toDensity(strip.end),
         toDensity(strip.withGradient),
         toDensity(strip.withSecond),
-        csvNumber(strip.highest),
+        csvNumber(settings.stripStrength === undefined ? undefined : (strip.highest ?? 0)),
         "",
         "",
       ]);

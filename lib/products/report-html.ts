@@ -138,7 +138,7 @@ function* pieces(page: Page, about: RunAbout): Generator<string> {
   }
   yield `<h2>Lines</h2>${lineTable(rows, shown, delivery)}`;
   yield partText(rows.length, total, "line", "lines.csv");
-  yield `<h2>Settings</h2>${definitionList(settingsPairs(about.settings, survey, delivery))}<p class="small">record.json holds every setting and the digests of all files.</p>`;
+  yield `<h2>Settings</h2>${definitionList(settingsPairs(about.settings, survey))}<p class="small">record.json holds every setting and the digests of all files.</p>`;
   if (sections.length < page.sections.offered())
     yield `<p>${counted(sections.length, "line")} of ${countText(page.sections.offered())} follow in full: those with the gravest doubts and an even sample of the others.</p>`;
   for (const section of sections) yield section.html;

@@ -13,6 +13,8 @@ export interface Delivery {
   /** Unit of the density and of its total across a strip per metre of strike. */
   readonly density: string;
   readonly total: string;
+  /** What the density is called: `surface density`. */
+  readonly densityNoun: string;
   toField(si: number): number;
   toLevel(si: number): number;
   toReading(si: number): number;
@@ -31,13 +33,14 @@ export function deliveryOf(observable: Observable, quantity: LevelQuantity = BOU
   const level = DELIVERY_UNIT[quantity.dimension(observable.source)];
   const field = DELIVERY_UNIT[observable.source.fieldDimension];
   const reading = DELIVERY_UNIT[observable.dimension];
-  const {densityPerField, densityUnit, totalUnit} = observable.source;
+  const {densityPerField, densityUnit, totalUnit, densityNoun} = observable.source;
   return {
     field: field.symbol,
     level: level.symbol,
     reading: reading.symbol,
     density: densityUnit,
     total: totalUnit,
+    densityNoun,
     toField: (si) => si / field.factor,
     toLevel: (si) => si / level.factor,
     toReading: (si) => si / reading.factor,

@@ -1,5 +1,8 @@
 /** All about one line: strips, doubts, the figure, why this multiplier, what the intervals rest on. */
+import {DELIVERY_UNIT} from "../quantities.ts";
+import type {ChannelNoises} from "../study/noises.ts";
 import type {LineStudy} from "../study/outcome.ts";
+import type {ConditionedChannel} from "../survey/conditioned.ts";
 import {boundsTable} from "./bounds-table.ts";
 import {comparisonTable} from "./comparison-table.ts";
 import {deliveryOf} from "./delivery.ts";
@@ -64,6 +67,8 @@ function grounds(study: LineStudy): string {
   const {choice, estimate, conditioned, observable, resolution, gain} = study;
   const delivery = deliveryOf(observable);
   const basis = INTERVAL_BASIS[choice.basis];
+  const several = conditioned.channels.length > 1;
+  const ofChannel = ({channel}: ConditionedChannel): string => (several ? `${nameText(channel.role)}: ` : "");
   const readings = estimate.readings;
   return `<div>${definitionList([
     ["Multiplier", figureText(delivery.toMultiplier(choice.multiplier))],
@@ -72,11 +77,13 @@ function grounds(study: LineStudy): string {
       "Misfit",
       `${figureText(estimate.misfit)} for ${counted(readings, "reading")}, ${fixedText(estimate.misfit / readings, 2)} each`,
     ],
+    ["Noise", conditioned.channels.map((heard) => `${ofChannel(heard)}${noiseWords(heard)}`).join("; ")],
     [
-      "Noise",
-      `${figureText(delivery.toReading(conditioned.channels[0]!.noise))} ${delivery.reading}, ${conditioned.channels[0]!.noiseFrom === "given" ? "as given" : "from the record"}${lengthWords(conditioned.channels[0]!.noiseLength)}`,
+      "Noise by each way",
+      study.noises
+        .map((noises, k) => `${ofChannel(conditioned.channels[k]!)}${noisesWords(noises, conditioned.channels[k]!)}`)
+        .join("; "),
     ],
-    ["Noise by each way", noisesWords(study.noises, (si) => figureText(delivery.toReading(si)), delivery.reading)],
     ...(conditioned.direction === undefined
       ? []
       : [
@@ -97,18 +104,22 @@ function grounds(study: LineStudy): string {
   ])}<p class="small">${jointPromise(study.intervals, percentText(study.confidence))}<b>${basis.lead}</b> ${messageText(basis.text)}</p></div>`;
 }
 
-const lengthWords = (length: number): string =>
-  length > 0 ? `, correlated over ${metreText(length)} m along the line` : "";
+function noiseWords({channel, noise, noiseFrom, noiseLength}: ConditionedChannel): string {
+  const {factor, symbol} = DELIVERY_UNIT[channel.observable.dimension];
+  const correlated = noiseLength > 0 ? `, correlated over ${metreText(noiseLength)} m along the line` : "";
+  return `${figureText(noise / factor)} ${symbol}, ${noiseFrom === "given" ? "as given" : "from the record"}${correlated}`;
+}
 
-/** The three estimates of the first channel. */
-function noisesWords([noises]: LineStudy["noises"], figure: (si: number) => string, unit: string): string {
-  const {given, record, spectrum, flat} = noises ?? {};
+/** Three estimates. */
+function noisesWords({given, record, spectrum, flat}: ChannelNoises, {channel}: ConditionedChannel): string {
+  const {factor, symbol} = DELIVERY_UNIT[channel.observable.dimension];
+  const figure = (si: number): string => figureText(si / factor);
   const parts = [
     `given ${given === undefined ? "none" : figure(given)}`,
     `from the record ${record === undefined ? "not to be had" : figure(record)}`,
     `from the shortest waves of the residual ${spectrum === undefined ? "not to be had" : `${figure(spectrum)}, whose spectrum is ${flat ? "" : "not "}flat there`}`,
   ];
-  return `${parts.join("; ")} (${unit})`;
+  return `${parts.join("; ")} (${symbol})`;
 }
 
 const boundWords = ({basis, active}: LineStudy["choice"]): string => {

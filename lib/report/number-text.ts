@@ -56,16 +56,38 @@ export function metreText(metres: number): string {
   return text.includes(".") ? text.replace(/\.?0+$/, "") : text;
 }
 
+/** Digits beyond two of the half-width that an end near zero may take, so that it is not read as zero. */
+const NEAR_ZERO = 3;
+
+/**
+ * Decimals for an interval: two digits of the half-width, and more where an end that is not zero would be printed as zero.
+ * @returns undefined where its ends are so small or so large that each is better written with a power of ten
+ */
+function bracketDecimals(lower: number, upper: number): number | undefined {
+  const exponent = exponentOf((upper - lower) / 2, 2);
+  const largest = Math.max(Math.abs(lower), Math.abs(upper));
+  if (exponent < -6 || exponentOf(largest, 3) > 7) return undefined;
+  const least = Math.max(0, 1 - exponent);
+  for (let more = 0; more <= NEAR_ZERO; ++more)
+    if ([lower, upper].every((end) => end === 0 || isShown(end, least + more))) return least + more;
+  return least;
+}
+
+const isShown = (value: number, decimals: number): boolean => Number(value.toFixed(Math.min(20, decimals))) !== 0;
+
 /** `12.3 (9.1 to 15.5)`, to two digits of the half-width. */
 export function bracketText(value: number, lower: number, upper: number): string {
-  const half = (upper - lower) / 2;
-  if (!(half > 0) || !Number.isFinite(value)) return figureText(value);
-  const largest = Math.max(Math.abs(lower), Math.abs(upper));
-  const exponent = exponentOf(half, 2);
-  if (exponent < -6 || exponentOf(largest, 3) > 7)
-    return `${figureText(value)} (${figureText(lower)} to ${figureText(upper)})`;
-  const decimals = 1 - exponent;
-  return `${fixedText(value, decimals)} (${fixedText(lower, decimals)} to ${fixedText(upper, decimals)})`;
+  if (!(upper > lower) || !Number.isFinite(value)) return figureText(value);
+  const decimals = bracketDecimals(lower, upper);
+  const text = decimals === undefined ? figureText : (number: number): string => fixedText(number, decimals);
+  return `${text(value)} (${text(lower)} to ${text(upper)})`;
+}
+
+/** Signs of the ends of an interval as `bracketText` prints them: 0 where an end is printed as zero. */
+export function bracketSigns(lower: number, upper: number): readonly [lower: number, upper: number] {
+  const decimals = upper > lower ? bracketDecimals(lower, upper) : undefined;
+  const sign = (end: number): number => (decimals === undefined || isShown(end, decimals) ? Math.sign(end) : 0);
+  return [sign(lower), sign(upper)];
 }
 
 /** `1 line`, `12 lines`. */

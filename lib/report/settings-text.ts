@@ -1,7 +1,8 @@
 /** The settings in force in short, for the head of a page; record.json holds them all. */
+import {observableNamed} from "../potential/catalogue.ts";
+import {DELIVERY_UNIT} from "../quantities.ts";
 import type {Settings} from "../study/settings.ts";
 import type {Survey} from "../survey/survey.ts";
-import type {Delivery} from "./delivery.ts";
 import {messageText, nameText} from "./html.ts";
 import {levelWords} from "./level-words.ts";
 import {exactText, metreText, percentText} from "./number-text.ts";
@@ -15,26 +16,15 @@ const DEGREES = {
 } as const;
 
 /** Pairs of a definition list; markup, escaped. */
-export function settingsPairs(
-  settings: Settings,
-  survey: Survey,
-  delivery: Delivery,
-): readonly (readonly [string, string])[] {
+export function settingsPairs(settings: Settings, survey: Survey): readonly (readonly [string, string])[] {
   const {acquisition, model, wanted} = settings;
   const pairs: [string, string][] = [["Files", survey.files.map(nameText).join(", ")]];
-  const [channel] = acquisition.channels;
-  if (channel !== undefined) {
-    const unit = nameText(
-      channel.unit ?? survey.choices.find(({role}) => role === channel.role)?.unit ?? delivery.reading,
-    );
-    const noise =
-      channel.noise === "record" || channel.noise === undefined
-        ? "noise from the fourth differences of the record"
-        : `noise ${exactText(channel.noise)} ${unit} given`;
-    const length = acquisition.noiseLength ?? 0;
-    const correlated = length > 0 ? `, correlated over ${metreText(length)} m along the line` : "";
-    pairs.push(["Readings", `${nameText(channel.observable)}, in ${unit}; ${noise}${correlated}`]);
-  }
+  const length = acquisition.noiseLength ?? 0;
+  for (const channel of acquisition.channels)
+    pairs.push([
+      acquisition.channels.length > 1 ? `Readings, ${nameText(channel.role)}` : "Readings",
+      readingsText(channel, survey, length),
+    ]);
   if (survey.delivered !== undefined) pairs.push(["Coordinates", nameText(survey.delivered)]);
   pairs.push(["Chainage", survey.axes.map(axisText).join("; ")]);
   if (model.boundary !== undefined)
@@ -76,6 +66,21 @@ export function settingsPairs(
     settings.processing === undefined ? "nothing was stated" : messageText(settings.processing),
   ]);
   return pairs;
+}
+
+function readingsText(
+  {role, observable, unit, noise}: Settings["acquisition"]["channels"][number],
+  {choices}: Survey,
+  length: number,
+): string {
+  const own = DELIVERY_UNIT[observableNamed(observable).dimension].symbol;
+  const named = nameText(unit ?? choices.find((choice) => choice.role === role)?.unit ?? own);
+  const told =
+    noise === "record" || noise === undefined
+      ? "noise from the fourth differences of the record"
+      : `noise ${exactText(noise)} ${named} given`;
+  const correlated = length > 0 ? `, correlated over ${metreText(length)} m along the line` : "";
+  return `${nameText(observable)}, in ${named}; ${told}${correlated}`;
 }
 
 const axisText = ({group, azimuth, lines}: Survey["axes"][number]): string =>

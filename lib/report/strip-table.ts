@@ -9,7 +9,7 @@ import {type Delivery, deliveryOf} from "./delivery.ts";
 import {lineMark, px} from "./figures/svg.ts";
 import {nameText} from "./html.ts";
 import {intervalNoun} from "./interval-words.ts";
-import {bracketText, figureText, metreText, percentText} from "./number-text.ts";
+import {bracketSigns, bracketText, figureText, metreText, percentText} from "./number-text.ts";
 import {type Bracket, type StripAnswer, stripAnswer} from "./strip-answer.ts";
 
 export interface StripRow {
@@ -27,10 +27,11 @@ export function stripRows(study: LineStudy): readonly StripRow[] {
   }));
 }
 
-/** What an interval says about the sign. */
+/** What an interval says about the sign, as it is printed: an end that is printed as zero leaves zero in. */
 export function signText({lower, upper}: Bracket): string {
-  if (lower > 0) return "above zero";
-  if (upper < 0) return "below zero";
+  const [low, high] = bracketSigns(lower, upper);
+  if (low > 0) return "above zero";
+  if (high < 0) return "below zero";
   return "not told from zero";
 }
 
@@ -61,7 +62,7 @@ export function stripTable(
     const heading = withLine ? `<tr class="group"><td colspan="5">${span}</td></tr>` : "";
     return heading + group.map((row) => tableRow(row, [least!, greatest!], withLine)).join("");
   });
-  return `<table><thead><tr><th>${withLine ? "Line" : "Strip"}</th><th><span>${percent} ${intervalNoun(intervals)} of the mean</span></th><th class="n">Mean density<br><span>${delivery.density}</span></th><th class="n">Total<br><span>${delivery.total}, per metre of strike</span></th><th>Sign</th></tr></thead><tbody>${body.join("")}</tbody></table>`;
+  return `<table><thead><tr><th>${withLine ? "Line" : "Strip"}</th><th><span>${percent} ${intervalNoun(intervals)} of the mean</span></th><th class="n">Mean ${delivery.densityNoun}<br><span>${delivery.density}</span></th><th class="n">Total<br><span>${delivery.total}, per metre of strike</span></th><th>Sign</th></tr></thead><tbody>${body.join("")}</tbody></table>`;
 }
 
 function tableRow({line, strip, answer}: StripRow, domain: readonly [number, number], withLine: boolean): string {

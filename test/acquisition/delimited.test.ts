@@ -152,6 +152,34 @@ describe("a table of lines", () => {
     expect(line!.channels[1]!.values[1]).toBeCloseTo(6e-12, 20);
     expect(line!.channels[1]!.noise).toBeCloseTo(2e-12, 20);
   });
+
+  describe("a second sensor", () => {
+    const channels = ["value", "value.2"].map((role) => ({role, observable: "gravity", unit: undefined, noise: 1}));
+    const second = (text: string, own: Partial<AcquisitionSettings> = {}) =>
+      open(text, {
+        channels,
+        ...own,
+        columns: new Map([["value.2", "upper"], ...(text.includes("high") ? [["clearance.2", "high"] as const] : [])]),
+      });
+
+    test("without a height of its own stands where the first one does, and that is said", async () => {
+      const survey = await second("x,y,value,upper\n0,0,1,5\n1,0,2,6\n");
+      const found = survey.notices.find(({code}) => code === "channel/height-of-first")!;
+      expect(found.weight).toBe("remark");
+      expect(found.message).toMatch(
+        /^value\.2 has no height of its own.*--column elevation\.2=NAME or --column clearance\.2=NAME/,
+      );
+      expect((await linesOf(survey))[0]!.channels[1]!.above).toBeUndefined();
+    });
+
+    test("with one stands so much higher, and nothing is said", async () => {
+      const survey = await second("x,y,clearance,value,upper,high\n0,0,10,1,5,12.5\n1,0,10,2,6,13\n", {
+        clearance: undefined,
+      });
+      expect(survey.notices.map(({code}) => code)).not.toContain("channel/height-of-first");
+      expect(rounded((await linesOf(survey))[0]!.channels[1]!.above!)).toEqual([2.5, 3]);
+    });
+  });
 });
 
 describe("longitude and latitude", () => {

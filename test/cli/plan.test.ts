@@ -1,3 +1,4 @@
+import {readFileSync} from "node:fs";
 import {join} from "node:path";
 import {describe, expect, test} from "vitest";
 import {contents, fileWith, run, temporaryFolder} from "./harness.ts";
@@ -25,6 +26,21 @@ describe("plan", () => {
     }
     // More noise, wider intervals.
     expect(cases[1].strips[0]["half_width_kg/m2"]).toBeGreaterThan(cases[0].strips[0]["half_width_kg/m2"]);
+  });
+
+  test("told_up_to_m is empty where it was not asked, and 0 where no height will do", async () => {
+    const told = async (...more: string[]): Promise<{csv: string | undefined; json: number | null}> => {
+      const folder = join(temporaryFolder(), "out");
+      const {out} = await plan("--strip-width", "20", "--out", folder, "--json", ...more);
+      const [heads, row] = readFileSync(join(folder, "plan.csv"), "utf8").split("\n");
+      const place = heads!.split(",").indexOf("told_up_to_m");
+      return {csv: row!.split(",")[place], json: JSON.parse(out).cases[0].strips[0].told_up_to_m};
+    };
+    expect(await told()).toEqual({csv: "", json: null});
+    expect(await told("--strip-strength", "1")).toEqual({csv: "0", json: 0});
+    const {csv, json} = await told("--strip-strength", "3.4e6");
+    expect(Number(csv)).toBeGreaterThan(20);
+    expect(Number(csv)).toBeCloseTo(json!, 6);
   });
 
   test("--out writes all files, again over its own, and never over those of others", async () => {

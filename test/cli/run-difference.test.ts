@@ -40,9 +40,22 @@ describe("two runs differ", () => {
     ["a name of two words", {"sensor-offset": "-3"}, {"sensor-offset": "0"}, '--sensor-offset was "-3" and is "0"'],
     ["a boundary", {boundary: "86"}, {boundary: "depth-5"}, '--boundary was "86" and is "depth-5"'],
     ["a column", {column: ["value=g"]}, {column: ["value=h"]}, '--column was "value=g" and is "value=h"'],
-    ["one of two levels", {level: ["0", "5"]}, {level: ["0", "ground+2"]}, '--level was "5" and is "ground+2"'],
-    ["a support more", {support: ["0:9"]}, {support: ["0:9", "G2/20:30"]}, '--support was not given and is "G2/20:30"'],
-    ["a strip", {strip: ["dyke=2:3"]}, {strip: ["dyke=2:4"]}, '--strip was "dyke=2:3" and is "dyke=2:4"'],
+    [
+      "one of two levels",
+      {level: ["0", "5"]},
+      {level: ["0", "ground+2"]},
+      '--level "5" was given and is now "ground+2"',
+    ],
+    ["a level less", {level: ["3", "5"]}, {level: "5"}, '--level "3" was given and is not any more'],
+    ["a level more", {level: "5"}, {level: ["5", "8"]}, '--level "8" was not given and is now'],
+    ["the level that is taken where none is given", {level: ["3", "5"]}, {}, '--level "3, 5" was given and is now "0"'],
+    [
+      "a support more",
+      {support: ["0:9"]},
+      {support: ["0:9", "G2/20:30"]},
+      '--support "G2/20:30" was not given and is now',
+    ],
+    ["a strip", {strip: ["dyke=2:3"]}, {strip: ["dyke=2:4"]}, '--strip "dyke=2:3" was given and is now "dyke=2:4"'],
     ["the order of levels", {level: ["0", "5"]}, {level: ["5", "0"]}, '--level was "0, 5" and is "5, 0"'],
     ["the bound", {bound: "rms:0.5"}, {}, '--bound was "rms:0.5" and is "discrepancy"'],
     ["the processing", {}, {processing: "levelled"}, '--processing was not given and is "levelled"'],
@@ -56,7 +69,7 @@ describe("two runs differ", () => {
       inputs: [],
     });
     expect(runDifference(strips(), strips("pits.geojson, feature 1"))).toBe(
-      '--strips was not given and is "pits.geojson, feature 1"',
+      '--strips "pits.geojson, feature 1" was not given and is now',
     );
   });
 

@@ -1,6 +1,7 @@
 import {describe, expect, test} from "vitest";
 import {doubt} from "../../lib/notice.ts";
 import {gravity} from "../../lib/potential/gravity.ts";
+import {gravityGradient} from "../../lib/potential/gravity-gradient.ts";
 import {gridReportHtml} from "../../lib/products/grid-report-html.ts";
 import {reportHtml} from "../../lib/products/report-html.ts";
 import {CAUTIONS, cautionSentence, cautionsFor} from "../../lib/report/cautions.ts";
@@ -155,6 +156,38 @@ describe("a run over lines", () => {
     for (const unit of ["kg/m2", "kg/m, per metre of strike", "mGal·√m", "noise 0.02 mGal given"])
       expect(flat).toContain(unit);
     expect(flat).not.toMatch(/\bnT\b/);
+  });
+
+  test("names every channel with its noise, and what the mean of a strip is of", async () => {
+    const sink = keptText();
+    const {acquisition} = settingsFixture();
+    const channels = [
+      {role: "value", observable: "gravity", unit: undefined, noise: 0.02},
+      {role: "value.2", observable: "gravity-gradient", unit: undefined, noise: 1.5},
+    ];
+    const product = reportHtml(sink, {...about, settings: settingsFixture({acquisition: {...acquisition, channels}})});
+    await product.begin(frameFixture({observable: gravity}));
+    const outcome = doneLine({observable: gravity, strength: 2e-5, noise: 2e-7});
+    if (!("study" in outcome)) throw new Error("the fixture has a study");
+    const {study} = outcome;
+    const [heard] = study.conditioned.channels;
+    const second = {...heard, channel: {...heard.channel, role: "value.2", observable: gravityGradient}, noise: 1.5e-9};
+    await product.line({
+      ...outcome,
+      study: {
+        ...study,
+        conditioned: {...study.conditioned, channels: [heard, second]},
+        noises: [...study.noises, {...study.noises[0]!, role: "value.2", given: 1.5e-9}],
+      },
+    });
+    await product.end();
+    const flat = squeezed(parsedPage(sink.text()).text);
+    expect(flat).toContain("Readings, value gravity, in mGal; noise 0.02 mGal given");
+    expect(flat).toContain("Readings, value.2 gravity-gradient, in E; noise 1.5 E given");
+    expect(flat).toContain("value: 0.0200 mGal, as given; value.2: 1.50 E, as given");
+    expect(flat).toContain("value.2: given 1.50");
+    expect(flat).toContain("Mean surface density");
+    expect(squeezed(parsedPage(await lineReport([doneLine()])).text)).toContain("Mean sheet magnetisationA/m");
   });
 
   test("never lets a name become markup, wherever it stands", async () => {

@@ -47,6 +47,32 @@ describe("numbers for reading", () => {
     expect(bracketText(3, 3, 3)).toBe("3.00");
   });
 
+  test("an end that is not zero is not printed as zero, nor the other way about", () => {
+    expect(bracketText(0.2489, -0.003245, 0.501)).toBe("0.249 (−0.003 to 0.501)");
+    expect(bracketText(0.25, 0.0004, 0.5)).toBe("0.2500 (0.0004 to 0.5000)");
+    expect(bracketText(0.25, 0, 0.5)).toBe("0.25 (0.00 to 0.50)");
+    // So near that no sensible number of digits tells it: the words follow what is printed.
+    expect(bracketText(0.25, 1e-9, 0.5)).toBe("0.25 (0.00 to 0.50)");
+    expect(signText({value: 0.25, lower: 1e-9, upper: 0.5})).toBe("not told from zero");
+    const anyEnd = fc
+      .tuple(fc.double({min: -10, max: 10, noNaN: true}), fc.integer({min: -12, max: 8}))
+      .map(([digits, power]) => Number(digits.toPrecision(9)) * 10 ** power)
+      .filter((end) => end === 0 || Math.abs(end) > 1e-100);
+    fc.assert(
+      fc.property(anyEnd, anyEnd, (one, other) => {
+        const [lower, upper] = [Math.min(one, other), Math.max(one, other)];
+        const [, low, high] =
+          /\((\S+(?: × \S+)?) to (\S+(?: × \S+)?)\)/.exec(bracketText((lower + upper) / 2, lower, upper)) ?? [];
+        fc.pre(low !== undefined && high !== undefined);
+        const isZero = (text: string): boolean => !/[1-9]/.test(text.split(" ×")[0]!);
+        const sign = signText({value: 0, lower, upper});
+        expect(sign === "above zero").toBe(!low!.startsWith("−") && !isZero(low!));
+        expect(sign === "below zero").toBe(high!.startsWith("−") && !isZero(high!));
+      }),
+      {seed: 20_261_201},
+    );
+  });
+
   test("the sign is told only when the interval leaves out zero", () => {
     expect(signText({value: 1, lower: 0.1, upper: 2})).toBe("above zero");
     expect(signText({value: -1, lower: -2, upper: -0.1})).toBe("below zero");

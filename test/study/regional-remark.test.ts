@@ -28,7 +28,7 @@ const halves = ({levels}: LineStudy): number[] =>
 
 test("sources anywhere under a short line: the widths with a regional and without, and the levels so high", () => {
   const wide = study({});
-  const [{message, weight}] = told(wide) as [{message: string; weight: string}];
+  const [{message, weight}] = told(wide) as unknown as [{message: string; weight: string}];
   expect(weight).toBe("remark");
   const [, withOne, without, level] =
     /half of one is ([\d.]+) mGal .* it is ([\d.]+) mGal at most.*Likewise ([\d.]+) mGal on level 10\./.exec(message)!;
