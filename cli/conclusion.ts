@@ -45,8 +45,8 @@ export function conclude(
   }
   const noun = survey.grid === undefined ? "line" : survey.grid.orientation.slice(0, -1);
   for (const kind of doubts.summary())
-    if (kind.weight === "doubt") messages.doubt(doubtText(kind, noun));
-    else messages.note(doubtText(kind, noun));
+    if (kind.weight === "doubt") messages.doubt(doubtText(kind, noun, survey.lineCount));
+    else messages.note(doubtText(kind, noun, survey.lineCount));
   host.out.write(result.text());
   messages.note(`${names.length} files in ${out}: ${names.join(", ")}.`);
   for (const {text} of grounds) messages.note(text);

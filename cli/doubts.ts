@@ -51,14 +51,26 @@ export function doubtCollector(): Doubts {
   };
 }
 
-/** What stands before a message to say which lines it is about. */
-export function linesText({count, firstLines}: Pick<DoubtSummary, "count" | "firstLines">, noun = "line"): string {
+/**
+ * What stands before a message to say which lines it is about.
+ * @param all how many there are: a few names say nothing where it is about all of them
+ */
+export function linesText(
+  {count, firstLines}: Pick<DoubtSummary, "count" | "firstLines">,
+  noun = "line",
+  all?: number,
+): string {
   if (count === 1) return `${noun} ${firstLines[0]} · `;
+  if (count === all && count > firstLines.length) return `all ${count} ${noun}s · as on ${firstLines[0]}: `;
   const more = count > firstLines.length ? ` and ${count - firstLines.length} more` : "";
   return `${count} ${noun}s (${firstLines.join(", ")}${more}) · as on ${firstLines[0]}: `;
 }
 
-/** One kind of doubt for people. @param noun what it was raised on: `line`, `row` */
-export function doubtText({code, message, count, firstLines}: DoubtSummary, noun = "line"): string {
-  return `${count === 0 ? "" : linesText({count, firstLines}, noun)}${message} [${code}]`;
+/**
+ * One kind of doubt for people.
+ * @param noun what it was raised on: `line`, `row`
+ * @param all how many there are
+ */
+export function doubtText({code, message, count, firstLines}: DoubtSummary, noun = "line", all?: number): string {
+  return `${count === 0 ? "" : linesText({count, firstLines}, noun, all)}${message} [${code}]`;
 }

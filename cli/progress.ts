@@ -3,9 +3,9 @@ import type {Host} from "./nouns.ts";
 import {printable} from "./printable.ts";
 
 const REDRAW_MS = 100;
-/** Up to so many lines each is told where nothing can be rewritten; beyond, every twentieth or when so much time went by. */
+/** Up to so many lines each is told where nothing can be rewritten; beyond, every quarter or when so much time went by. */
 const EACH = 4;
-const SHARE = 20;
+const SHARE = 4;
 const SILENCE_MS = 10_000;
 /** No rate is told from less time than this. */
 const RATE_MS = 2000;

@@ -6,10 +6,17 @@ import {figure} from "./table.ts";
 /** One sentence per choice: columns, axis and zero of chainage, delivered coordinates. */
 export function surveyNotes({choices, axes, delivered, grid, lineCount, kind}: Survey): string[] {
   const notes: string[] = [];
-  const roles = choices.map(
-    ({role, column, reason}) => `${role} from "${column}"${reason === "asked" ? "" : " (recognised)"}`,
+  // What was recognised is what may be wrong: said once, behind those columns.
+  const columns = (found: boolean): string =>
+    choices
+      .filter(({reason}) => (reason !== "asked") === found)
+      .map(({role, column}) => `${role} from "${column}"`)
+      .join(", ");
+  const parts = [columns(false), columns(true) === "" ? "" : `${columns(true)} (recognised)`].filter(
+    (part) => part !== "",
   );
-  if (roles.length > 0) notes.push(`Columns: ${roles.join(", ")}.`);
+  if (parts.length > 0)
+    notes.push(`${kind === "lines" ? `${counted(lineCount, "line")}. ` : ""}Columns: ${parts.join("; ")}.`);
   if (grid !== undefined)
     notes.push(
       `Grid of ${grid.width} × ${grid.height} pixels; its ${grid.orientation} are the lines: a reading every ${figure(grid.step)} m, ${figure(grid.spacing)} m apart.`,
@@ -23,6 +30,6 @@ export function surveyNotes({choices, axes, delivered, grid, lineCount, kind}: S
       );
   }
   if (delivered !== undefined) notes.push(`Delivered x, y: ${delivered}.`);
-  if (kind === "lines") notes.push(`${counted(lineCount, "line")}.`);
+  if (kind === "lines" && parts.length === 0) notes.push(`${counted(lineCount, "line")}.`);
   return notes;
 }

@@ -31,6 +31,9 @@ test("doubts of many lines are told once a kind, doubts before remarks", () => {
     "27 lines (L1, L2, L3, L4 and 23 more) · as on L1: wide [bound/not-active]",
   ]);
   expect(doubtText(summary[3]!, "row")).toMatch(/^27 rows \(/);
+  // Of all lines no name need be told but that of the example.
+  expect(doubtText(summary[3]!, "line", 27)).toBe("all 27 lines · as on L1: wide [bound/not-active]");
+  expect(doubtText(summary[3]!, "line", 28)).toMatch(/^27 lines \(/);
 });
 
 function progressText(total: number, isTerminal: boolean, silent = false): string {
@@ -58,13 +61,12 @@ function progressText(total: number, isTerminal: boolean, silent = false): strin
 
 test("progress in a pipe is a few lines, however many there are", () => {
   expect(progressText(2, false)).toBe("1 of 2 lines: L1\n2 of 2 lines: L2\n");
-  // 40 ms a line: 25 a second, every twentieth of the work.
+  // 40 ms a line: 25 a second, every quarter of the work.
   const told = progressText(1000, false).split("\n");
-  expect(told).toHaveLength(21);
-  expect(told[0]).toBe("50 of 1000 lines, 25 a second, 38 s left");
-  expect(told[9]).toBe("500 of 1000 lines, 25 a second, 20 s left");
+  expect(told).toHaveLength(5);
+  expect(told[0]).toBe("250 of 1000 lines, 25 a second, 30 s left");
+  expect(told[1]).toBe("500 of 1000 lines, 25 a second, 20 s left");
   expect(told.slice(-2)).toEqual(["1000 of 1000 lines", ""]);
-  // A twentieth takes 40 s: every 10 s then.
   expect(progressText(20_000, false).split("\n").length - 1).toBe(Math.floor((20_000 * 0.04) / 10));
   expect(progressText(1000, false, true)).toBe("");
 });
