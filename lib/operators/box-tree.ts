@@ -1,16 +1,25 @@
 /**
- * Boxes of chainage over readings and panels, each level's twice as long as those below, and how many terms their
+ * Boxes of chainage over readings and sources, each level's twice as long as those below, and how many terms their
  * expansions need. What two boxes that are no neighbours say to each other falls off by a known ratio a term, the
  * radius of one over the distance to the edge of the other: lengths and terms are chosen by that bound.
  */
-import type {Panels} from "./panels.ts";
 import type {Readings} from "./readings.ts";
+
+/** Straight pieces of the boundary in increasing chainage, m: panels, or points of no length. */
+export interface Sources {
+  readonly count: number;
+  readonly from: Float64Array;
+  readonly to: Float64Array;
+  readonly centre: Float64Array;
+  readonly yFrom: Float64Array;
+  readonly yTo: Float64Array;
+}
 
 interface BoxLevel {
   readonly count: number;
   /** Length of a box, m. */
   readonly length: number;
-  /** Middles, x and z of each box: of its panels, and of its readings. */
+  /** Middles, x and z of each box: of its sources, and of its readings. */
   readonly sources: Float64Array;
   readonly targets: Float64Array;
   /** Whether a box holds any. */
@@ -28,41 +37,34 @@ export interface BoxTree {
   /** Readings in the order of the leaves, `readingFrom[b] … readingFrom[b + 1] − 1` those of leaf b. */
   readonly readingAt: Int32Array;
   readonly readingFrom: Int32Array;
-  /** Panels `panelFrom[b] … panelFrom[b + 1] − 1` are those of leaf b. */
-  readonly panelFrom: Int32Array;
+  /** Sources `sourceFrom[b] … sourceFrom[b + 1] − 1` are those of leaf b. */
+  readonly sourceFrom: Int32Array;
 }
 
-/** What an expansion may leave out, over the kernel at the distance of the boxes. */
-const LEFT_OUT = 1e-10;
 /** A ratio above this needs too many terms; the boxes are made longer instead, up to so many times. */
 const STEEPEST = 0.45;
 const MOST_DOUBLINGS = 40;
-/** Panels a leaf, which balances near kernels against expansions; and the near kernels that memory allows. Heuristics. */
-const PANELS_A_LEAF = 48;
-const MOST_NEAR = 8e7;
-const LEAST_PANELS_A_LEAF = 12;
 
-export function boxTree(readings: Readings, panels: Panels): BoxTree {
-  const low = Math.min(least(readings.x), panels.from[0]);
-  const high = Math.max(most(readings.x), panels.to[panels.count - 1]);
-  const widest = most(panels.width);
-  const perLeaf = Math.max(
-    LEAST_PANELS_A_LEAF,
-    Math.min(PANELS_A_LEAF, Math.floor(MOST_NEAR / (3 * Math.max(readings.count, 1)))),
-  );
+/**
+ * @param leaf length of the smallest boxes, m; made longer where expansions need it
+ * @param leftOut what an expansion may leave out, over the kernel at the distance of the boxes
+ */
+export function boxTree(readings: Readings, sources: Sources, leaf: number, leftOut: number): BoxTree {
+  const low = Math.min(least(readings.x), sources.from[0]);
+  const high = Math.max(most(readings.x), sources.to[sources.count - 1]);
   // No more leaves than there is to put in them.
-  let length = Math.max(perLeaf * widest, (high - low) / (readings.count + panels.count));
+  let length = Math.max(leaf, (high - low) / (readings.count + sources.count));
   for (let tries = 0; ; ++tries, length *= 2) {
-    const tree = treeOf(readings, panels, low, high, length);
+    const tree = treeOf(readings, sources, low, high, length);
     const ratio = steepest(tree);
     if (ratio <= STEEPEST || tree.levels.every(({pairSource}) => pairSource.length === 0) || tries === MOST_DOUBLINGS)
-      return {...tree, terms: termsFor(ratio)};
+      return {...tree, terms: termsFor(ratio, leftOut)};
   }
 }
 
 /** The remainder of a geometric series. */
-const termsFor = (ratio: number): number =>
-  ratio > 0 ? Math.max(2, Math.ceil(Math.log(LEFT_OUT * (1 - ratio)) / Math.log(ratio))) : 2;
+const termsFor = (ratio: number, leftOut: number): number =>
+  ratio > 0 ? Math.max(2, Math.ceil(Math.log(leftOut * (1 - ratio)) / Math.log(ratio))) : 2;
 
 interface Extent {
   readonly xLow: Float64Array;
@@ -105,17 +107,17 @@ interface MeasuredTree extends Omit<BoxTree, "terms"> {
   readonly levels: readonly MeasuredLevel[];
 }
 
-function treeOf(readings: Readings, panels: Panels, low: number, high: number, length: number): MeasuredTree {
+function treeOf(readings: Readings, pieces: Sources, low: number, high: number, length: number): MeasuredTree {
   const leaves = Math.max(1, Math.ceil((high - low) / length));
   const leafOf = (x: number): number => Math.min(leaves - 1, Math.max(0, Math.floor((x - low) / length)));
   let sources = extent(leaves);
   let targets = extent(leaves);
-  const panelFrom = new Int32Array(leaves + 1);
-  for (let j = 0; j < panels.count; ++j) {
-    const b = leafOf(panels.centre[j]);
-    ++panelFrom[b + 1];
-    include(sources, b, panels.from[j], panels.yFrom[j]);
-    include(sources, b, panels.to[j], panels.yTo[j]);
+  const sourceFrom = new Int32Array(leaves + 1);
+  for (let j = 0; j < pieces.count; ++j) {
+    const b = leafOf(pieces.centre[j]);
+    ++sourceFrom[b + 1];
+    include(sources, b, pieces.from[j], pieces.yFrom[j]);
+    include(sources, b, pieces.to[j], pieces.yTo[j]);
   }
   const readingFrom = new Int32Array(leaves + 1);
   for (let i = 0; i < readings.count; ++i) {
@@ -124,7 +126,7 @@ function treeOf(readings: Readings, panels: Panels, low: number, high: number, l
     include(targets, b, readings.x[i], readings.z[i]);
   }
   for (let b = 0; b < leaves; ++b) {
-    panelFrom[b + 1] += panelFrom[b];
+    sourceFrom[b + 1] += sourceFrom[b];
     readingFrom[b + 1] += readingFrom[b];
   }
   const readingAt = new Int32Array(readings.count);
@@ -134,7 +136,7 @@ function treeOf(readings: Readings, panels: Panels, low: number, high: number, l
   const levels: MeasuredLevel[] = [];
   for (let count = leaves, size = length; ; count = (count + 1) >> 1, size *= 2) {
     levels.push(levelOf(sources, targets, count, size));
-    if (count <= 3) return {levels, leaves, panelFrom, readingFrom, readingAt};
+    if (count <= 3) return {levels, leaves, sourceFrom, readingFrom, readingAt};
     sources = above(sources);
     targets = above(targets);
   }

@@ -165,19 +165,36 @@ function distance(continuum: Continuum, first: number, last: number, a: number, 
   const top = Math.max(boundaryAt(continuum.boundary, a), boundaryAt(continuum.boundary, b));
   let least = Infinity;
   const {x, z, stretches} = continuum;
-  for (let i = first; i < last; ++i) {
-    if (stretches?.[i] !== undefined) continue;
+  /** False where readings from here on are farther off than one before. */
+  const nearer = (i: number): boolean => {
     const across = x[i] < a ? a - x[i] : x[i] > b ? x[i] - b : 0;
+    if (across * across >= least) return false;
+    if (stretches?.[i] !== undefined) return true;
     const above = z[i] - top;
-    const d2 = across * across + (above > 0 ? above * above : 0);
-    if (d2 < least) least = d2;
-  }
+    least = Math.min(least, across * across + (above > 0 ? above * above : 0));
+    return true;
+  };
+  const middle = firstFrom(x, a, first, last);
+  for (let i = middle; i < last && nearer(i); ++i);
+  for (let i = middle - 1; i >= first && nearer(i); --i);
   if (also !== undefined) {
     const across = also.x < a ? a - also.x : also.x > b ? also.x - b : 0;
     const above = Math.max(also.z - top, 0);
     least = Math.min(least, across * across + above * above);
   }
   return Math.sqrt(least);
+}
+
+/** Place of the first of the increasing x among `first … last − 1` that is not below `least`; `last` where there is none. */
+export function firstFrom(x: Float64Array, least: number, first: number, last: number): number {
+  let low = first;
+  let high = last;
+  while (low < high) {
+    const middle = (low + high) >> 1;
+    if (x[middle] < least) low = middle + 1;
+    else high = middle;
+  }
+  return low;
 }
 
 /** Kernel of reading i at a node, not whitened. */
@@ -271,27 +288,4 @@ export function sharedNodes(continuum: Continuum, first: number, last: number): 
   if (shared.size > 1) shared.delete(shared.keys().next().value!);
   shared.set(key, made);
   return made;
-}
-
-/** G R for `terms` vectors over all readings (terms × count, row-major), G the whitened Gram matrix; no matrix is stored. */
-export function gramTimes(continuum: Continuum, vectors: Float64Array, terms: number): Float64Array {
-  const nodes = nodesFor(continuum, 0, continuum.count);
-  const plain = isPlain(continuum);
-  const result = new Float64Array(terms * continuum.count);
-  const row = new Float64Array(continuum.count);
-  for (let k = 0; k < nodes.count; ++k) {
-    if (plain)
-      for (let i = 0; i < continuum.count; ++i) row[i] = responseAt(continuum, nodes, i, k) * nodes.rootWeight[k];
-    else {
-      columnInto(row, continuum, nodes, 0, continuum.count, k);
-      for (let i = 0; i < continuum.count; ++i) row[i] *= nodes.rootWeight[k];
-    }
-    for (let t = 0; t < terms; ++t) {
-      const start = t * continuum.count;
-      let dot = 0;
-      for (let i = 0; i < continuum.count; ++i) dot += row[i] * vectors[start + i];
-      for (let i = 0; i < continuum.count; ++i) result[start + i] += dot * row[i];
-    }
-  }
-  return result;
 }

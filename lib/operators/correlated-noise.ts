@@ -46,6 +46,30 @@ export function whitened(values: Float64Array, {noise, before, rho, correlated}:
   return values.map((value, i) => (before[i] < 0 ? value : value - rho[i] * values[before[i]]) / noise[i]);
 }
 
+/** Whitens what all readings say; `target` must not alias `raw`. */
+export function whitenInto(
+  target: Float64Array,
+  raw: Float64Array,
+  {noise, before, rho, correlated}: Whitening,
+): Float64Array {
+  for (let i = 0; i < raw.length; ++i) target[i] = raw[i] / noise[i];
+  for (let i = 0; correlated && i < raw.length; ++i)
+    if (before[i] >= 0) target[i] -= (rho[i] * raw[before[i]]) / noise[i];
+  return target;
+}
+
+/** The transpose of `whitenInto`; `target` must not alias `white`. */
+export function whitenAdjointInto(
+  target: Float64Array,
+  white: Float64Array,
+  {noise, before, rho, correlated}: Whitening,
+): Float64Array {
+  for (let i = 0; i < white.length; ++i) target[i] = white[i] / noise[i];
+  for (let i = 0; correlated && i < white.length; ++i)
+    if (before[i] >= 0) target[before[i]] -= (rho[i] * white[i]) / noise[i];
+  return target;
+}
+
 /** The values that were whitened; a new list. @param x chainage of the readings */
 export function unwhitened(
   values: Float64Array,

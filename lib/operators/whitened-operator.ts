@@ -1,4 +1,5 @@
 /** The whitened operator as a pair of products: B acts on f √w and gives readings over their noise, as `whitened.ts` has it. */
+import {whitenAdjointInto, whitenInto} from "./correlated-noise.ts";
 import type {MultipoleOperator} from "./multipole.ts";
 import type {Readings} from "./readings.ts";
 
@@ -15,7 +16,7 @@ export interface WhitenedOperator {
 
 /** @param readings whose noise whitens; the regional is not projected out */
 export function whitenedOperator(operator: MultipoleOperator, readings: Readings): WhitenedOperator {
-  const {count, noise, before, rho, correlated} = readings;
+  const {count} = readings;
   const {panels} = operator;
   const rootWidth = panels.width.map(Math.sqrt);
   const density = new Float64Array(panels.count);
@@ -27,15 +28,10 @@ export function whitenedOperator(operator: MultipoleOperator, readings: Readings
     applyInto(target, source) {
       for (let j = 0; j < density.length; ++j) density[j] = source[j] / rootWidth[j];
       operator.applyInto(raw, density);
-      for (let i = 0; i < count; ++i) target[i] = raw[i] / noise[i];
-      for (let i = 0; correlated && i < count; ++i)
-        if (before[i] >= 0) target[i] -= (rho[i] * raw[before[i]]) / noise[i];
-      return target;
+      return whitenInto(target, raw, readings);
     },
     adjointInto(target, data) {
-      for (let i = 0; i < count; ++i) raw[i] = data[i] / noise[i];
-      for (let i = 0; correlated && i < count; ++i) if (before[i] >= 0) raw[before[i]] -= (rho[i] * data[i]) / noise[i];
-      operator.adjointInto(target, raw);
+      operator.adjointInto(target, whitenAdjointInto(raw, data, readings));
       for (let j = 0; j < target.length; ++j) target[j] /= rootWidth[j];
       return target;
     },

@@ -3,29 +3,30 @@
  *
  *   Q (BBᵀ + α) c = d, c orthogonal to the regional;   f_α = Bᵀc,   r = α c the residual,
  *
- * by conjugate gradients, B by multipoles, preconditioned by the inverses on overlapping windows freed of the regional:
- * P − PR (RᵀPR)⁻¹ RᵀP. A search asks for many multipliers. Of what was found at earlier ones the products are known,
+ * by generalised minimal residuals, B by multipoles, preconditioned by the inverses on windows (`patches.ts`) freed of the
+ * regional: P − PR (RᵀPR)⁻¹ RᵀP. A search asks for many multipliers. Of what was found at earlier ones the products are known,
  * Q (BBᵀ + α) c_j = d + (α − α_j) c_j, so that the best of their combinations is the start at the next.
  *
  * Misfit, norm and estimate are those of the normal equation (measured: to 1e-8 of the dense solver's). Degrees of
  * freedom and evidence count modes window by window, and are approximations: within 1 % of the dense ones (measured).
  */
 import {NumericalError} from "../errors.ts";
-import {choleskyInPlace, choleskySolveInto} from "../numeric/cholesky.ts";
+import {luInPlace, luSolveInPlace} from "../numeric/lu.ts";
+import {recent} from "../numeric/recent.ts";
 import type {MultipoleOperator} from "../operators/multipole.ts";
 import {pick, type Readings} from "../operators/readings.ts";
 import {projectOutInPlace, type RegionalBasis} from "../operators/regional.ts";
 import {whitenedOperator} from "../operators/whitened-operator.ts";
-import {descendInPlace, dot} from "./patches.ts";
+import {dot, minimalResidual} from "./minimal-residual.ts";
 import type {Solver} from "./solver.ts";
 import {windowsCover} from "./windows-cover.ts";
 
-/** The preconditioned residual is taken down to this share of the data's; more than the second is no solution. */
-const ENOUGH = 1e-11;
+/** The preconditioned residual, which is nearly the error of c, is taken down to this share of c; more than the second is no solution. */
+const ENOUGH = 1e-13;
 const SOLVED = 1e-8;
-const MOST_STEPS = 400;
+const MOST_STEPS = 240;
 /** A slope only steers searches. */
-const ENOUGH_FOR_SLOPE = 1e-8;
+const ENOUGH_FOR_SLOPE = 1e-9;
 /** The least multiplier tried, over the largest eigenvalue; and the factor to the next, where steps do not get there. */
 const LEAST = 1e-7;
 const LESS_BOLD = 10;
@@ -81,6 +82,9 @@ export function iterativeSolver(
     return placed;
   };
 
+  /** The last few, since a slope and a count are asked for where a solution was. */
+  const frees = recent<number, ReturnType<typeof withoutRegional>>(KEPT);
+  const freeAt = (alpha: number) => frees(alpha, () => withoutRegional((vector) => inverse(vector, alpha), basis));
   const solutions: Solution[] = [];
   const figures = new Map<number, Figures>();
   const slopes = new Map<number, number>();
@@ -93,28 +97,18 @@ export function iterativeSolver(
     share: number,
     mostSteps = MOST_STEPS,
   ): Float64Array => {
-    const free = withoutRegional((vector) => inverse(vector, alpha), basis);
-    const imageInto = (target: Float64Array, vector: Float64Array): Float64Array => {
-      gramInto(target, vector);
-      for (let i = 0; i < n; ++i) target[i] += alpha * vector[i];
-      return target;
+    const free = freeAt(alpha);
+    const apply = (vector: Float64Array): Float64Array => {
+      const image = gramInto(new Float64Array(n), vector);
+      for (let i = 0; i < n; ++i) image[i] += alpha * vector[i];
+      return free.apply(image);
     };
-    const scale = dot(right, free.apply(right));
-    const residual = right.slice();
-    const c = start ?? new Float64Array(n);
-    if (start !== undefined) {
-      const image = imageInto(new Float64Array(n), c);
-      for (let i = 0; i < n; ++i) residual[i] -= image[i];
-    }
-    const {left} = descendInPlace(c, residual, {
-      imageInto,
-      precondition: free.apply,
-      enough: () => share * share * scale,
-      mostSteps,
-    });
+    const wanted = free.apply(right);
+    const scale = Math.sqrt(dot(wanted, wanted));
+    const {solution, left} = minimalResidual(apply, wanted, {enough: share * scale, mostSteps}, start);
     // Written so that NaN fails.
-    if (!(left <= SOLVED * SOLVED * scale)) throw tooSmall(alpha);
-    return c;
+    if (!(left <= SOLVED * scale)) throw tooSmall(alpha);
+    return solution;
   };
   const solutionAt = (alpha: number, mostSteps = MOST_STEPS): Solution => {
     const known = solutions.find((each) => each.alpha === alpha);
@@ -141,9 +135,6 @@ export function iterativeSolver(
     slopes.set(alpha, slope);
     return slope;
   };
-  /** Of the regional: what it takes from the degrees of freedom, and adds to the logarithm of the determinant. */
-  const regionalAt = (alpha: number) => withoutRegional((vector) => inverse(vector, alpha), basis);
-
   let least = LEAST * largest;
   for (; least < largest; least *= LESS_BOLD) {
     try {
@@ -175,7 +166,7 @@ export function iterativeSolver(
         if (multiplier === Infinity) return 0;
         const alpha = served(multiplier);
         const seen = cover.trace((lambda) => lambda / (lambda + alpha));
-        return seen - basis.terms + alpha * regionalAt(alpha).traceTaken;
+        return seen - basis.terms + alpha * freeAt(alpha).traceTaken;
       },
       evidence(multiplier) {
         const alpha = served(multiplier);
@@ -183,7 +174,7 @@ export function iterativeSolver(
         const quadratic = (residualEnergy + alpha * normSquared) * shrink;
         const logDeterminant =
           cover.trace((lambda) => Math.log1p(lambda / alpha)) +
-          regionalAt(alpha).logDeterminant +
+          freeAt(alpha).logDeterminant +
           basis.terms * Math.log(alpha);
         return {
           against: Math.log(quadratic / freedom) + logDeterminant / freedom,
@@ -244,14 +235,14 @@ function withoutRegional(inverse: (vector: Float64Array) => Float64Array, {terms
       factor[t * terms + u] = dot(rows.subarray(t * count, (t + 1) * count), solved[u]);
       squares[t * terms + u] = dot(solved[t], solved[u]);
     }
-  choleskyInPlace(factor, terms);
+  const pivots = luInPlace(factor, terms);
   const shares = new Float64Array(terms);
   let traceTaken = 0;
   let logDeterminant = 0;
   for (let u = 0; u < terms; ++u) {
     for (let t = 0; t < terms; ++t) shares[t] = squares[t * terms + u];
-    traceTaken += choleskySolveInto(shares, factor, shares, terms)[u];
-    logDeterminant += 2 * Math.log(factor[u * terms + u]);
+    traceTaken += luSolveInPlace(shares, factor, pivots)[u];
+    logDeterminant += Math.log(Math.abs(factor[u * terms + u]));
   }
   return {
     traceTaken,
@@ -259,7 +250,7 @@ function withoutRegional(inverse: (vector: Float64Array) => Float64Array, {terms
     apply(vector: Float64Array): Float64Array {
       const result = inverse(vector);
       for (let t = 0; t < terms; ++t) shares[t] = dot(rows.subarray(t * count, (t + 1) * count), result);
-      choleskySolveInto(shares, factor, shares, terms);
+      luSolveInPlace(shares, factor, pivots);
       for (let t = 0; t < terms; ++t) for (let i = 0; i < count; ++i) result[i] -= shares[t] * solved[t][i];
       return result;
     },

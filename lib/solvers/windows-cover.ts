@@ -4,7 +4,7 @@ import type {Panels} from "../operators/panels.ts";
 import type {Readings} from "../operators/readings.ts";
 import {windowRows} from "../operators/window-rows.ts";
 import {dataModes} from "../spectral/singular-system.ts";
-import {blend, type Patch, smoothed} from "./patches.ts";
+import {type Patch, patchedInverse} from "./patches.ts";
 
 /**
  * Core and margin of a window in heights. The widest serve best where heights jump from station to station; the first
@@ -24,7 +24,7 @@ interface Stretch extends Omit<Patch, "block"> {
 
 export interface WindowsCover {
   readonly patches: readonly Patch[];
-  /** Σ D (G_window + α)⁻¹ D r: nearly (BBᵀ + α)⁻¹ r; a new list. */
+  /** Nearly (BBᵀ + α)⁻¹ r; a new list. */
   inverse(residual: Float64Array, alpha: number): Float64Array;
   /** Σ g(λ) over the modes of the line, as windows see them: tr g(BBᵀ) for g(0) = 0. */
   trace(weigh: (eigenvalue: number) => number): number;
@@ -36,11 +36,10 @@ export interface WindowsCover {
  */
 export function windowsCover(readings: Readings, panels: Panels, floor: number): WindowsCover {
   const {x} = readings;
-  const patches = stretches(readings, panels).map(({first, last, lowest, from, to, margin}): Patch => {
+  const patches = stretches(readings, panels).map(({first, last, lowest, from, to}): Patch => {
     const {matrix, columns} = windowRows(readings, panels, first, last, lowest);
-    return {block: {first, last, modes: dataModes(matrix, last - first, columns, floor)}, from, to, margin};
+    return {block: {first, last, modes: dataModes(matrix, last - first, columns, floor)}, from, to};
   });
-  const weights = blend(x, patches);
   /** How much of each mode lies on its own patch. */
   const shares = patches.map(({block: {first, last, modes}, from, to}) => {
     const rows = last - first;
@@ -52,7 +51,7 @@ export function windowsCover(readings: Readings, panels: Panels, floor: number):
   });
   return {
     patches,
-    inverse: (residual, alpha) => smoothed(residual, alpha, patches, weights),
+    inverse: patchedInverse(x, patches),
     trace(weigh) {
       let sum = 0;
       patches.forEach(({block: {modes}}, p) => {
@@ -95,7 +94,7 @@ function stretchesOf({x, count}: Readings, heights: Float64Array, width: number)
     const last = placeOf(x, Math.min(to, x[end - 1]) + margin);
     let lowest = Infinity;
     for (let i = first; i < last; ++i) lowest = Math.min(lowest, heights[i]);
-    found.push({from, to, margin, first: Math.min(first, next), last: Math.max(last, end), lowest});
+    found.push({from, to, first: Math.min(first, next), last: Math.max(last, end), lowest});
     next = end;
   }
   return found;

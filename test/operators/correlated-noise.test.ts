@@ -1,9 +1,10 @@
 /** Correlated noise is whitened exactly, everywhere alike, and white noise is left as it was. */
 import {describe, expect, test} from "vitest";
-import {type Continuum, continuumOf, gramTimes, nodeMatrix, nodesFor} from "../../lib/operators/continuum.ts";
+import {type Continuum, continuumOf, nodeMatrix, nodesFor} from "../../lib/operators/continuum.ts";
 import {unwhitened, whitened} from "../../lib/operators/correlated-noise.ts";
 import {forwardOperator} from "../../lib/operators/forward.ts";
 import {densityAt, type Functional, fieldAt, meanOver} from "../../lib/operators/functional.ts";
+import {gramProduct} from "../../lib/operators/gram-product.ts";
 import {panelsOn} from "../../lib/operators/panels.ts";
 import {type Readings, readingsOf} from "../../lib/operators/readings.ts";
 import {regionalBasis} from "../../lib/operators/regional.ts";
@@ -134,7 +135,7 @@ describe.each([
       column(dense, k).reduce((sum, p, i) => sum + p * weights[i]!, 0),
     );
     const norm = sums.reduce((sum, s) => sum + s * s, 0);
-    const gram = gramTimes(red, weights, 1);
+    const gram = gramProduct(red)(weights);
     const square = gram.reduce((sum, value, i) => sum + value * weights[i]!, 0);
     absoluteClose(square / norm, 1, 1e-12, "rounding of sums that cancel");
     const size = Math.max(...gram.map(Math.abs));

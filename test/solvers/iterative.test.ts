@@ -22,7 +22,7 @@ const CASES: readonly (readonly [name: string, line: UnevenLine, degree: number,
   ["heights ±10 %, regional 1", {stations: 700, sway: 0.1}, 1, [1e-2, 1e-4, 1e-6]],
   ["heights ±40 %, no regional", {stations: 420, sway: 0.4}, -1, [1e-2, 1e-4, 1e-6]],
   ["a gap, regional 0", {stations: 420, sway: 0.2, gap: true}, 0, [1e-2, 1e-4, 1e-6]],
-  ["two channels", {stations: 300, sway: 0.2, responses: [FIELD, GRADIENT]}, 1, [1e-1, 1e-2, 1e-3]],
+  ["two channels", {stations: 600, sway: 0.2, responses: [FIELD, GRADIENT]}, 1, [1e-1, 1e-3, 1e-5]],
   ["total field", {stations: 420, sway: 0.2, responses: [TOTAL_FIELD]}, 1, [1e-2, 1e-4, 1e-6]],
   ["correlated noise", {stations: 420, sway: 0.2, noiseLength: 12}, 1, [1e-2, 1e-4, 1e-6]],
 ];
@@ -37,7 +37,7 @@ test.each(CASES)("%s: as the modes say", (_, line, degree, shares) => {
     const estimate = dense.estimate(multiplier);
     const scale = estimate.reduce((most, value) => Math.max(most, Math.abs(value)), 0);
     const found = long.estimate(multiplier);
-    // Steps end at 1e-11 in the energy of the equation, of which f is one part and the residual the other; room for both.
+    // Steps end at 1e-13 of c; f, which sees its smooth part most, is worth the less the smaller the multiplier.
     expect(Math.max(...found.map((value, j) => Math.abs(value - estimate[j]!)))).toBeLessThan(1e-8 * scale);
     expect(ratioOff(long.misfit(multiplier), dense.misfit(multiplier))).toBeLessThan(1e-8);
     expect(ratioOff(long.norm(multiplier), dense.norm(multiplier))).toBeLessThan(1e-8);
