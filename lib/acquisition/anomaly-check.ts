@@ -21,7 +21,8 @@ export function anomalyCheck(channel: ChannelPlan): AnomalyCheck {
   return {
     add(values) {
       count += values.length;
-      for (const value of values) {
+      for (let i = 0; i < values.length; ++i) {
+        const value = values[i]!;
         if (value > limit) ++above;
         else if (value < -limit) ++below;
       }

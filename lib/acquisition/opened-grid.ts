@@ -135,9 +135,13 @@ async function checkPixels(raster: Raster, channel: ChannelPlan): Promise<void> 
   const check = anomalyCheck(channel);
   let filled = 0;
   for await (const {values} of raster.rowBlocks()) {
-    const readings = values.filter((value) => !Number.isNaN(value));
-    filled += readings.length;
-    check.add(readings);
+    let count = 0;
+    for (let i = 0; i < values.length; ++i) {
+      const value = values[i]!;
+      if (!Number.isNaN(value)) values[count++] = value;
+    }
+    filled += count;
+    check.add(values.subarray(0, count));
   }
   if (filled === 0)
     throw new InputError(

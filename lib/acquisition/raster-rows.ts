@@ -99,6 +99,8 @@ async function* gridLines(
   const every = settings.every ?? 1;
   const digits = String(lines).length;
   const rows = frame.orientation === "rows";
+  /** Of a line without gaps; shared by all of them, and never written to. */
+  const whole = placesOf(new Float64Array(pixels), pixels);
   const id = (line: number) => `${rows ? "row" : "column"}-${String(line + 1).padStart(digits, "0")}`;
   if (rows) {
     for await (const {row0, rows: count, values} of raster.rowBlocks())
@@ -114,7 +116,7 @@ async function* gridLines(
 
   function gridLine(name: string, line: number, readings: Float64Array): LineRecord {
     let count = 0;
-    for (const value of readings) if (!Number.isNaN(value)) ++count;
+    for (let pixel = 0; pixel < pixels; ++pixel) if (!Number.isNaN(readings[pixel]!)) ++count;
     if (count < 2)
       return {
         id: name,
@@ -124,25 +126,32 @@ async function* gridLines(
           {place: {file: raster.name, row: line + 1}},
         ),
       };
-    const row = new Float64Array(count);
-    const chainage = new Float64Array(count);
-    const x = new Float64Array(count);
-    const y = new Float64Array(count);
+    const {row, chainage} = count === pixels ? whole : placesOf(readings, count);
     const values = new Float64Array(count);
-    let k = 0;
-    for (let pixel = 0; pixel < pixels; ++pixel) {
-      const value = readings[pixel]!;
-      if (Number.isNaN(value)) continue;
-      row[k] = pixel + 1;
-      chainage[k] = frame.chainage(pixel);
-      [x[k], y[k]] = deliver(...(rows ? centre(raster, pixel, line) : centre(raster, line, pixel)));
-      values[k++] = value * channel.unit.factor;
-    }
+    for (let k = 0; k < count; ++k) values[k] = readings[row[k]! - 1]! * channel.unit.factor;
+    let delivered: {readonly x: Float64Array; readonly y: Float64Array} | undefined;
+    /** Only tables of lines hold them. */
+    const coordinates = () => {
+      delivered ??= coordinatesOf(row, line);
+      return delivered;
+    };
     const {notices, ...heights} = heightsOf(new Map(), count, settings, {file: raster.name});
     const built: SurveyLine = {
       id: name,
       group: "G1",
-      stations: {count, row, chainage, offset: new Float64Array(count).fill(frame.offset(line)), x, y, ...heights},
+      stations: {
+        count,
+        row,
+        chainage,
+        offset: new Float64Array(count).fill(frame.offset(line)),
+        get x() {
+          return coordinates().x;
+        },
+        get y() {
+          return coordinates().y;
+        },
+        ...heights,
+      },
       channels: [
         {
           role: channel.role,
@@ -165,6 +174,29 @@ async function* gridLines(
     };
     return {line: built};
   }
+
+  function placesOf(readings: Float64Array, count: number) {
+    const row = new Float64Array(count);
+    const chainage = new Float64Array(count);
+    let k = 0;
+    for (let pixel = 0; pixel < pixels; ++pixel) {
+      if (Number.isNaN(readings[pixel]!)) continue;
+      row[k] = pixel + 1;
+      chainage[k++] = frame.chainage(pixel);
+    }
+    return {row, chainage};
+  }
+
+  function coordinatesOf(row: Float64Array, line: number) {
+    const x = new Float64Array(row.length);
+    const y = new Float64Array(row.length);
+    for (let k = 0; k < row.length; ++k) {
+      const pixel = row[k]! - 1;
+      [x[k], y[k]] = deliver(...(rows ? centre(raster, pixel, line) : centre(raster, line, pixel)));
+    }
+    return {x, y};
+  }
+
   /** Between the outermost pixels, in map coordinates. */
   function trackOf(line: number): Track {
     const ends = frame.first === 0 ? [0, pixels - 1] : [pixels - 1, 0];

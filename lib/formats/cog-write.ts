@@ -38,16 +38,19 @@ export interface CogWriter {
    * @param bands for each band, count × width values row by row; what is not finite has no value
    */
   writeRows(bands: readonly (Float32Array | Float64Array)[], count: number): Promise<void>;
-  /** Writes the file, once all rows are in. */
-  finish(sink: ByteSink): Promise<void>;
+  /**
+   * Writes the file, once all rows are in.
+   * @param bands of another file with the same pixels; absent: those of the settings
+   */
+  finish(sink: ByteSink, bands?: CogSettings["bands"]): Promise<void>;
 }
 
 const LARGE_TILE = 512;
 const SMALL_TILE = 256;
 /** Classic TIFF counts bytes in 32 bits; a margin as wide as any header. */
 const BIG_FROM = 3.9 * 2 ** 30;
-/** Tiles compressed at a time. */
-const AT_ONCE = 4;
+/** Bytes of tiles that wait to be compressed, about; the next row of tiles is begun meanwhile. */
+const WAITING_BYTES = 2 ** 25;
 
 /** Begins a file. Its tiles go to `scratch`, which must be empty and stay readable until `finish` is done. */
 export function openCog(settings: CogSettings, scratch: ScratchStore): CogWriter {
@@ -60,19 +63,27 @@ export function openCog(settings: CogSettings, scratch: ScratchStore): CogWriter
   const stored: StoredTile[][] = levels.map(() => []);
   const row = new Float32Array(width * bands);
   let scratchBytes = 0;
+  const atOnce = Math.max(4, Math.floor(WAITING_BYTES / (4 * tile * tile * bands)));
+  /** Tiles on their way to the store, in its order. */
+  const underWay: Promise<void>[] = [];
+  let last = Promise.resolve();
+
+  const store = async (encoded: Promise<Uint8Array>, before: Promise<void>, index: number): Promise<void> => {
+    await before;
+    const bytes = await encoded;
+    await scratch.append(bytes);
+    stored[index]!.push({offset: scratchBytes, bytes: bytes.length});
+    scratchBytes += bytes.length;
+  };
 
   const emptyTiles = async (level: Level, index: number): Promise<void> => {
-    for (let first = 0; first < level.tilesAcross; first += AT_ONCE) {
-      const encoded: Promise<Uint8Array>[] = [];
-      for (let across = first; across < Math.min(first + AT_ONCE, level.tilesAcross); ++across) {
-        const pixels = cutTile(level.rows, level.held, level.width, across * tile, tile, bands, fill.value);
-        encoded.push(encodeTile(pixels, tile, bands));
-      }
-      for (const bytes of await Promise.all(encoded)) {
-        await scratch.append(bytes);
-        stored[index]!.push({offset: scratchBytes, bytes: bytes.length});
-        scratchBytes += bytes.length;
-      }
+    for (let across = 0; across < level.tilesAcross; ++across) {
+      while (underWay.length >= atOnce) await underWay.shift();
+      const pixels = cutTile(level.rows, level.held, level.width, across * tile, tile, bands, fill.value);
+      last = store(encodeTile(pixels, tile, bands), last, index);
+      // What goes wrong is told where the tile is waited for.
+      last.catch(() => undefined);
+      underWay.push(last);
     }
     level.held = 0;
   };
@@ -98,10 +109,12 @@ export function openCog(settings: CogSettings, scratch: ScratchStore): CogWriter
         }
       }
     },
-    async finish(sink) {
+    async finish(sink, described = settings.bands) {
+      await last;
+      const named = {...settings, bands: described};
       if (levels[0]!.received !== height) throw new RangeError(`${levels[0]!.received} of ${height} rows were written`);
       const images = levels.map((level, index) => ({
-        tags: index === 0 ? mainTags(settings, level, tile, fill.text) : overviewTags(settings, level, tile, fill.text),
+        tags: index === 0 ? mainTags(named, level, tile, fill.text) : overviewTags(settings, level, tile, fill.text),
         tiles: stored[index]!,
       }));
       await writeLayout(images, scratch, sink, settings.bigFrom ?? BIG_FROM);

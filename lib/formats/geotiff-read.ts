@@ -69,11 +69,15 @@ interface Rectangle {
   readonly columns: number;
 }
 
-/** Bytes of a block of rows from a striped file, about; and rows it holds at least, where strips are thin. */
-const ROW_WINDOW_BYTES = 2 ** 25;
+/** Bytes of a block of rows from a striped file, about, two of which are held; and rows it holds at least, where strips are thin. */
+const ROW_WINDOW_BYTES = 2 ** 24;
 const LEAST_ROWS = 64;
 const MOST_ROWS = 256;
 const COLUMN_WINDOW_BYTES = 2 ** 26;
+/** A grid whose pixels take no more than this is decoded once, however often it is walked. */
+const KEPT_BYTES = 2 ** 25;
+/** Blocks read and inflated at a time. */
+const ABREAST = 8;
 
 /**
  * Opens a grid and checks all that can be checked without decoding pixels.
@@ -115,7 +119,7 @@ export async function openRaster(source: ByteSource, options: {readonly band?: n
     scale: metadata.scale,
     offset: metadata.offset,
   };
-  const read = await blockReader(file, layout);
+  const read = decodedOnce(await blockReader(file, layout), layout);
   const grid: Grid = {name: source.name, layout, band: band - 1, reading, read};
   return {
     name: source.name,
@@ -161,15 +165,24 @@ async function georeferenceOf(file: TiffFile): Promise<Georeference> {
   };
 }
 
+/** While one block of rows is used the next one is read. */
 async function* rowBlocks(grid: Grid): AsyncGenerator<RowBlock> {
   const {width, height, blockHeight} = grid.layout;
   const wanted = Math.min(MOST_ROWS, Math.max(LEAST_ROWS, Math.floor(ROW_WINDOW_BYTES / (8 * width))));
   const step = blockHeight * Math.max(1, Math.floor(wanted / blockHeight));
-  for (let row0 = 0; row0 < height; row0 += step) {
+  const blockAt = async (row0: number): Promise<RowBlock> => {
     const rows = Math.min(step, height - row0);
     const values = new Float64Array(rows * width);
     await fillWindow(grid, values, {row0, rows, column0: 0, columns: width}, {rowStep: width, columnStep: 1});
-    yield {row0, rows, values};
+    return {row0, rows, values};
+  };
+  let next: Promise<RowBlock> | undefined = blockAt(0);
+  for (let row0 = 0; next !== undefined; row0 += step) {
+    const block: RowBlock = await next;
+    next = row0 + step < height ? blockAt(row0 + step) : undefined;
+    // Whoever walks no further never asks what became of it.
+    next?.catch(() => undefined);
+    yield block;
   }
 }
 
@@ -186,7 +199,7 @@ async function* columnBlocks(grid: Grid, windowBytes: number): AsyncGenerator<Co
   }
 }
 
-/** Decodes the blocks that meet a window, one after another, and copies their part of it; @returns `target` */
+/** Decodes the blocks that meet a window, some at a time, and copies their part of it; @returns `target` */
 async function fillWindow(
   grid: Grid,
   target: Float64Array,
@@ -199,25 +212,48 @@ async function fillWindow(
   const firstBlock = interleaved ? 0 : band * blocksAcross * blocksDown;
   const rowEnd = window.row0 + window.rows;
   const columnEnd = window.column0 + window.columns;
+  const blocks: {readonly down: number; readonly across: number}[] = [];
   for (let down = Math.floor(window.row0 / blockHeight); down * blockHeight < rowEnd; ++down)
-    for (let across = Math.floor(window.column0 / blockWidth); across * blockWidth < columnEnd; ++across) {
-      const samples: Samples | undefined = await grid.read(firstBlock + down * blocksAcross + across);
-      const row = Math.max(window.row0, down * blockHeight);
-      const column = Math.max(window.column0, across * blockWidth);
-      const rows = Math.min(rowEnd, (down + 1) * blockHeight) - row;
-      const columns = Math.min(columnEnd, (across + 1) * blockWidth) - column;
-      const to = {start: (row - window.row0) * steps.rowStep + (column - window.column0) * steps.columnStep, ...steps};
-      const inBlock = (row - down * blockHeight) * blockWidth + (column - across * blockWidth);
-      const from = {
-        start: inBlock * pixelStep + (interleaved ? band : 0),
-        rowStep: blockWidth * pixelStep,
-        columnStep: pixelStep,
-      };
-      const infinite = copyReadings(target, to, samples, from, rows, columns, reading);
-      if (infinite >= 0)
-        throw infiniteReading(grid.name, row + Math.floor(infinite / columns), column + (infinite % columns));
+    for (let across = Math.floor(window.column0 / blockWidth); across * blockWidth < columnEnd; ++across)
+      blocks.push({down, across});
+  const begun: Promise<Samples | undefined>[] = [];
+  let next = 0;
+  for (const {down, across} of blocks) {
+    for (; next < blocks.length && begun.length < ABREAST; ++next) {
+      const ahead = blocks[next]!;
+      const decoded = grid.read(firstBlock + ahead.down * blocksAcross + ahead.across);
+      // What is wrong with it is told in its turn, if no block before it is wrong.
+      decoded.catch(() => undefined);
+      begun.push(decoded);
     }
+    const samples = await begun.shift();
+    const row = Math.max(window.row0, down * blockHeight);
+    const column = Math.max(window.column0, across * blockWidth);
+    const rows = Math.min(rowEnd, (down + 1) * blockHeight) - row;
+    const columns = Math.min(columnEnd, (across + 1) * blockWidth) - column;
+    const to = {start: (row - window.row0) * steps.rowStep + (column - window.column0) * steps.columnStep, ...steps};
+    const inBlock = (row - down * blockHeight) * blockWidth + (column - across * blockWidth);
+    const from = {
+      start: inBlock * pixelStep + (interleaved ? band : 0),
+      rowStep: blockWidth * pixelStep,
+      columnStep: pixelStep,
+    };
+    const infinite = copyReadings(target, to, samples, from, rows, columns, reading);
+    if (infinite >= 0)
+      throw infiniteReading(grid.name, row + Math.floor(infinite / columns), column + (infinite % columns));
+  }
   return target;
+}
+
+/** Keeps the blocks of a small grid. */
+function decodedOnce(read: BlockReader, {width, height, bands, bytesPerSample}: TiffLayout): BlockReader {
+  if (width * height * bands * bytesPerSample > KEPT_BYTES) return read;
+  const kept = new Map<number, Promise<Samples | undefined>>();
+  return (index) => {
+    const found = kept.get(index) ?? read(index);
+    kept.set(index, found);
+    return found;
+  };
 }
 
 const infiniteReading = (file: string, row: number, column: number): InputError =>

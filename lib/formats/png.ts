@@ -31,7 +31,7 @@ export function encodePng(width: number, height: number, pixels: Uint8Array, cha
   return Buffer.concat([
     SIGNATURE,
     chunk("IHDR", new Uint8Array(header.buffer)),
-    chunk("IDAT", deflateSync(filtered, {level: 9})),
+    chunk("IDAT", deflateSync(filtered)),
     chunk("IEND", new Uint8Array(0)),
   ]);
 }

@@ -3,7 +3,7 @@
  * and place as the input. A row without an answer is left without values.
  */
 import {levelLabel} from "../continuation/level-profile.ts";
-import {type CogWriter, openCog} from "../formats/cog-write.ts";
+import {type CogSettings, type CogWriter, openCog} from "../formats/cog-write.ts";
 import {BOUNDARY_FIELD} from "../potential/level-quantity.ts";
 import {cautionSentence, ROW_BY_ROW} from "../report/cautions.ts";
 import {type Delivery, deliveryOf} from "../report/delivery.ts";
@@ -16,7 +16,8 @@ import type {RowProduct, RunFrame} from "./product.ts";
 import {type Transposition, transposition} from "./transposition.ts";
 
 interface Raster {
-  readonly file: string;
+  /** Files of the same pixels, and what each says of its bands. */
+  readonly files: readonly {readonly name: string; readonly bands: CogSettings["bands"]}[];
   /** Whether it is a level rather than the source. */
   readonly level: boolean;
   readonly bandOf: (study: RowStudy) => RowBand;
@@ -74,10 +75,10 @@ export function gridRasters(opening: Opening, place: GridPlace): RowProduct {
     },
     end: async () => {
       await putNothingUntil(grid.orientation === "rows" ? grid.height : grid.width);
-      for (const {file, writer, turned} of rasters) {
+      for (const {files, writer, turned} of rasters) {
         if (turned !== undefined)
           for await (const block of turned.rows()) await writer.writeRows(block.bands, block.count);
-        await writer.finish(await opening.openBytes(file));
+        for (const {name, bands} of files) await writer.finish(await opening.openBytes(name), bands);
       }
     },
   };
@@ -94,24 +95,19 @@ async function openRasters(
   const way = orientation === "rows" ? "row by row, two-dimensional" : "column by column, two-dimensional";
   const suffix = orientation === "rows" ? "rowwise" : "columnwise";
   const percent = percentText(frame.confidence).replace("\u202f", " ");
-  const one = async (
-    file: string,
-    what: string,
-    level: boolean,
-    unit: string,
-    bandOf: Raster["bandOf"],
-  ): Promise<Raster> => ({
-    file,
+  const bandsOf = (what: string, unit: string): CogSettings["bands"] => [
+    {description: `${what}, ${way}`, unit},
+    {description: `half-width of the ${percent} interval, ${way}`, unit},
+  ];
+  const one = async (files: Raster["files"], level: boolean, bandOf: Raster["bandOf"]): Promise<Raster> => ({
+    files,
     bandOf,
     level,
     writer: openCog(
       {
         width,
         height,
-        bands: [
-          {description: `${what}, ${way}`, unit},
-          {description: `half-width of the ${percent} interval, ${way}`, unit},
-        ],
+        bands: files[0]!.bands,
         georeference,
         nodataText,
         items: [["CAUTION", cautionSentence(ROW_BY_ROW)]],
@@ -120,18 +116,23 @@ async function openRasters(
     ),
     turned: orientation === "rows" ? undefined : transposition(width, height, 2, await openScratch()),
   });
-  const rasters = [
-    await one(`source_${suffix}.tif`, "source on the boundary", false, delivery.field, (study) => study.source),
-  ];
-  for (const [k, level] of frame.levels.entries())
-    rasters.push(
-      await one(
-        `level_${fileSafe(levelLabel(level))}_${suffix}.tif`,
-        `${frame.quantity === BOUNDARY_FIELD ? "field" : frame.quantity.name} ${levelWords(level).replace("\u2212", "-")}`,
-        true,
-        delivery.level,
-        (study) => study.levels[k]!.band,
-      ),
-    );
+  const levels = frame.levels.map((level, k) => ({
+    k,
+    // On the boundary the boundary field is the source: one compression serves both files.
+    isSource:
+      level.kind === "above-boundary" &&
+      level.height === 0 &&
+      frame.quantity === BOUNDARY_FIELD &&
+      delivery.level === delivery.field,
+    name: `level_${fileSafe(levelLabel(level))}_${suffix}.tif`,
+    bands: bandsOf(
+      `${frame.quantity === BOUNDARY_FIELD ? "field" : frame.quantity.name} ${levelWords(level).replace("\u2212", "-")}`,
+      delivery.level,
+    ),
+  }));
+  const source = {name: `source_${suffix}.tif`, bands: bandsOf("source on the boundary", delivery.field)};
+  const rasters = [await one([source, ...levels.filter(({isSource}) => isSource)], false, (study) => study.source)];
+  for (const level of levels)
+    if (!level.isSource) rasters.push(await one([level], true, (study) => study.levels[level.k]!.band));
   return rasters;
 }

@@ -70,9 +70,10 @@ export function supportOfLine(
 
 /** Says where polygons were cut off beyond the ends of the line. @param area the part inside them, if any were asked */
 export function cutNotices(conditioned: ConditionedLine, area: Support | undefined): Notice[] {
+  if (area === undefined) return [];
   const {from, to} = spanOf(conditioned.line.stations.chainage);
   const reach = REACH * medianOf(conditioned.height);
-  if (area === undefined || area.every((part) => part.from >= from - reach && part.to <= to + reach)) return [];
+  if (area.every((part) => part.from >= from - reach && part.to <= to + reach)) return [];
   return [
     remark(
       "support/cut-off",

@@ -24,9 +24,8 @@ const TAIL = 0.01;
 
 /** @param values finite entries count; a constant gets a range around it */
 export function rampOver(values: Float64Array | readonly number[]): Ramp {
-  const sorted = Array.from(values)
-    .filter(Number.isFinite)
-    .sort((a, b) => a - b);
+  // Typed arrays sort by value, and several times as quickly.
+  const sorted = Array.from(Float64Array.from(values).filter(Number.isFinite).sort());
   let low = sorted.length > 0 ? quantileSorted(sorted, TAIL)! : 0;
   let high = sorted.length > 0 ? quantileSorted(sorted, 1 - TAIL)! : 1;
   if (!(high > low)) {
