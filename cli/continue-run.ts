@@ -49,7 +49,13 @@ export async function continueRun(request: Request, host: Host): Promise<number>
       const finish = <Outcome extends LineOutcome | RowOutcome>(work: Work<Outcome>): Promise<number> =>
         finishRun(run, work, {opened, out, started, read});
       try {
-        if (survey.kind === "grid") return await finish(await gridWork(run, files[0]!));
+        if (survey.kind === "grid")
+          return await (await import("./batch/row-threads.ts")).withRowThreads(
+            host,
+            survey,
+            shared.workers,
+            async (threads) => finish(await gridWork(run, files[0]!, threads)),
+          );
         // One line alone has nothing to go on from.
         if (survey.lineCount === 1) return await finish(await lineWork(run));
         return await (await import("./batch/whole-run.ts")).wholeRun(plan, run, finish);

@@ -50,7 +50,7 @@ export function nodeHost(replaced: Partial<Host> = {}, interruption: Interruptio
     openStore,
     folder: process.cwd(),
     cores: availableParallelism(),
-    startThreads: async (count, data) => (await import("./host/threads.ts")).startThreads(count, data),
+    startThreads: async (count, data, script) => (await import("./host/threads.ts")).startThreads(count, data, script),
     openQueue: async (address, lostAfter) => (await import("./host/queue.ts")).openQueue(address, lostAfter),
     self: {pid: process.pid, machine: hostname()},
     isAlive,

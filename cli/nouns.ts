@@ -101,8 +101,11 @@ export interface Host {
   readonly folder: string;
   /** Threads worth starting at most. */
   readonly cores: number;
-  /** @param data plain, for every thread */
-  startThreads(count: number, data: unknown): Promise<Threads>;
+  /**
+   * @param data plain, for every thread
+   * @param script what they run, in `cli/batch`; default: what computes lines
+   */
+  startThreads(count: number, data: unknown, script?: string): Promise<Threads>;
   /**
    * @param address as `--queue` takes it
    * @param lostAfter seconds of silence after which a line is taken from its worker

@@ -8,6 +8,7 @@ import type {RunFrame} from "../lib/products/product.ts";
 import {studyGrid} from "../lib/study/grid-study.ts";
 import {neighbouringStrips} from "../lib/study/neighbouring-strips.ts";
 import type {LineOutcome, RowOutcome} from "../lib/study/outcome.ts";
+import type {RowThreads} from "../lib/study/row-work.ts";
 import type {Settings} from "../lib/study/settings.ts";
 import {studySurvey} from "../lib/study/survey-study.ts";
 import type {Survey} from "../lib/survey/survey.ts";
@@ -51,9 +52,14 @@ export async function lineWork(
 
 /**
  * @param file the grid, which says where the answers lie
+ * @param threads that solve rows, if any
  * @throws {InputError} `option/lines-only`, and those of the raster
  */
-export async function gridWork({host, settings, survey, folder}: Run, file: ByteSource): Promise<Work<RowOutcome>> {
+export async function gridWork(
+  {host, settings, survey, folder}: Run,
+  file: ByteSource,
+  threads?: RowThreads,
+): Promise<Work<RowOutcome>> {
   const [strip] = settings.wanted.strips;
   if (strip !== undefined)
     throw new InputError(
@@ -73,7 +79,7 @@ export async function gridWork({host, settings, survey, folder}: Run, file: Byte
     );
   const products = await gridProducts(folder, {version: host.version, settings}, await openRaster(file));
   return {
-    outcomes: studyGrid(survey, settings),
+    outcomes: studyGrid(survey, settings, threads),
     computed: false,
     products: products.map((product) => ({
       begin: (frame) => product.begin(frame),

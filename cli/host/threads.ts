@@ -1,12 +1,12 @@
-/** Threads that compute lines. Loaded only when there are some. */
+/** Threads that compute lines or rows. Loaded only when there are some. */
 import {fileURLToPath} from "node:url";
 import {Piscina} from "piscina";
 import {InputError} from "../../lib/errors.ts";
 import type {Threads} from "../nouns.ts";
 
-export function startThreads(count: number, data: unknown): Threads {
+export function startThreads(count: number, data: unknown, script = "worker-thread.js"): Threads {
   const pool = new Piscina({
-    filename: fileURLToPath(new URL("../batch/worker-thread.js", import.meta.url)),
+    filename: fileURLToPath(new URL(`../batch/${script}`, import.meta.url)),
     minThreads: count,
     maxThreads: count,
     idleTimeout: Number.POSITIVE_INFINITY,

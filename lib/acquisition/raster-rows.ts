@@ -101,6 +101,8 @@ async function* gridLines(
   const rows = frame.orientation === "rows";
   /** Of a line without gaps; shared by all of them, and never written to. */
   const whole = placesOf(new Float64Array(pixels), pixels);
+  const heightsFor = (count: number) => heightsOf(new Map(), count, settings, {file: raster.name});
+  const wholeHeights = heightsFor(pixels);
   const id = (line: number) => `${rows ? "row" : "column"}-${String(line + 1).padStart(digits, "0")}`;
   if (rows) {
     for await (const {row0, rows: count, values} of raster.rowBlocks())
@@ -130,12 +132,13 @@ async function* gridLines(
     const values = new Float64Array(count);
     for (let k = 0; k < count; ++k) values[k] = readings[row[k]! - 1]! * channel.unit.factor;
     let delivered: {readonly x: Float64Array; readonly y: Float64Array} | undefined;
+    let offset: Float64Array | undefined;
     /** Only tables of lines hold them. */
     const coordinates = () => {
       delivered ??= coordinatesOf(row, line);
       return delivered;
     };
-    const {notices, ...heights} = heightsOf(new Map(), count, settings, {file: raster.name});
+    const {notices, ...heights} = count === pixels ? wholeHeights : heightsFor(count);
     const built: SurveyLine = {
       id: name,
       group: "G1",
@@ -143,7 +146,10 @@ async function* gridLines(
         count,
         row,
         chainage,
-        offset: new Float64Array(count).fill(frame.offset(line)),
+        get offset() {
+          offset ??= new Float64Array(count).fill(frame.offset(line));
+          return offset;
+        },
         get x() {
           return coordinates().x;
         },

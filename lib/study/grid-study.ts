@@ -1,39 +1,41 @@
 /**
  * A grid row by row with one pooled multiplier. Two walks over the rows: the first gathers, for every geometry that
- * occurs, what fixes the multiplier; the second answers. Memory holds one block of rows, a few geometries, and the
+ * occurs, what fixes the multiplier; the second answers. Memory holds a few blocks of rows, a few geometries, and the
  * sums of the rest.
  */
-import {InputError, ModelError, ReportableError} from "../errors.ts";
+import {InputError, ModelError, type ReportableError} from "../errors.ts";
 import {misfitLimit} from "../inverse/misfit-range.ts";
 import type {BoundChoice} from "../inverse/nouns.ts";
 import {doubt, isDoubtful, type Notice} from "../notice.ts";
 import {recent} from "../numeric/recent.ts";
 import {valuesOfLine} from "../operators/readings-of-line.ts";
 import {whitenData} from "../operators/whitened.ts";
-import {condition} from "../survey/condition.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import type {SurveyLine} from "../survey/line.ts";
 import type {LineRecord, Survey} from "../survey/survey.ts";
-import {effectiveDirectionOf} from "./direction-of-line.ts";
 import type {RowBand, RowOutcome, RowStudy} from "./outcome.ts";
 import {pooledRows, sampleStep} from "./pooled-rows.ts";
+import {type Prepared, rowPreparer} from "./prepared-rows.ts";
 import {type RowAnswers, type RowFigures, type RowGeometry, rowAnswers, rowGeometry} from "./row-geometry.ts";
+import type {RowThreads} from "./row-work.ts";
 import type {Settings} from "./settings.ts";
 import {statusWithout} from "./skipped.ts";
-import {cutNotices, supportOfLine} from "./support-of-line.ts";
 import {checkGroups} from "./survey-study.ts";
-import {type LineZones, type ZonesOf, zonesFor} from "./zones.ts";
 
 /** Geometries kept at a time: a 1,000-pixel row takes about 25 MB. A heuristic. */
 const KEPT = 4;
 /** Rows solved together: transforms are complex, so that two cost as much as one. */
 const TOGETHER = 2;
+/** Readings of a parcel for another thread, about; and parcels on their way, for each thread. */
+const PARCEL = 2 ** 17;
+const ON_THE_WAY = 2;
 
 /**
  * Outcomes in the order of the rows.
+ * @param threads that solve level rows beside this one; the answers are the same bits without
  * @throws {ReportableError} when no row can be answered, or no multiplier serves them together
  */
-export async function* studyGrid(survey: Survey, settings: Settings): AsyncGenerator<RowOutcome> {
+export async function* studyGrid(survey: Survey, settings: Settings, threads?: RowThreads): AsyncGenerator<RowOutcome> {
   checkGroups(survey, settings);
   if (settings.model.strike !== undefined)
     throw new InputError(
@@ -45,34 +47,47 @@ export async function* studyGrid(survey: Survey, settings: Settings): AsyncGener
       "intervals/grid",
       "--intervals simultaneous makes a band for all numbers of one line, and the survey is a grid, whose rows share their half-widths whatever they read. Leave it out, or take lines across the grid with --profiles FILE.geojson or --every N.",
     );
-  const zonesOf = zonesFor(settings);
+  const prepare = rowPreparer(settings);
   const geometries = recent<string, RowGeometry>(KEPT);
-  const pooled = await poolRows(survey, settings, zonesOf, geometries);
+  const pooled = await poolRows(survey, settings, prepare, geometries);
   const answers = recent<string, RowAnswers>(KEPT);
+  const pixels = survey.grid === undefined ? 1 : pixelsOf(survey.grid);
+  const parcel = threads === undefined ? TOGETHER : TOGETHER * Math.max(1, Math.round(PARCEL / (TOGETHER * pixels)));
+  const most = threads === undefined ? 0 : ON_THE_WAY * threads.count;
   let index = -1;
   let waiting: Waiting[] = [];
-  const answered = (): RowOutcome[] => {
-    const rows = waiting;
+  /** In the order of the rows. */
+  const onTheWay: (RowOutcome | Parcel)[] = [];
+  const send = (): void => {
+    if (waiting.length > 0) onTheWay.push({rows: waiting, figures: solved(waiting, threads)});
     waiting = [];
-    return rows.length === 0 ? [] : answerRows(rows, survey.grid, pooled);
+  };
+  const arrived = async function* (left: number): AsyncGenerator<RowOutcome> {
+    while (onTheWay.length > left) {
+      const next = onTheWay.shift()!;
+      if ("rows" in next) yield* outcomesOf(next.rows, await next.figures, survey.grid, pooled);
+      else yield next;
+    }
   };
   for await (const record of survey.lines()) {
     ++index;
-    const prepared = prepare(record, settings, zonesOf);
+    const prepared = prepare(record);
     if ("failure" in prepared) {
-      yield* answered();
+      send();
       const {id, failure} = prepared;
-      yield {status: statusWithout(failure), id, index, failure};
-      continue;
+      onTheWay.push({status: statusWithout(failure), id, index, failure});
+    } else {
+      const {line, conditioned, zones, key} = prepared;
+      const geometry = geometries(key, () => rowGeometry(conditioned, settings, zones.support));
+      const answer = answers(key, () => rowAnswers(key, geometry, settings, pooled));
+      if (waiting.length > 0 && waiting[0]!.answer !== answer) send();
+      waiting.push({line, conditioned, index, geometry, answer});
+      if (waiting.length >= parcel) send();
     }
-    const {line, conditioned, zones, key} = prepared;
-    const geometry = geometries(key, () => rowGeometry(conditioned, settings, zones.support));
-    const answer = answers(key, () => rowAnswers(geometry, settings, pooled.bound, pooled.multiplier));
-    if (waiting.length > 0 && waiting[0]!.answer !== answer) yield* answered();
-    waiting.push({line, conditioned, index, geometry, answer});
-    if (waiting.length === TOGETHER) yield* answered();
+    yield* arrived(most);
   }
-  yield* answered();
+  send();
+  yield* arrived(0);
 }
 
 /** A row on its way to be solved together with the next. */
@@ -84,83 +99,41 @@ interface Waiting {
   readonly answer: RowAnswers;
 }
 
-type Prepared =
-  | {
-      readonly line: SurveyLine;
-      readonly conditioned: ConditionedLine;
-      readonly zones: LineZones;
-      /** Rows of one key share their geometry. */
-      readonly key: string;
-    }
-  | {readonly id: string; readonly failure: ReportableError};
-
-function prepare(record: LineRecord, settings: Settings, zonesOf: ZonesOf): Prepared {
-  if ("failure" in record) return record;
-  // What is wrong with polygons is wrong for every row.
-  const zones = zonesOf(record.line);
-  const line = {...record.line, notices: [...record.line.notices, ...zones.notices]};
-  try {
-    const first = condition(line, settings.model.boundary, effectiveDirectionOf(line, settings));
-    const conditioned = {...first, notices: [...first.notices, ...cutNotices(first, zones.support)]};
-    const pattern = `${patternOf(line, settings.model.support.length > 0)}${directionOf(first)}`;
-    if (zones.support === undefined) return {line, conditioned, zones, key: pattern};
-    const support = supportOfLine(conditioned, settings.model, zones.support);
-    return {line, conditioned, zones, key: `${pattern} ${support.map(({from, to}) => `${from}:${to}`).join(" ")}`};
-  } catch (error) {
-    if (!(error instanceof ReportableError)) throw error;
-    return {id: line.id, failure: error};
-  }
+/** Rows of one geometry that are being solved. */
+interface Parcel {
+  readonly rows: readonly Waiting[];
+  readonly figures: Promise<readonly RowFigures[]>;
 }
-
-/** Which pixels hold readings, as runs; the place of the first counts only where the support is fixed. */
-function patternOf(line: SurveyLine, placed: boolean): string {
-  const {row, count} = line.stations;
-  const runs: number[] = placed ? [row[0]] : [];
-  let length = 1;
-  for (let i = 1; i < count; ++i) {
-    const step = row[i] - row[i - 1];
-    if (step === 1) ++length;
-    else {
-      runs.push(length, step);
-      length = 1;
-    }
-  }
-  runs.push(length);
-  return runs.join(" ");
-}
-
-/** Rows share a geometry while the Earth's field along them is the same to a tenth of a degree and a thousandth of β. */
-const directionOf = ({direction}: ConditionedLine): string =>
-  direction === undefined ? "" : ` ${direction.inclination.toFixed(1)}° ${direction.beta.toFixed(3)}`;
 
 /** The first walk: the one multiplier and bound. */
 async function poolRows(
   survey: Survey,
   settings: Settings,
-  zonesOf: ZonesOf,
+  prepare: (record: LineRecord) => Prepared,
   geometries: (key: string, make: () => RowGeometry) => RowGeometry,
 ): Promise<BoundChoice> {
   const pool = pooledRows();
   const {grid} = survey;
-  const pixels = grid === undefined ? Infinity : pixelsOf(grid);
-  const step = grid === undefined ? 1 : sampleStep(linesOf(grid), pixels);
+  const step = grid === undefined ? 1 : sampleStep(linesOf(grid), pixelsOf(grid));
   let supportLength = 0;
-  let complete = 0;
-  let sampling = false;
+  /** Level rows so far, by key. */
+  const level = new Map<string, number>();
   let failure: ReportableError | undefined;
   for await (const record of survey.lines()) {
-    const isComplete = "line" in record && record.line.stations.count === pixels;
-    if (isComplete) ++complete;
-    // The middle of each step; before the first level row nothing says that rows are level.
-    if (sampling && isComplete && complete % step !== step >> 1) continue;
-    const prepared = prepare(record, settings, zonesOf);
+    const prepared = prepare(record);
     if ("failure" in prepared) {
       if (failure === undefined || statusWithout(failure) === "skipped") failure = prepared.failure;
       continue;
     }
     const {conditioned, zones, key} = prepared;
+    const before = level.get(key);
+    if (before !== undefined) {
+      level.set(key, before + 1);
+      // The middle of each step; before the first of them nothing says that rows are level.
+      if ((before + 1) % step !== step >> 1) continue;
+    }
     const geometry = geometries(key, () => rowGeometry(conditioned, settings, zones.support));
-    if (isComplete && !("modes" in geometry.rows)) sampling = true;
+    if (before === undefined && !("modes" in geometry.rows)) level.set(key, 1);
     pool.add(key, geometry, dataOf(conditioned, geometry));
     supportLength = Math.max(supportLength, geometry.supportLength);
   }
@@ -171,10 +144,11 @@ async function poolRows(
       new ModelError("grid/no-readings", "The grid holds no reading at all. Check its nodata value and band.")
     );
   const choice = settings.bound.choose({...question, supportLength});
-  if (pool.levelRows === 0 || pool.levelRows === complete) return choice;
+  const all = [...level.values()].reduce((sum, rows) => sum + rows, 0);
+  if (pool.levelRows === all) return choice;
   return {
     ...choice,
-    reason: `${choice.reason}; by ${pool.levelRows} of ${complete} complete rows, spread over the grid`,
+    reason: `${choice.reason}; by ${pool.levelRows} of ${all} rows without gaps, spread over the grid`,
   };
 }
 
@@ -186,11 +160,24 @@ const linesOf = ({orientation, width, height}: Grid): number => (orientation ===
 const dataOf = (conditioned: ConditionedLine, {readings, basis}: RowGeometry): Float64Array =>
   whitenData(valuesOfLine(conditioned), readings, basis);
 
-/** @param waiting rows of one geometry */
-function answerRows(waiting: readonly Waiting[], grid: Survey["grid"], choice: BoundChoice): RowOutcome[] {
-  const [{geometry, answer}] = waiting as [Waiting];
-  const figures = answer.solve(waiting.map(({conditioned}) => dataOf(conditioned, geometry)));
-  return waiting.map((row, k) => {
+/** @param rows of one geometry */
+function solved(rows: readonly Waiting[], threads: RowThreads | undefined): Promise<readonly RowFigures[]> {
+  const [{geometry, answer}] = rows as readonly [Waiting];
+  if (threads === undefined || answer.work === undefined)
+    return Promise.resolve(answer.solve(rows.map(({conditioned}) => dataOf(conditioned, geometry))));
+  const figures = threads.solve({...answer.work, values: rows.map(({conditioned}) => valuesOfLine(conditioned))});
+  // What goes wrong is told in its turn.
+  figures.catch(() => undefined);
+  return figures;
+}
+
+function outcomesOf(
+  rows: readonly Waiting[],
+  figures: readonly RowFigures[],
+  grid: Survey["grid"],
+  choice: BoundChoice,
+): RowOutcome[] {
+  return rows.map((row, k) => {
     const study = studyOf(row, figures[k]!, grid, choice);
     return {status: isDoubtful(study.notices) ? "doubtful" : "done", id: row.line.id, index: row.index, study};
   });
@@ -204,12 +191,14 @@ function studyOf(
 ): RowStudy {
   const {count, row} = line.stations;
   const pixels = grid === undefined ? count : pixelsOf(grid);
+  const halfWidths = answer.halfWidths();
   const bands = values.map((at, k): RowBand => {
+    if (count === pixels) return {value: at, halfWidth: halfWidths[k]!};
     const value = new Float64Array(pixels).fill(Number.NaN);
     const halfWidth = new Float64Array(pixels).fill(Number.NaN);
     for (let i = 0; i < count; ++i) {
       value[row[i]! - 1] = at[i]!;
-      halfWidth[row[i]! - 1] = answer.halfWidths[k]![i]!;
+      halfWidth[row[i]! - 1] = halfWidths[k]![i]!;
     }
     return {value, halfWidth};
   });
@@ -241,7 +230,7 @@ function studyOf(
     misfitExpected: count,
     noise: conditioned.channels[0].noise,
     noiseLength: conditioned.channels[0].noiseLength,
-    resolution: answer.resolution,
+    resolution: answer.resolution(),
     degreesOfFreedom,
     notices,
   };

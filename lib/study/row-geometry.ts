@@ -7,6 +7,7 @@ import {levelHeights, responsesOf} from "../continuation/levels.ts";
 import {type Support, totalLength} from "../geometry/interval.ts";
 import {resolutionOf, stretchAt} from "../inverse/averages.ts";
 import {intervalSolver} from "../inverse/intervals.ts";
+import type {BoundChoice} from "../inverse/nouns.ts";
 import {continuumOf} from "../operators/continuum.ts";
 import {fieldAt, meanOver} from "../operators/functional.ts";
 import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
@@ -18,6 +19,7 @@ import {BOUNDARY_FIELD} from "../potential/level-quantity.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
 import {type LevelRows, levelRows} from "./level-rows.ts";
 import {type ModalRows, modalRows} from "./modal-rows.ts";
+import type {RowWork} from "./row-work.ts";
 import type {Settings} from "./settings.ts";
 import {panelsOfLine, supportOfLine} from "./support-of-line.ts";
 
@@ -49,13 +51,16 @@ export interface BandAsked {
 }
 
 export interface RowAnswers {
-  readonly resolution: number;
-  /** Half-widths of each band at every station; the first is the source. */
-  readonly halfWidths: readonly Float64Array[];
+  /** Worked out when first asked for, like the half-widths. */
+  resolution(): number;
+  /** Of each band at every station; the first is the source. */
+  halfWidths(): readonly Float64Array[];
   /** The band of each level. */
   readonly levels: readonly {readonly setting: LevelSetting; readonly band: number}[];
   /** @param data Q d/σ of rows that share this geometry */
   solve(data: readonly Float64Array[]): RowFigures[];
+  /** The same for another thread, but for the readings; undefined where rows are not level. */
+  readonly work: Omit<RowWork, "values"> | undefined;
 }
 
 /** @param area the part of the row inside the polygons of the support, if any were asked */
@@ -95,21 +100,51 @@ function bandsOf(conditioned: ConditionedLine, settings: Settings) {
   return {bands, levels};
 }
 
+/** @param key of the geometry */
+export function rowAnswers(
+  key: string,
+  geometry: RowGeometry,
+  settings: Settings,
+  {bound, multiplier}: Pick<BoundChoice, "bound" | "multiplier">,
+): RowAnswers {
+  const {panels, readings, rows} = geometry;
+  const {bands, levels} = bandsOf(geometry.conditioned, settings);
+  let widths: ReturnType<typeof widthsOf> | undefined;
+  let solve: RowAnswers["solve"] | undefined;
+  const asked = () => {
+    widths ??= widthsOf(geometry, settings, bands, bound, multiplier);
+    return widths;
+  };
+  return {
+    resolution: () => asked().resolution,
+    halfWidths: () => asked().halfWidths,
+    levels,
+    solve: (data) => {
+      solve ??= rows.answering(bands, multiplier);
+      return solve(data);
+    },
+    work: "modes" in rows ? undefined : {key, readings, panels, degree: settings.model.regional, bands, multiplier},
+  };
+}
+
 /** @param bound M, SI·√m; @param multiplier of the estimate */
-export function rowAnswers(geometry: RowGeometry, settings: Settings, bound: number, multiplier: number): RowAnswers {
-  const {panels, support, conditioned} = geometry;
+function widthsOf(
+  {panels, support, conditioned, readings}: RowGeometry,
+  settings: Settings,
+  bands: readonly BandAsked[],
+  bound: number,
+  multiplier: number,
+) {
   const {chainage} = conditioned.line.stations;
-  const continuum = continuumOf(geometry.readings, support, boundaryOfPanels(panels));
+  const continuum = continuumOf(readings, support, boundaryOfPanels(panels));
   const sorted = regionalBasis(continuum, settings.model.regional);
   const solver = intervalSolver(continuum, sorted, new Float64Array(continuum.count), {
     bound,
     confidence: settings.wanted.confidence,
   });
   const resolution = resolutionOf(solver, panels, multiplier, chainage);
-  const {bands, levels} = bandsOf(conditioned, settings);
   return {
     resolution: resolution.length,
-    levels,
     halfWidths: bands.map(({height, responses}) =>
       chainage.map((x, i) => {
         if (responses.length > 1) return Number.NaN;
@@ -118,6 +153,5 @@ export function rowAnswers(geometry: RowGeometry, settings: Settings, bound: num
         return stretch === undefined ? 0 : solver.interval(meanOver(stretch, support)).halfWidth;
       }),
     ),
-    solve: geometry.rows.answering(bands, multiplier),
   };
 }
