@@ -36,9 +36,16 @@ test("doubts of many lines are told once a kind, doubts before remarks", () => {
   expect(doubtText(summary[3]!, "line", 28)).toMatch(/^27 lines \(/);
 });
 
-function progressText(total: number, isTerminal: boolean, silent = false): string {
+/** @param takes milliseconds that step number `step` takes, from one */
+function progressText(
+  total: number,
+  isTerminal: boolean,
+  silent = false,
+  takes: (step: number) => number = () => 40,
+): string {
   let text = "";
   let time = 0;
+  let step = 0;
   const err = {
     isTerminal,
     columns: 80,
@@ -49,7 +56,8 @@ function progressText(total: number, isTerminal: boolean, silent = false): strin
   const host = nodeHost({
     err,
     now: () => {
-      time += 40;
+      time += step === 0 ? 0 : takes(step);
+      step++;
       return time;
     },
   });
@@ -69,6 +77,37 @@ test("progress in a pipe is a few lines, however many there are", () => {
   expect(told.slice(-2)).toEqual(["1000 of 1000 lines", ""]);
   expect(progressText(20_000, false).split("\n").length - 1).toBe(Math.floor((20_000 * 0.04) / 10));
   expect(progressText(1000, false, true)).toBe("");
+});
+
+test("the first line, which holds what is done once, is left out of the rate", () => {
+  const told = progressText(60, false, false, (step) => (step === 1 ? 60_000 : 1000)).split("\n");
+  // A quarter of a minute goes by before anything is said of the rest.
+  expect(told.slice(0, 6)).toEqual([
+    "1 of 60 lines",
+    "11 of 60 lines",
+    "15 of 60 lines",
+    "25 of 60 lines, 1.0 a second, 35 s left",
+    "30 of 60 lines, 1.0 a second, 30 s left",
+    "40 of 60 lines, 1.0 a second, 20 s left",
+  ]);
+  expect(told[6]).toBe("18 of 60 lines, 1.0 a second, 42 s left");
+});
+
+test("no rate is told before some lines are done, however long they take", () => {
+  const told = progressText(10, false, false, () => 600_000).split("\n");
+  expect(told.slice(0, 5)).toEqual([
+    "1 of 10 lines",
+    "2 of 10 lines",
+    "3 of 10 lines",
+    "4 of 10 lines, 6.0 an hour, 60 min left",
+    "5 of 10 lines, 6.0 an hour, 50 min left",
+  ]);
+});
+
+test("the rate is that of the latest lines", () => {
+  const told = progressText(2000, false, false, (step) => (step <= 1000 ? 100 : 400)).split("\n");
+  expect(told.find((line) => line.startsWith("1000 of"))).toBe("1000 of 2000 lines, 10 a second, 2 min left");
+  expect(told.find((line) => line.startsWith("1300 of"))).toBe("1300 of 2000 lines, 2.5 a second, 5 min left");
 });
 
 test("progress on a terminal is one line that is cleared at the end", () => {
