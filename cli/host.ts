@@ -51,7 +51,8 @@ export function nodeHost(replaced: Partial<Host> = {}, interruption: Interruptio
     folder: process.cwd(),
     cores: availableParallelism(),
     startThreads: async (count, data, script) => (await import("./host/threads.ts")).startThreads(count, data, script),
-    openQueue: async (address, lostAfter) => (await import("./host/queue.ts")).openQueue(address, lostAfter),
+    openQueue: async (address, lostAfter, tell) =>
+      (await import("./host/queue.ts")).openQueue(address, {lostAfter, tell}),
     self: {pid: process.pid, machine: hostname()},
     isAlive,
     interruptible(what) {

@@ -110,7 +110,7 @@ export interface Host {
    * @param address as `--queue` takes it
    * @param lostAfter seconds of silence after which a line is taken from its worker
    */
-  openQueue(address: string, lostAfter: number): Promise<LineQueue>;
+  openQueue(address: string, lostAfter: number, tell: (text: string) => void): Promise<LineQueue>;
   readonly self: Owner;
   /** Whether another process is at work, as far as can be told: one of another machine is. */
   isAlive(owner: Owner): boolean;

@@ -12,8 +12,8 @@ const workerKey = (worker: string): string => `${PREFIX}:worker:${worker}`;
 const refusalsKey = ({id}: QueuedRun): string => `${PREFIX}:refusals:${id}`;
 const PRESENT_S = 15;
 const CONNECT_MS = 5000;
-/** A server that was there is waited for so many times. */
-const PATIENCE = 30;
+/** A server that was there is waited for so long: it may be started anew, or its machine. */
+const PATIENCE_S = 120;
 const RETRY_MS = 1000;
 /** A line at the server takes some hundreds of bytes; so many are told in one go. */
 const BLOCK = 1000;
@@ -47,30 +47,55 @@ interface Loaders {
 
 const loaders: Loaders = {bullmq: () => import("bullmq"), ioredis: () => import("ioredis")};
 
-/**
- * @param lostAfter seconds of silence after which a line is taken from its worker
- * @throws {InputError} `queue/…`
- */
-export async function openQueue(text: string, lostAfter: number, load: Loaders = loaders): Promise<LineQueue> {
+export interface QueueTerms {
+  /** Seconds of silence after which a line is taken from its worker. */
+  readonly lostAfter: number;
+  /** Told in a sentence when the server goes away and when it is back. */
+  tell?(text: string): void;
+  /** Seconds that a server that was there is waited for. */
+  readonly patience?: number;
+  readonly load?: Loaders;
+}
+
+/** @throws {InputError} `queue/…` */
+export async function openQueue(
+  text: string,
+  {lostAfter, tell = () => undefined, patience = PATIENCE_S, load = loaders}: QueueTerms,
+): Promise<LineQueue> {
   const {url, shown} = queueAddress(text);
   const [{Queue, Worker}, {Redis}] = await installed(() => Promise.all([load.bullmq(), load.ioredis()]));
   let begun = false;
+  let closing = false;
+  const tries = Math.ceil((1000 * patience) / RETRY_MS);
   const client = new Redis(url, {
     lazyConnect: true,
     connectTimeout: CONNECT_MS,
-    maxRetriesPerRequest: PATIENCE,
+    // Requests wait until the connection is given up.
+    maxRetriesPerRequest: null,
     // A wrong address is told at once; a server that was there may come back.
-    retryStrategy: (times) => (begun && times <= PATIENCE ? RETRY_MS : null),
+    retryStrategy: (times) => (begun && times <= tries ? RETRY_MS : null),
   });
   let reason = "no answer";
+  let away = false;
   client.on("error", (error) => {
     reason = error.message || String((error as NodeJS.ErrnoException).code);
+  });
+  client.on("close", () => {
+    if (!begun || closing || away) return;
+    away = true;
+    tell(`The queue at ${shown} is away: it is waited for, ${patience} s at most. Finished lines are kept.`);
+  });
+  client.on("ready", () => {
+    if (away) tell(`The queue at ${shown} is back.`);
+    away = false;
   });
   const asking = async <T>(request: () => Promise<T>): Promise<T> => {
     try {
       return await request();
     } catch (error) {
-      throw unreachable(shown, begun, error instanceof Error && begun ? error.message : reason, error);
+      // Of a server that answered by a refusal the answer counts, else why there is no connection.
+      const answered = begun && client.status === "ready" && error instanceof Error;
+      throw unreachable(shown, begun, answered ? error.message : reason, error);
     }
   };
   let drops: string | undefined;
@@ -180,7 +205,10 @@ export async function openQueue(text: string, lostAfter: number, load: Loaders =
         // Whoever takes the line counts, so that a line is not blamed for the end of its neighbour's.
         maxStalledCount: Number.MAX_SAFE_INTEGER,
       });
-      worker.on("error", (error) => trouble(error.message));
+      // That there is no connection is told once, by the client.
+      worker.on("error", (error) => {
+        if (client.status === "ready" && !("syscall" in error)) trouble(error.message);
+      });
       return {
         async end(now = false) {
           await worker.close(now);
@@ -189,6 +217,7 @@ export async function openQueue(text: string, lostAfter: number, load: Loaders =
       };
     },
     async close() {
+      closing = true;
       for (const queue of queues.values()) await queue.close().catch(() => undefined);
       client.disconnect();
     },
@@ -208,14 +237,21 @@ async function installed<T>(load: () => Promise<T>): Promise<T> {
   }
 }
 
-const unreachable = (address: string, begun: boolean, reason: string, cause: unknown): InputError =>
-  new InputError(
+function unreachable(address: string, begun: boolean, reason: string, cause: unknown): InputError {
+  if (/^(WRONGPASS|NOAUTH|ERR AUTH)/.test(reason))
+    return new InputError(
+      "queue/refused-password",
+      `The server at ${address} does not let this program in (${reason}). Give its password with the address, redis://:PASSWORD@host:port, or NAME:PASSWORD where it knows names.`,
+      {cause},
+    );
+  return new InputError(
     "queue/unreachable",
     begun
       ? `The queue at ${address} was lost (${reason}). Finished lines are kept. Bring the server back and give the same command again.`
-      : `The queue at ${address} cannot be reached (${reason}). Check host and port, whether the server runs (redis-cli -u ADDRESS ping) and whether it needs a password (redis://:PASSWORD@host:port).`,
+      : `The queue at ${address} cannot be reached (${reason}). ${/certificate/i.test(reason) ? "The connection is encrypted, but this machine does not trust the server's certificate: set NODE_EXTRA_CA_CERTS to a file with that of its authority." : "Check host and port, whether the server runs (redis-cli -u ADDRESS ping), whether it speaks TLS (then rediss:// and else redis://) and whether it needs a password (redis://:PASSWORD@host:port)."}`,
     {cause},
   );
+}
 
 /** @returns the rule by which the server drops keys, if it has one */
 async function checked(

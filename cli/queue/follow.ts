@@ -31,20 +31,34 @@ export async function follow(
   const goOn = (): string =>
     `${missing.length - left.size} of ${missing.length} lines are finished and the queue goes on with the others. The same command joins it again; when every line is done, groundward gather --out ${out} writes the files as well`;
   let stopped = false;
-  const release = host.interruptible({
-    stop: () => {
-      stopped = true;
-    },
-    farewell: goOn,
+  let release = (): void => undefined;
+  // A server that is away must not keep an interruption waiting.
+  const halt = new Promise<undefined>((resolve) => {
+    release = host.interruptible({
+      stop: () => {
+        stopped = true;
+        resolve(undefined);
+      },
+      farewell: goOn,
+    });
   });
+  const interrupted = (): "interrupted" => {
+    host.err.write(`\ninterrupted: ${goOn()}\n`);
+    return "interrupted";
+  };
   let silence = SILENCE_MS;
   let moved = host.now();
   let submissions = 0;
   try {
     for (;;) {
-      const began = host.now();
       // The queue first: what it has let go of is in the journals by then.
-      const {waiting, active, lost} = await queue.state(run);
+      const asked = queue.state(run);
+      asked.catch(() => undefined);
+      const state = await Promise.race([asked, halt]);
+      if (state === undefined) return interrupted();
+      const {waiting, active, lost} = state;
+      // A server that was away took its time, but not by work.
+      const began = host.now();
       for (const {index, line} of (await parts.notes(run.run)).values()) {
         if (!left.delete(index)) continue;
         progress.step(line);
@@ -52,11 +66,9 @@ export async function follow(
         silence = SILENCE_MS;
         submissions = 0;
       }
+      const reading = host.now() - began;
       if (left.size === 0 || (await parts.head())?.run !== run.run) return "done";
-      if (stopped) {
-        host.err.write(`\ninterrupted: ${goOn()}\n`);
-        return "interrupted";
-      }
+      if (stopped) return interrupted();
       if (waiting + active === 0) {
         if (lost.length > 0 || submissions === AGAIN) throw lostLines(left.size, lost[0]?.reason);
         ++submissions;
@@ -71,7 +83,7 @@ export async function follow(
         silence *= 2;
         messages.note(await standstill(queue, waiting, active, told.size));
       }
-      await host.pause(Math.max(LOOK_MS, SHARE * (host.now() - began)));
+      await host.pause(Math.max(LOOK_MS, SHARE * reading));
     }
   } finally {
     progress.end();

@@ -29,7 +29,7 @@ export async function queueRun(plan: BatchPlan, work: QueueWork): Promise<number
       "option/lines-only",
       "--queue shares out the lines of a survey, but the survey is a grid, whose rows share one operator. Leave it out.",
     );
-  const queue = await host.openQueue(work.queue, LOST_AFTER_S);
+  const queue = await host.openQueue(work.queue, LOST_AFTER_S, messages.note);
   try {
     if (queue.drops !== undefined) messages.doubt(dropsText(queue));
     await refuseShards(host, out);

@@ -16,7 +16,7 @@ export async function workerRun(host: Host, asked: Asked): Promise<number> {
   const quiet = isOn(asked, "quiet");
   const messages = messagesTo(host, {json: false, quiet});
   const name = `${host.self.machine}-${host.self.pid}`;
-  const queue = await host.openQueue(served.queue, served.lostAfter);
+  const queue = await host.openQueue(served.queue, served.lostAfter, messages.note);
   let stopping = false;
   const release = host.interruptible({
     stop: () => {

@@ -90,7 +90,7 @@ test("the first line, which holds what is done once, is left out of the rate", (
     "30 of 60 lines, 1.0 a second, 30 s left",
     "40 of 60 lines, 1.0 a second, 20 s left",
   ]);
-  expect(told[6]).toBe("18 of 60 lines, 1.0 a second, 42 s left");
+  expect(told[6]).toBe("45 of 60 lines, 1.0 a second, 15 s left");
 });
 
 test("no rate is told before some lines are done, however long they take", () => {

@@ -2,7 +2,7 @@
  * Runs over a real Redis server (redis-server) with the compiled program as submitter and as workers: equal bytes,
  * workers that are killed, a line that kills its worker, runs submitted twice. `npm run build` comes before.
  */
-import {type ChildProcess, spawn} from "node:child_process";
+import {type ChildProcess, execFileSync, spawn} from "node:child_process";
 import {createHash} from "node:crypto";
 import {once} from "node:events";
 import {
@@ -19,7 +19,8 @@ import {createServer} from "node:net";
 import {tmpdir} from "node:os";
 import {join} from "node:path";
 import {fileURLToPath, pathToFileURL} from "node:url";
-import {afterAll, beforeAll, expect, onTestFinished, test} from "vitest";
+import {afterAll, beforeAll, describe, expect, onTestFinished, test} from "vitest";
+import {openQueue} from "../../cli/host/queue.ts";
 import {surveyText} from "../cli/harness.ts";
 
 const MAIN = fileURLToPath(new URL("../../dist/cli/main.js", import.meta.url));
@@ -96,6 +97,32 @@ async function freePort(): Promise<number> {
   await once(probe, "close");
   return port;
 }
+
+/** A server that holds nothing when it ends, once it takes connections; it does not outlive the test. */
+async function startServer(options: Readonly<Record<string, string | number>>): Promise<ChildProcess> {
+  const all = {
+    bind: "127.0.0.1",
+    save: "",
+    appendonly: "no",
+    dir: folder,
+    "maxmemory-policy": "noeviction",
+    ...options,
+  };
+  const started = spawn(
+    "redis-server",
+    Object.entries(all).flatMap(([name, value]) => [`--${name}`, `${value}`]),
+    {stdio: ["ignore", "pipe", "inherit"]},
+  );
+  onTestFinished(() => void started.kill("SIGKILL"));
+  let log = "";
+  started.stdout!.on("data", (data) => {
+    log += data;
+  });
+  await until(() => log.includes("Ready to accept connections"));
+  return started;
+}
+
+const flat = (text: string): string => text.replaceAll(/\s+/g, " ");
 
 beforeAll(async () => {
   if (!existsSync(MAIN)) throw new Error("dist/ is missing: run npm run build first");
@@ -220,4 +247,109 @@ test("another folder on the worker's machine: refused with the reason, and found
   expect(await worker(`${address}/3`, ["--idle", "0.2", "--folder", `${before}=${after}`]).end).toBe(0);
   expect(await start(["gather", join(after, "lines.csv"), "--out", join(after, "out")]).end).toBe(5);
   expect(digests(join(after, "out"))).toEqual(undisturbed);
+});
+
+describe("a server", () => {
+  test("that is killed at work and comes back empty: said on both sides, and the bytes of one process", async () => {
+    const out = join(folder, "outage");
+    const port = await freePort();
+    const own = await startServer({port});
+    const helper = worker(`redis://127.0.0.1:${port}`, ["--idle", "30"]);
+    await until(() => helper.said.err.includes("waits for lines"));
+    const submitter = submit(`redis://127.0.0.1:${port}`, out);
+    await until(() => helper.said.out.split("\n").length > 3);
+    own.kill("SIGKILL");
+    await until(() => /is away: it is waited for/.test(flat(helper.said.err)));
+    await until(() => /is away: it is waited for/.test(flat(submitter.said.err)));
+    expect(existsSync(join(out, "lines.csv"))).toBe(false);
+    await startServer({port});
+    expect(await submitter.end).toBe(5);
+    expect(digests(out)).toEqual(undisturbed);
+    for (const {said} of [submitter, helper]) expect(flat(said.err)).toContain(`127.0.0.1:${port} is back.`);
+    expect(flat(submitter.said.err)).not.toContain("[queue/");
+  });
+
+  test("that stays away: given up after the time allowed, with what is kept and what to do", async () => {
+    const port = await freePort();
+    const own = await startServer({port});
+    const told: string[] = [];
+    const queue = await openQueue(`redis://127.0.0.1:${port}`, {
+      lostAfter: 1,
+      patience: 2,
+      tell: (text) => told.push(text),
+    });
+    expect(await queue.runs()).toEqual([]);
+    own.kill("SIGKILL");
+    await until(() => told.length > 0);
+    await expect(queue.runs()).rejects.toMatchObject({
+      code: "queue/unreachable",
+      exitStatus: 2,
+      message: expect.stringMatching(
+        /was lost \(connect ECONNREFUSED .*Finished lines are kept\..*give the same command again/,
+      ),
+    });
+    expect(told).toEqual([expect.stringContaining("is waited for, 2 s at most")]);
+    await queue.close();
+  });
+
+  test("that is away does not keep an interruption waiting: status 130, and the same command finishes", async () => {
+    const out = join(folder, "interrupted-away");
+    const port = await freePort();
+    const own = await startServer({port});
+    const first = submit(`redis://127.0.0.1:${port}`, out);
+    await until(() => existsSync(join(out, PARTS, "request.json")));
+    own.kill("SIGKILL");
+    await until(() => /is away/.test(flat(first.said.err)));
+    first.process.kill("SIGINT");
+    expect(await first.end).toBe(130);
+    expect(first.said.err).toContain("interrupted: 0 of 24 lines are finished");
+    await startServer({port});
+    const helper = worker(`redis://127.0.0.1:${port}`);
+    expect(await submit(`redis://127.0.0.1:${port}`, out).end).toBe(5);
+    expect(digests(out)).toEqual(undisturbed);
+    helper.process.kill("SIGINT");
+    await helper.end;
+  });
+
+  test("with a password: the right one works, a wrong one or none is said to be wrong, and is never printed", async () => {
+    const port = await freePort();
+    await startServer({port, requirepass: "sesame"});
+    const asked = (login: string): Started =>
+      start(["worker", "--idle", "0.2", "--queue", `redis://${login}127.0.0.1:${port}`]);
+    expect(await asked(":sesame@").end).toBe(0);
+    for (const login of [":opensaysme@", ""]) {
+      const refused = asked(login);
+      expect(await refused.end).toBe(2);
+      expect(flat(refused.said.err)).toMatch(
+        /does not let this program in.*redis:\/\/:PASSWORD@host:port.*\[queue\/refused-password\]/,
+      );
+      expect(refused.said.err).not.toContain("opensaysme");
+    }
+  });
+
+  test("behind TLS: reached by rediss:// where its certificate is trusted, else told how to trust it", async () => {
+    const port = await freePort();
+    const [key, certificate] = [join(folder, "tls.key"), join(folder, "tls.crt")];
+    const made = ["req", "-x509", "-newkey", "rsa:2048", "-nodes", "-days", "2", "-subj", "/CN=queue", "-addext"];
+    execFileSync("openssl", [...made, "subjectAltName=IP:127.0.0.1", "-keyout", key, "-out", certificate], {
+      stdio: "ignore",
+    });
+    await startServer({
+      port: 0,
+      "tls-port": port,
+      "tls-cert-file": certificate,
+      "tls-key-file": key,
+      "tls-ca-cert-file": certificate,
+      "tls-auth-clients": "no",
+    });
+    const asked = (scheme: string, environment: Record<string, string> = {}): Started =>
+      start(["worker", "--idle", "0.2", "--queue", `${scheme}://127.0.0.1:${port}`], environment);
+    expect(await asked("rediss", {NODE_EXTRA_CA_CERTS: certificate}).end).toBe(0);
+    const untrusted = asked("rediss");
+    expect(await untrusted.end).toBe(2);
+    expect(flat(untrusted.said.err)).toMatch(/certificate.*NODE_EXTRA_CA_CERTS.*\[queue\/unreachable\]/);
+    const plain = asked("redis");
+    expect(await plain.end).toBe(2);
+    expect(flat(plain.said.err)).toMatch(/rediss:\/\/.*\[queue\/unreachable\]/);
+  });
 });

@@ -93,13 +93,13 @@ describe("a server", () => {
 
   test("that is not there is told, with what to look at", async () => {
     // Port 1 is for a service that no machine offers any more.
-    await expect(openQueue("redis://:secret@127.0.0.1:1", 30)).rejects.toThrow(
+    await expect(openQueue("redis://:secret@127.0.0.1:1", {lostAfter: 30})).rejects.toThrow(
       /^The queue at redis:\/\/127\.0\.0\.1:1 cannot be reached \(.*ECONNREFUSED.*\)\. Check host and port/,
     );
   });
 
   test("that is too old is refused", async () => {
-    await expect(openQueue(await serverThatSays(info("5.0.7", "noeviction")), 30)).rejects.toThrow(
+    await expect(openQueue(await serverThatSays(info("5.0.7", "noeviction")), {lostAfter: 30})).rejects.toThrow(
       /is Redis 5\.0\.7, and the queue needs Redis 6\.2 or later/,
     );
   });
@@ -108,14 +108,16 @@ describe("a server", () => {
     ["noeviction", undefined],
     ["allkeys-lru", "allkeys-lru"],
   ])("with the rule %s drops by it: %s", async (policy, drops) => {
-    const queue = await openQueue(await serverThatSays(info("6.2.0", policy)), 30);
+    const queue = await openQueue(await serverThatSays(info("6.2.0", policy)), {lostAfter: 30});
     expect(queue.drops).toBe(drops);
     await queue.close();
   });
 
   test("needs packages that are loaded only now", async () => {
     const missing = () => Promise.reject(Object.assign(new Error("no package"), {code: "ERR_MODULE_NOT_FOUND"}));
-    await expect(openQueue("redis://127.0.0.1:1", 30, {bullmq: missing, ioredis: missing})).rejects.toMatchObject({
+    await expect(
+      openQueue("redis://127.0.0.1:1", {lostAfter: 30, load: {bullmq: missing, ioredis: missing}}),
+    ).rejects.toMatchObject({
       code: "queue/not-installed",
       message: expect.stringContaining("npm install bullmq ioredis"),
     });
