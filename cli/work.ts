@@ -77,6 +77,11 @@ export async function gridWork(
       "option/lines-only",
       "--tie holds lines to known readings, but the survey is a grid, whose rows share one operator. Take lines across it with --profiles FILE.geojson or --every N.",
     );
+  if (settings.wanted.trustFraction !== undefined)
+    throw new InputError(
+      "option/lines-only",
+      "--trust-fraction compares the intervals of a line with the range of the field along it, and the survey is a grid, whose rows have no depth to trust. Leave it out, or take lines out of the grid with --profiles FILE.geojson or --every N.",
+    );
   const products = await gridProducts(folder, {version: host.version, settings}, await openRaster(file));
   return {
     outcomes: studyGrid(survey, settings, threads),

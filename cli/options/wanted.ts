@@ -186,7 +186,7 @@ export function wantedFrom(asked: Asked, maps?: MapFiles): WantedSettings {
     levels: levels.size === 0 ? [levelFrom(DEFAULT_LEVEL)] : [...levels.values()],
     strips,
     confidence: numberFor("--confidence", oneOf(asked, "confidence") ?? DEFAULT_CONFIDENCE, PROBABILITY),
-    trustFraction: numberFor("--trust-fraction", fraction ?? `${DEFAULT_TRUST_FRACTION}`, FRACTION),
+    ...(fraction === undefined ? {} : {trustFraction: numberFor("--trust-fraction", fraction, FRACTION)}),
     intervals: intervalsFrom(asked),
     ...(also.length === 0 ? {} : {also}),
   };

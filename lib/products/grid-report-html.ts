@@ -29,6 +29,8 @@ interface Page {
   readonly delivery: Delivery;
   readonly source: Pair;
   readonly levels: readonly Pair[];
+  /** Levels that are the source itself, at every row alike: they show its pictures. */
+  readonly likeSource: boolean[];
   readonly ledger: GridLedger;
   readonly doubts: Doubts;
   readonly counts: Record<RowOutcome["status"], number>;
@@ -46,6 +48,7 @@ export function gridReportHtml(sink: TextSink, about: RunAbout): RowProduct {
         delivery: deliveryOf(frame.observable),
         source: pair("Source on the boundary"),
         levels: frame.levels.slice(0, LEVELS_SHOWN).map((level) => pair(`Field ${levelWords(level)}`)),
+        likeSource: [],
         ledger: gridLedger(),
         doubts: doubtsOf(grid.orientation === "rows" ? "row" : "column"),
         counts: {done: 0, doubtful: 0, skipped: 0, failed: 0},
@@ -73,12 +76,14 @@ function take(page: Page, outcome: RowOutcome): void {
   }
   const {study, index} = outcome;
   const show = (pair: Pair, band: RowBand): void => {
-    pair.value.take(index, band.value.map(page.delivery.toField));
-    pair.halfWidth.take(index, band.halfWidth.map(page.delivery.toField));
+    pair.value.take(index, band.value);
+    pair.halfWidth.take(index, band.halfWidth);
   };
   show(page.source, study.source);
   page.levels.forEach((pair, k) => {
-    show(pair, study.levels[k]!.band);
+    const {band} = study.levels[k]!;
+    if (band === study.source) page.likeSource[k] = true;
+    else show(pair, band);
   });
   page.ledger.take(study);
   page.doubts.notices(study.notices, outcome.id);
@@ -104,9 +109,10 @@ function* pieces(page: Page, about: RunAbout): Generator<string> {
   if (counts.done + counts.doubtful === 0) yield `<p>No ${noun} could be answered; the reasons follow.</p>`;
   else {
     yield `<p>Each ${noun} on its own, over bodies that run on across it. Left: the value, at the boundary the average over the resolution length. Right: half the width of its ${percentText(confidence)} interval.</p>`;
-    for (const pair of [page.source, ...page.levels]) {
-      yield `<div class="grids"><figure>${pair.value.figure(`${pair.title}, ${delivery.field}`)}</figure>`;
-      yield `<figure>${pair.halfWidth.figure(`Half-width, ${delivery.field}`)}</figure></div>`;
+    const shown = page.levels.map((pair, k) => (page.likeSource[k] ? {...page.source, title: pair.title} : pair));
+    for (const pair of [page.source, ...shown]) {
+      yield `<div class="grids"><figure>${pair.value.figure(`${pair.title}, ${delivery.field}`, delivery.toField)}</figure>`;
+      yield `<figure>${pair.halfWidth.figure(`Half-width, ${delivery.field}`, delivery.toField)}</figure></div>`;
     }
     yield `<p class="small">Pictures hold no more than 600 pixels a side, means of the pixels beneath; the outermost hundredth of the values at either end shares the end colours; grey: no reading. The rasters hold every pixel.${
       frame.levels.length > LEVELS_SHOWN

@@ -99,7 +99,7 @@ function largestOf(cells: LevelCells, basis: RegionalBasis): number {
 }
 
 /** V with T − BBᵀ = VVᵀ. */
-function whatIsMissing(cells: LevelCells, diagonals: Float64Array): LowRank {
+export function whatIsMissing(cells: LevelCells, diagonals: Float64Array): LowRank {
   const n = cells.readings;
   const unit = new Float64Array(n);
   const onCells = new Float64Array(cells.count);

@@ -67,7 +67,7 @@ export function pooledRows(): PooledRows {
         modal.add(key, geometry, rows, data);
         return;
       }
-      const pool = level.get(key) ?? {system: rows.system, data: []};
+      const pool = level.get(key) ?? {system: rows.system(), data: []};
       level.set(key, pool);
       pool.data.push(rows.sorted(data));
     },

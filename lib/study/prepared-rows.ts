@@ -10,7 +10,7 @@ import type {Settings} from "./settings.ts";
 import {cutNotices, supportOfLine} from "./support-of-line.ts";
 import {type LineZones, zonesFor} from "./zones.ts";
 
-export interface PreparedRow {
+interface PreparedRow {
   readonly line: SurveyLine;
   readonly conditioned: ConditionedLine;
   readonly zones: LineZones;

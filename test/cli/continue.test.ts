@@ -333,6 +333,9 @@ describe("continue over a grid", () => {
       expect(flat(err)).toMatch(/--profiles FILE\.geojson or --every N\. \[option\/lines-only\]/);
       expect(contents(out)).toEqual([]);
     }
+    const trust = await go("--trust-fraction", "0.1");
+    expect({status: trust.status, printed: trust.out}).toEqual({status: 2, printed: ""});
+    expect(flat(trust.err)).toMatch(/--trust-fraction compares the intervals of a line .*\[option\/lines-only\]/);
     // Lines taken out of the grid have strips.
     expect((await go("--strip", "dyke=0:100", "--every", "2")).status).not.toBe(2);
     expect(table(out, "strips.csv").map(({strip}) => strip)).toEqual(["dyke", "dyke", "dyke"]);

@@ -48,7 +48,6 @@ describe("settings", () => {
       levels: [{kind: "above-boundary", height: 0}],
       strips: [],
       confidence: 0.95,
-      trustFraction: 0.25,
       intervals: "single",
     });
     expect(processing).toBeUndefined();

@@ -6,14 +6,14 @@ import {interpolateCividis} from "d3-scale-chromatic";
 import {encodePng} from "../../formats/png.ts";
 import type {GridFrame} from "../../survey/survey.ts";
 import {scaleBar} from "./map.ts";
-import {rampLegend, rampOver} from "./ramp.ts";
+import {type Ramp, rampLegend, rampOver} from "./ramp.ts";
 import {boxMark, figureSvg, px, textMark} from "./svg.ts";
 
 export interface GridPicture {
-  /** Takes row (or column) `index`; NaN has no value. */
+  /** Takes row (or column) `index`, SI; NaN has no value. */
   take(index: number, values: Float64Array): void;
-  /** The figure. @param title escaped, with the unit */
-  figure(title: string): string;
+  /** The figure. @param title escaped, with the unit. @param delivered SI to that unit */
+  figure(title: string, delivered: (si: number) => number): string;
 }
 
 const LARGEST = 600;
@@ -27,20 +27,26 @@ export function gridPicture(frame: GridFrame): GridPicture {
   const height = Math.ceil(frame.height / factor);
   const sum = new Float64Array(width * height);
   const count = new Uint32Array(width * height);
+  /** Some pictures are shown twice. */
+  let drawn: Drawing | undefined;
+  const drawing = (mean: Float64Array): Drawing => ({...coloured(mean, width, height), width, height, factor});
   const along = frame.orientation === "rows" ? {each: 1, line: width} : {each: width, line: 1};
   return {
     take(index, values) {
-      const first = Math.floor(index / factor) * along.line;
-      for (let i = 0; i < values.length; ++i) {
-        if (!Number.isFinite(values[i]!)) continue;
-        const cell = first + Math.floor(i / factor) * along.each;
-        sum[cell]! += values[i]!;
-        ++count[cell]!;
+      let cell = Math.floor(index / factor) * along.line;
+      for (let from = 0; from < values.length; from += factor, cell += along.each) {
+        const to = Math.min(from + factor, values.length);
+        for (let i = from; i < to; ++i) {
+          const value = values[i]!;
+          if (!Number.isFinite(value)) continue;
+          sum[cell]! += value;
+          ++count[cell]!;
+        }
       }
     },
-    figure(title) {
-      const mean = Float64Array.from(sum, (total, cell) => (count[cell]! > 0 ? total / count[cell]! : Number.NaN));
-      return picture(frame, mean, width, height, factor, title);
+    figure(title, delivered) {
+      drawn ??= drawing(sum.map((total, cell) => (count[cell]! > 0 ? delivered(total / count[cell]!) : Number.NaN)));
+      return picture(frame, drawn, title);
     },
   };
 }
@@ -48,14 +54,17 @@ export function gridPicture(frame: GridFrame): GridPicture {
 /** Red, green and blue of `rgb(r, g, b)`. */
 const channels = (colour: string): readonly number[] => colour.match(/\d+/g)!.map(Number);
 
-function picture(
-  frame: GridFrame,
-  mean: Float64Array,
-  width: number,
-  height: number,
-  factor: number,
-  title: string,
-): string {
+interface Drawing {
+  readonly ramp: Ramp;
+  /** PNG, base64. */
+  readonly data: string;
+  readonly width: number;
+  readonly height: number;
+  /** Pixels of the grid to one of the picture. */
+  readonly factor: number;
+}
+
+function coloured(mean: Float64Array, width: number, height: number): Pick<Drawing, "ramp" | "data"> {
   const ramp = rampOver(mean);
   const shades = Array.from({length: SHADES}, (_, k) => channels(interpolateCividis((k + 0.5) / SHADES)));
   const pixels = new Uint8Array(4 * width * height);
@@ -68,7 +77,10 @@ function picture(
     pixels[4 * cell + 2] = shade[2]!;
     pixels[4 * cell + 3] = 255;
   }
-  const data = Buffer.from(encodePng(width, height, pixels, 4)).toString("base64");
+  return {ramp, data: Buffer.from(encodePng(width, height, pixels, 4)).toString("base64")};
+}
+
+function picture(frame: GridFrame, {ramp, data, width, height, factor}: Drawing, title: string): string {
   const [dx, dy] = frame.orientation === "rows" ? [frame.step, frame.spacing] : [frame.spacing, frame.step];
   // The picture may reach a little beyond the grid, where its last squares are cut.
   const metres = {x: width * factor * dx, y: height * factor * dy};

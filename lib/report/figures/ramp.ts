@@ -2,7 +2,6 @@
  * Values to colours: cividis, perceptually uniform and read alike with red-green blindness
  * (Nuñez, Anderton & Renslow, PLoS ONE 13 (2018) e0199239), on a range that leaves out the outermost values.
  */
-import {quantileSorted} from "d3-array";
 import {scaleLinear} from "d3-scale";
 import {interpolateCividis} from "d3-scale-chromatic";
 import {tickFormat} from "../number-text.ts";
@@ -25,9 +24,9 @@ const TAIL = 0.01;
 /** @param values finite entries count; a constant gets a range around it */
 export function rampOver(values: Float64Array | readonly number[]): Ramp {
   // Typed arrays sort by value, and several times as quickly.
-  const sorted = Array.from(Float64Array.from(values).filter(Number.isFinite).sort());
-  let low = sorted.length > 0 ? quantileSorted(sorted, TAIL)! : 0;
-  let high = sorted.length > 0 ? quantileSorted(sorted, 1 - TAIL)! : 1;
+  const sorted = new Float64Array(values).filter(Number.isFinite).sort();
+  let low = sorted.length > 0 ? quantile(sorted, TAIL) : 0;
+  let high = sorted.length > 0 ? quantile(sorted, 1 - TAIL) : 1;
   if (!(high > low)) {
     const air = Math.abs(low) * 0.1 || 1;
     low -= air;
@@ -38,6 +37,13 @@ export function rampOver(values: Float64Array | readonly number[]): Ramp {
     high,
     classOf: (value) => Math.max(0, Math.min(CLASSES - 1, Math.floor((CLASSES * (value - low)) / (high - low)))),
   };
+}
+
+function quantile(sorted: Float64Array, share: number): number {
+  const place = share * (sorted.length - 1);
+  const left = Math.floor(place);
+  const right = Math.min(left + 1, sorted.length - 1);
+  return sorted[left]! + (place - left) * (sorted[right]! - sorted[left]!);
 }
 
 const LEGEND_WIDTH = 220;
