@@ -7,7 +7,7 @@ import {join} from "node:path";
 import {fileURLToPath} from "node:url";
 import {expect, test} from "vitest";
 import {seededRandom} from "../../../lib/numeric/random.ts";
-import {contents, fileWith, surveyText, temporaryFolder} from "../harness.ts";
+import {contents, fileWith, gridBytes, surveyText, temporaryFolder} from "../harness.ts";
 
 const MAIN = fileURLToPath(new URL("../../../dist/cli/main.js", import.meta.url));
 const LINES = 24;
@@ -100,3 +100,21 @@ test("any number of threads gives the same bytes, and a run killed at any moment
     expect(digests(out)).toEqual(undisturbed);
   }
 }, 300_000);
+
+test("rows of a grid are the same bytes by any number of threads", () => {
+  // Rows from 600 pixels on go to threads.
+  const grid = fileWith("grid.tif", gridBytes(640, 6));
+  const whole = (workers: number): Record<string, string> => {
+    const out = temporaryFolder();
+    const asked = ["--observable", "field-vertical", "--clearance", "60", "--noise", "1", "--bound", "rms:200"];
+    const levels = ["--level", "0", "--level", "40", "--workers", `${workers}`];
+    const {status, stderr} = spawnSync(process.execPath, [MAIN, "continue", grid, ...asked, ...levels, "--out", out], {
+      encoding: "utf8",
+    });
+    expect({status, error: /error/.exec(stderr)}).toEqual({status: 0, error: null});
+    return digests(out);
+  };
+  const alone = whole(1);
+  expect(Object.keys(alone)).toContain("level_40_rowwise.tif");
+  expect(whole(3)).toEqual(alone);
+});
