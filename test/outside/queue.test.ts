@@ -148,7 +148,7 @@ beforeAll(async () => {
   expect((await once(whole, "close"))[0]).toBe(5);
   undisturbed = digests(join(folder, "one"));
   await until(() => log.includes("Ready to accept connections"));
-});
+}, 120_000);
 afterAll(async () => {
   server.kill();
   await once(server, "close");
@@ -302,7 +302,8 @@ describe("a server", () => {
     await until(() => /is away/.test(flat(first.said.err)));
     first.process.kill("SIGINT");
     expect(await first.end).toBe(130);
-    expect(first.said.err).toContain("interrupted: 0 of 24 lines are finished");
+    // While its lines are put in, or followed.
+    expect(flat(first.said.err)).toMatch(/interrupted: .*the same command (adds the others|joins it again)/i);
     await startServer({port});
     const helper = worker(`redis://127.0.0.1:${port}`);
     expect(await submit(`redis://127.0.0.1:${port}`, out).end).toBe(5);
