@@ -1,6 +1,6 @@
 /**
  * Speed and memory of the program as a user meets it: `npm run bench`, or with names of cases `npm run bench -- line`.
- * Needs Debian's python3-numpy and python3-scipy. Exit status 1 where a target is missed.
+ * Needs Debian's python3-numpy and python3-scipy, for level-grid and huge-grid python3-gdal too. Exit status 1 where a target is missed.
  */
 import {mkdirSync, mkdtempSync, rmSync, writeFileSync} from "node:fs";
 import {tmpdir} from "node:os";
@@ -9,6 +9,8 @@ import {bandCase} from "./band-case.ts";
 import {coverageCase} from "./coverage-case.ts";
 import {crossingsCase} from "./crossings-case.ts";
 import {gridCase} from "./grid-case.ts";
+import {hugeGridCase} from "./huge-grid-case.ts";
+import {levelGridCase} from "./level-grid-case.ts";
 import {lineCase} from "./line-case.ts";
 import {BENCH_FOLDER} from "./measured.ts";
 import {machineLines, resultsText, type Told, tableOf} from "./results.ts";
@@ -18,7 +20,7 @@ import {unevenLineCase} from "./uneven-line-case.ts";
 
 const CASES = [lineCase, gridCase, crossingsCase, startCase];
 /** Slower, and of answers rather than speed: run by name alone. */
-const ON_REQUEST = [rulesCase, coverageCase, bandCase, assumedCase, unevenLineCase];
+const ON_REQUEST = [rulesCase, coverageCase, bandCase, assumedCase, unevenLineCase, levelGridCase, hugeGridCase];
 const NAMED = [...CASES, ...ON_REQUEST];
 
 const asked = process.argv.slice(2);

@@ -71,7 +71,7 @@ def main(source, target, settings, summary):
     place = grid.GetGeoTransform()
     rows = grid.GetRasterBand(1).ReadAsArray().astype(np.float64)
     count, n = rows.shape
-    pixel, z, noise, bound_factor, confidence = place[1], s["clearance"], s["noise"], 2.0, s["confidence"]
+    pixel, z, noise, bound, confidence = place[1], s["clearance"], s["noise"], s["bound"], s["confidence"]
     x = (np.arange(n) + 0.5) * pixel
     start, end = x[0] - 5 * z, x[-1] + 5 * z
     width = pixel / s["split"]
@@ -93,7 +93,7 @@ def main(source, target, settings, summary):
     rows -= (rows @ regional) @ regional.T
     seen = rows @ vectors
     # One multiplier for all: the largest whose misfit the noise explains, by a sample of rows.
-    sample = np.arange(s["step"] >> 1, count + 1, s["step"]) - 1
+    sample = np.array(s["sample"])
     energies = np.sum(seen[sample] ** 2, axis=0)
     outside = np.sum(rows[sample] ** 2) - energies.sum()
     readings = sample.size * n
@@ -110,7 +110,6 @@ def main(source, target, settings, summary):
     shrunk = seen / (eigenvalues + multiplier)
     norms = np.sqrt(np.sum(shrunk * shrunk * eigenvalues, axis=1))
     misfits = np.sum(rows * rows, axis=1) - np.sum(seen * seen, axis=1) + np.sum((multiplier * shrunk) ** 2, axis=1)
-    bound = bound_factor * norms[sample].max()
 
     # Values at the boundary: between centres of cells, level beyond the outermost.
     place_of = np.clip(np.searchsorted(centre, x) - 1, 0, centre.size - 2)
@@ -139,8 +138,7 @@ def main(source, target, settings, summary):
     out = None
     with open(summary, "w") as file:
         json.dump(
-            {"multiplier": multiplier, "bound": bound, "resolution": length, "norms": norms.tolist(), "misfits": misfits.tolist()},
-            file,
+            {"multiplier": multiplier, "resolution": length, "norms": norms.tolist(), "misfits": misfits.tolist()}, file
         )
 
 

@@ -2,7 +2,7 @@
 import {spawnSync} from "node:child_process";
 
 /** The distribution's interpreter: the one that sees its numpy and scipy. */
-const PYTHON = "/usr/bin/python3";
+export const PYTHON = "/usr/bin/python3";
 /** Files beside this one that are not compiled; npm runs scripts from the project's root. */
 export const BENCH_FOLDER = "test/bench";
 
@@ -21,11 +21,14 @@ function singleThread(): NodeJS.ProcessEnv {
   return {...rest, OPENBLAS_NUM_THREADS: "1", OMP_NUM_THREADS: "1", MKL_NUM_THREADS: "1"};
 }
 
-/** @throws {Error} when the command cannot be run or fails */
-export function measured(command: string, args: readonly string[]): Measured {
+/**
+ * @param threads of the algebra behind numpy
+ * @throws {Error} when the command cannot be run or fails
+ */
+export function measured(command: string, args: readonly string[], threads: "one" | "all" = "one"): Measured {
   const found = spawnSync(PYTHON, [`${BENCH_FOLDER}/measure.py`, command, ...args], {
     encoding: "utf8",
-    env: singleThread(),
+    env: threads === "one" ? singleThread() : process.env,
   });
   if (found.error !== undefined) throw new Error(`${PYTHON} could not be run: ${found.error.message}`);
   if (found.status !== 0) throw new Error(`measure.py failed:\n${found.stderr}`);
@@ -39,8 +42,8 @@ const PROGRAM = new URL("../../cli/main.js", import.meta.url).pathname;
 
 export const measuredProgram = (args: readonly string[]): Measured => measured(process.execPath, [PROGRAM, ...args]);
 
-export const measuredPython = (script: string, args: readonly string[]): Measured =>
-  measured(PYTHON, [`${BENCH_FOLDER}/${script}`, ...args]);
+export const measuredPython = (script: string, args: readonly string[], threads?: "one" | "all"): Measured =>
+  measured(PYTHON, [`${BENCH_FOLDER}/${script}`, ...args], threads);
 
 /** What `script --versions` prints. */
 export function versionsOf(script: string): Readonly<Record<string, string>> {
