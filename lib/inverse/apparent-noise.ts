@@ -6,8 +6,8 @@
  * grows a hundredfold for nothing. The estimate by likelihood stays calm there.
  */
 import {minimise} from "../numeric/roots.ts";
+import {fewMultipliers} from "../solvers/few-multipliers.ts";
 import type {Solver} from "../solvers/solver.ts";
-import {fewMultipliers} from "./few-multipliers.ts";
 
 export interface ApparentNoise {
   /** Over the noise that whitened the readings. */

@@ -1,6 +1,7 @@
 /** The trade-off curve: how misfit and norm answer to the multiplier. */
+
+import {fewMultipliers} from "../solvers/few-multipliers.ts";
 import type {Solver} from "../solvers/solver.ts";
-import {fewMultipliers} from "./few-multipliers.ts";
 import type {TradeoffCurve} from "./nouns.ts";
 
 /** Points on the curve: six a decade over at most fourteen decades draw it smoothly; fewer where each costs a solution. */

@@ -49,9 +49,13 @@ export function usefulDiagonals(n: number): number {
  *   `usefulDiagonals(n)`, make the preconditioner a good one where n is no power of two
  * @throws {NumericalError} `numeric/not-positive-definite`
  */
-export function toeplitzInverse(diagonals: Float64Array, n: number): ToeplitzInverse {
+export function toeplitzInverse(diagonals: Float64Array, n: number, transforms = transformsFor(n)): ToeplitzInverse {
   const column = diagonals.subarray(0, n);
-  const product = pairProduct(column);
+  let made: PairMap | undefined;
+  const product: PairMap = (...given) => {
+    made ??= pairProduct(column, transforms);
+    made(...given);
+  };
   const recursion = byRecursion(column.subarray(0, RECURSION_SERVES));
   const first = n <= RECURSION_SERVES ? recursion.first : byGradients(diagonals, n, product);
   if (!(first[0] > 0))
@@ -59,7 +63,7 @@ export function toeplitzInverse(diagonals: Float64Array, n: number): ToeplitzInv
       "numeric/not-positive-definite",
       `A symmetric Toeplitz matrix of order ${n} is not positive definite in double precision (first entry of the inverse ${first[0]}).`,
     );
-  const apply = pairInverse(first);
+  const apply = pairInverse(first, transforms);
   const restU = new Float64Array(n);
   const restV = new Float64Array(n);
   return {
@@ -97,32 +101,41 @@ export function toeplitzInverse(diagonals: Float64Array, n: number): ToeplitzInv
 
 type PairMap = (u: Float64Array, v: Float64Array, a: Float64Array, b: Float64Array) => void;
 
-function sizeFor(n: number): number {
-  let size = 2;
-  while (size < 2 * n) size *= 2;
-  return size;
+/** Plan and scratch of the transforms, which inverses of one order may share: nothing in them outlives a product. */
+export interface Transforms {
+  readonly size: number;
+  readonly plan: FFT;
+  readonly scratch: readonly [number[], number[], number[], number[]];
 }
 
-/** T (a + ib), T in a circulant of at least twice its size. */
-function pairProduct(column: Float64Array): PairMap {
-  const n = column.length;
-  const size = sizeFor(n);
+export function transformsFor(n: number): Transforms {
+  let size = 2;
+  while (size < 2 * n) size *= 2;
   const plan = new FFT(size);
-  const buffer = plan.createComplexArray() as number[];
-  const spectrum = plan.createComplexArray() as number[];
+  return {size, plan, scratch: [doubles(size), doubles(size), doubles(size), doubles(size)]};
+}
+
+/** Complex numbers; an array of numbers that are no integers from the start is laid out once. */
+const doubles = (size: number): number[] => new Array<number>(2 * size).fill(0.5);
+
+/** T (a + ib), T in a circulant of at least twice its size. */
+function pairProduct(column: Float64Array, {size, plan, scratch: [buffer, spectrum]}: Transforms): PairMap {
+  const n = column.length;
+  buffer.fill(0);
   for (let i = 0; i < n; ++i) {
     buffer[2 * i] = column[i];
     if (i > 0) buffer[2 * (size - i)] = column[i];
   }
   plan.transform(spectrum, buffer);
   // An even real sequence has a real spectrum.
-  const symbol = Array.from({length: size}, (_, k) => spectrum[2 * k]);
+  const symbol = Float64Array.from({length: size}, (_, k) => spectrum[2 * k]);
   return (u, v, a, b) => {
     load(buffer, a, b, n);
     plan.transform(spectrum, buffer);
     for (let k = 0; k < size; ++k) {
-      spectrum[2 * k] *= symbol[k];
-      spectrum[2 * k + 1] *= symbol[k];
+      const factor = symbol[k];
+      spectrum[2 * k] *= factor;
+      spectrum[2 * k + 1] *= factor;
     }
     plan.inverseTransform(buffer, spectrum);
     unload(u, v, buffer, n, 1);
@@ -145,35 +158,36 @@ function unload(u: Float64Array, v: Float64Array, buffer: number[], n: number, s
 }
 
 /** T⁻¹ (a + ib) by six transforms. */
-function pairInverse(first: Float64Array): PairMap {
+function pairInverse(first: Float64Array, {size, plan, scratch: [buffer, data, work, sum]}: Transforms): PairMap {
   const n = first.length;
-  const size = sizeFor(n);
-  const plan = new FFT(size);
-  const buffer = plan.createComplexArray() as number[];
-  const data = plan.createComplexArray() as number[];
-  const work = plan.createComplexArray() as number[];
-  const sum = plan.createComplexArray() as number[];
-  const spectrumOf = (entry: (i: number) => number): number[] => {
-    const spectrum = plan.createComplexArray() as number[];
+  const spectrumOf = (entry: (i: number) => number): Float64Array => {
     buffer.fill(0);
     for (let i = 0; i < n; ++i) buffer[2 * i] = entry(i);
-    plan.transform(spectrum, buffer);
-    return spectrum;
+    plan.transform(work, buffer);
+    return Float64Array.from(work);
   };
   const x = spectrumOf((i) => first[i]);
   const y = spectrumOf((i) => (i === 0 ? 0 : first[n - i]));
   /** L Lᵀ of one factor, its spectrum added to `sum` with a sign. */
-  const add = (factor: readonly number[], sign: number): void => {
+  const add = (factor: Float64Array, sign: number): void => {
     for (let k = 0; k < 2 * size; k += 2) {
-      work[k] = data[k] * factor[k] + data[k + 1] * factor[k + 1];
-      work[k + 1] = data[k + 1] * factor[k] - data[k] * factor[k + 1];
+      const re = factor[k];
+      const im = factor[k + 1];
+      const dataRe = data[k];
+      const dataIm = data[k + 1];
+      work[k] = dataRe * re + dataIm * im;
+      work[k + 1] = dataIm * re - dataRe * im;
     }
     plan.inverseTransform(buffer, work);
     for (let i = 2 * n; i < 2 * size; ++i) buffer[i] = 0;
     plan.transform(work, buffer);
     for (let k = 0; k < 2 * size; k += 2) {
-      sum[k] += sign * (work[k] * factor[k] - work[k + 1] * factor[k + 1]);
-      sum[k + 1] += sign * (work[k + 1] * factor[k] + work[k] * factor[k + 1]);
+      const re = factor[k];
+      const im = factor[k + 1];
+      const workRe = work[k];
+      const workIm = work[k + 1];
+      sum[k] += sign * (workRe * re - workIm * im);
+      sum[k + 1] += sign * (workIm * re + workRe * im);
     }
   };
   return (u, v, a, b) => {
@@ -187,21 +201,37 @@ function pairInverse(first: Float64Array): PairMap {
   };
 }
 
-/** T⁻¹e₁ by Durbin's recursion for the prediction coefficients: x = (1, a)/σ², σ² what prediction leaves. */
+/**
+ * T⁻¹e₁ by Durbin's recursion for the prediction coefficients: x = (1, a)/σ², σ² what prediction leaves. Entries are
+ * changed in pairs from both ends, and products summed four abreast, for a sum waits for the one before.
+ */
 function byRecursion(column: Float64Array) {
   const n = column.length;
   const x = new Float64Array(n);
-  const before = new Float64Array(n);
   x[0] = 1;
   let left = column[0];
   let logDeterminant = Math.log(left);
   for (let k = 1; k < n && left > 0; ++k) {
-    let sum = 0;
-    for (let i = 0; i < k; ++i) sum += x[i] * column[k - i];
-    const reflection = -sum / left;
-    before.set(x.subarray(0, k));
-    for (let i = 1; i < k; ++i) x[i] = before[i] + reflection * before[k - i];
-    x[k] = reflection;
+    let sum0 = 0;
+    let sum1 = 0;
+    let sum2 = 0;
+    let sum3 = 0;
+    let i = 0;
+    for (; i + 3 < k; i += 4) {
+      sum0 += x[i] * column[k - i];
+      sum1 += x[i + 1] * column[k - i - 1];
+      sum2 += x[i + 2] * column[k - i - 2];
+      sum3 += x[i + 3] * column[k - i - 3];
+    }
+    for (; i < k; ++i) sum0 += x[i] * column[k - i];
+    const reflection = -(sum0 + sum1 + (sum2 + sum3)) / left;
+    x[k] = 0;
+    for (let low = 0, high = k; low <= high; ++low, --high) {
+      const fromLow = x[low];
+      const fromHigh = x[high];
+      x[low] = fromLow + reflection * fromHigh;
+      x[high] = fromHigh + reflection * fromLow;
+    }
     left *= 1 - reflection * reflection;
     logDeterminant += Math.log(left);
   }

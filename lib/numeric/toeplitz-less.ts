@@ -6,8 +6,10 @@
  * V by pivoted Cholesky on columns made when they are asked for.
  * Source: Harbrecht, Peters & Schneider, Appl. Numer. Math. 62 (2012) 428; the identity is Woodbury's (from memory).
  */
+import {block} from "./block.ts";
 import {choleskyInPlace, choleskySolveInto} from "./cholesky.ts";
-import {type ToeplitzInverse, toeplitzInverse} from "./toeplitz-inverse.ts";
+import {addProductTransposed} from "./tile-product.ts";
+import {type ToeplitzInverse, type Transforms, toeplitzInverse, usefulDiagonals} from "./toeplitz-inverse.ts";
 
 /** V, one array a column, and the largest entry left on the diagonal before each. */
 export interface LowRank {
@@ -62,34 +64,38 @@ export function lowRank(
 export interface ShiftedInverse {
   /** (T + α − VVᵀ)⁻¹ of each right-hand side, nearly: V is cut short. */
   solve(rights: readonly Float64Array[]): Float64Array[];
-  /** The same by products that are not corrected. */
+  /** The same by products that are not corrected, which leaves some ε λ₁/α of the solution. */
   rough(rights: readonly Float64Array[]): Float64Array[];
   /** Of the inverse. */
   readonly trace: number;
   /** ln det(T + α − VVᵀ). */
   readonly logDeterminant: number;
+  /** Bytes that it holds. */
+  readonly held: number;
 }
 
 /**
  * @param diagonals first column of T and as many further entries as `toeplitzInverse` can use
  * @throws {NumericalError} `numeric/not-positive-definite` where rounding leaves nothing of 1 − VᵀZ
  */
-export function shiftedInverse(diagonals: Float64Array, less: LowRank, alpha: number, n: number): ShiftedInverse {
+export function shiftedInverse(
+  diagonals: Float64Array,
+  less: LowRank,
+  alpha: number,
+  n: number,
+  transforms?: Transforms,
+): ShiftedInverse {
   let rank = 0;
   while (rank < less.columns.length && less.left[rank]! > LEFT_OF_SHIFT * alpha) ++rank;
   const outside = less.columns.slice(0, rank);
   const raised = Float64Array.from(diagonals);
   raised[0] += alpha;
-  const endless = toeplitzInverse(raised, n);
-  const z = inPairs(endless.solvePairInto, n, outside);
-  const capacity = new Float64Array(rank * rank);
-  const sums = new Float64Array(rank * rank);
-  for (let i = 0; i < rank; ++i)
-    for (let j = 0; j <= i; ++j) {
-      capacity[i * rank + j] = (i === j ? 1 : 0) - dot(outside[i]!, z[j]!);
-      sums[i * rank + j] = dot(z[i]!, z[j]!);
-      sums[j * rank + i] = sums[i * rank + j];
-    }
+  const endless = toeplitzInverse(raised, n, transforms);
+  const z = inPairs(endless.roughPairInto, n, outside);
+  const capacity = productsOf(outside, z, n);
+  for (let k = 0; k < rank * rank; ++k) capacity[k] = -capacity[k];
+  for (let i = 0; i < rank; ++i) ++capacity[i * rank + i];
+  const sums = productsOf(z, z, n);
   choleskyInPlace(capacity, rank);
   const one = new Float64Array(rank);
   let trace = endless.diagonal(0).reduce((sum, value) => sum + value, 0);
@@ -107,11 +113,7 @@ export function shiftedInverse(diagonals: Float64Array, less: LowRank, alpha: nu
         Float64Array.from(z, (column) => dot(column, right)),
         rank,
       );
-      const solution = solutions[k]!;
-      z.forEach((column, j) => {
-        const share = shares[j]!;
-        for (let i = 0; i < n; ++i) solution[i] += share * column[i];
-      });
+      addCombination(solutions[k]!, z, shares);
     });
     return solutions;
   };
@@ -120,6 +122,8 @@ export function shiftedInverse(diagonals: Float64Array, less: LowRank, alpha: nu
     logDeterminant,
     solve: (rights) => withOutside(inPairs(endless.solvePairInto, n, rights), rights),
     rough: (rights) => withOutside(inPairs(endless.roughPairInto, n, rights), rights),
+    // Of the transforms two spectra, twice as long as the next power of two.
+    held: 8 * (rank * (n + rank) + n + 8 * usefulDiagonals(n)),
   };
 }
 
@@ -132,8 +136,65 @@ function inPairs(solve: ToeplitzInverse["solvePairInto"], n: number, rights: rea
   return solutions;
 }
 
+/** Entries of columns worked on at a time. */
+const STRETCH = 1024;
+
+/** AᵀB of as many columns each: the columns are laid side by side, stretch after stretch. */
+function productsOf(a: readonly Float64Array[], b: readonly Float64Array[], n: number): Float64Array {
+  const rank = a.length;
+  const sums = new Float64Array(rank * rank);
+  const left = new Float64Array(rank * STRETCH);
+  const right = a === b ? left : new Float64Array(rank * STRETCH);
+  for (let from = 0; from < n; from += STRETCH) {
+    const length = Math.min(STRETCH, n - from);
+    a.forEach((column, k) => {
+      left.set(column.subarray(from, from + length), k * STRETCH);
+    });
+    if (a !== b)
+      b.forEach((column, k) => {
+        right.set(column.subarray(from, from + length), k * STRETCH);
+      });
+    addProductTransposed(
+      block(sums, 0, rank),
+      block(left, 0, STRETCH),
+      block(right, 0, STRETCH),
+      rank,
+      length,
+      rank,
+      1,
+    );
+  }
+  return sums;
+}
+
+/** Adds Σ share_j column_j, four columns at a time. */
+function addCombination(target: Float64Array, columns: readonly Float64Array[], shares: Float64Array): void {
+  const n = target.length;
+  let j = 0;
+  for (; j + 3 < columns.length; j += 4) {
+    const [a, b, c, d] = [columns[j]!, columns[j + 1]!, columns[j + 2]!, columns[j + 3]!];
+    const [p, q, r, s] = [shares[j]!, shares[j + 1]!, shares[j + 2]!, shares[j + 3]!];
+    for (let i = 0; i < n; ++i) target[i] += p * a[i] + q * b[i] + (r * c[i] + s * d[i]);
+  }
+  for (; j < columns.length; ++j) {
+    const [a, p] = [columns[j]!, shares[j]!];
+    for (let i = 0; i < n; ++i) target[i] += p * a[i];
+  }
+}
+
+/** Four sums abreast, for a sum waits for the one before. */
 function dot(a: Float64Array, b: Float64Array): number {
-  let sum = 0;
-  for (let i = 0; i < a.length; ++i) sum += a[i] * b[i];
-  return sum;
+  let sum0 = 0;
+  let sum1 = 0;
+  let sum2 = 0;
+  let sum3 = 0;
+  let i = 0;
+  for (; i + 3 < a.length; i += 4) {
+    sum0 += a[i] * b[i];
+    sum1 += a[i + 1] * b[i + 1];
+    sum2 += a[i + 2] * b[i + 2];
+    sum3 += a[i + 3] * b[i + 3];
+  }
+  for (; i < a.length; ++i) sum0 += a[i] * b[i];
+  return sum0 + sum1 + (sum2 + sum3);
 }

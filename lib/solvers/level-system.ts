@@ -15,17 +15,22 @@
 import {NumericalError} from "../errors.ts";
 import {choleskyInPlace, choleskySolveInto} from "../numeric/cholesky.ts";
 import {largestEigenvalue} from "../numeric/largest-eigenvalue.ts";
-import {usefulDiagonals} from "../numeric/toeplitz-inverse.ts";
-import {type LowRank, lowRank, shiftedInverse} from "../numeric/toeplitz-less.ts";
+import {lazily} from "../numeric/lazily.ts";
+import {transformsFor, usefulDiagonals} from "../numeric/toeplitz-inverse.ts";
+import {type LowRank, lowRank, type ShiftedInverse, shiftedInverse} from "../numeric/toeplitz-less.ts";
 import type {LevelCells} from "../operators/level-cells.ts";
 import {projectOutInPlace, type RegionalBasis} from "../operators/regional.ts";
 
 /** What is left of T − BBᵀ − VVᵀ on the diagonal when V is long enough, over the diagonal of T: rounding of the products. */
 const LEFT_OVER = 4e-15;
-/** Corrections end when they are this share of the source, or shrink no more; then they must be less than the second. */
+/**
+ * Corrections end when the next would be this share of the source, if it shrinks as the last did, or when they shrink no
+ * more; then the next must be less than the third. How the first shrinks is not known yet, and it must be less itself.
+ */
 const ENOUGH = 1e-13;
-const SOLVED = 1e-8;
-const MOST_CORRECTIONS = 6;
+const FIRST_ENOUGH = 1e-9;
+const SOLVED = 1e-9;
+const MOST_CORRECTIONS = 12;
 /** Steps for the largest eigenvalue: a part in a thousand, and it only scales searches. */
 const LANCZOS_STEPS = 24;
 
@@ -44,14 +49,22 @@ export interface LevelSystem {
 }
 
 export interface AtMultiplier {
+  readonly alpha: number;
   /** Source and residual of each vector of readings, refined. */
   refined(vectors: readonly Float64Array[]): Pair[];
   /** The same as it comes: to some ε λ₁/α of it. */
   plain(vectors: readonly Float64Array[]): Pair[];
-  readonly degreesOfFreedom: number;
+  degreesOfFreedom(): number;
   /** ln det(1 + BBᵀ/α) on what is orthogonal to the regional. */
-  readonly logDeterminant: number;
+  logDeterminant(): number;
+  /** The same for a multiplier within `NEAR` of this one, whose inverse serves: corrections are some more. */
+  near(alpha: number): AtMultiplier;
+  /** Bytes that it holds. */
+  readonly held: number;
 }
+
+/** How far, as a share of it, a multiplier may lie from one whose inverse is at hand. */
+export const NEAR = 0.03;
 
 /** @param basis of the regional, in whitened readings */
 export function levelSystem(cells: LevelCells, basis: RegionalBasis): LevelSystem {
@@ -59,25 +72,43 @@ export function levelSystem(cells: LevelCells, basis: RegionalBasis): LevelSyste
   const diagonals = cells.endless(usefulDiagonals(n));
   const missing = whatIsMissing(cells, diagonals);
   const freedom = n - basis.terms;
+  const transforms = transformsFor(n);
+  const inverseAt = (alpha: number): ShiftedInverse => shiftedInverse(diagonals, missing, alpha, n, transforms);
+  /** @param serves the inverse at this multiplier or one near it. @param exact that at this one */
+  const answers = (alpha: number, serves: ShiftedInverse, exact: () => ShiftedInverse): AtMultiplier => {
+    const free = lazily(() => withoutRegional((rights) => refined(cells, alpha, rights, serves.rough), basis, alpha));
+    const plain = lazily(() =>
+      withoutRegional(
+        (rights) =>
+          exact()
+            .rough(rights)
+            .map((c) => pairOf(cells, alpha, c)),
+        basis,
+        alpha,
+      ),
+    );
+    return {
+      alpha,
+      refined: (vectors) => free().apply(vectors),
+      plain: (vectors) => plain().apply(vectors),
+      degreesOfFreedom: () => freedom - alpha * (exact().trace - free().traceTaken),
+      logDeterminant: () => exact().logDeterminant + free().logDeterminant - freedom * Math.log(alpha),
+      near: (own) =>
+        answers(
+          own,
+          serves,
+          lazily(() => inverseAt(own)),
+        ),
+      held: serves.held + 32 * basis.terms * (n + cells.count),
+    };
+  };
   return {
     cells,
     basis,
     largest: largestOf(cells, basis),
     at(alpha) {
-      const inverse = shiftedInverse(diagonals, missing, alpha, n);
-      const refine = (rights: readonly Float64Array[]): Pair[] => refined(cells, alpha, rights, inverse.solve);
-      const free = withoutRegional(refine, basis, alpha);
-      const plain = withoutRegional(
-        (rights) => inverse.rough(rights).map((c) => pairOf(cells, alpha, c)),
-        basis,
-        alpha,
-      );
-      return {
-        refined: free.apply,
-        plain: plain.apply,
-        degreesOfFreedom: freedom - alpha * (inverse.trace - free.traceTaken),
-        logDeterminant: inverse.logDeterminant + free.logDeterminant - freedom * Math.log(alpha),
-      };
+      const inverse = inverseAt(alpha);
+      return answers(alpha, inverse, () => inverse);
     },
   };
 }
@@ -128,40 +159,47 @@ function refined(
   const n = cells.readings;
   const pairs = once(rights).map((c) => pairOf(cells, alpha, c));
   const last = rights.map(() => 1);
-  const stuck = rights.map(() => false);
+  const next = rights.map(() => 1);
+  const done = rights.map(() => false);
   const seen = new Float64Array(n);
   const onCells = new Float64Array(cells.count);
+  const left = rights.map(() => new Float64Array(cells.count));
   for (let pass = 0; pass < MOST_CORRECTIONS; ++pass) {
-    const open = pairs.flatMap((_, k) => (last[k] > ENOUGH && !stuck[k] ? [k] : []));
+    const open = pairs.flatMap((_, k) => (done[k] ? [] : [k]));
     if (open.length === 0) break;
     const missing = open.map((k) => {
       const {source, residual} = pairs[k];
-      const left = cells.adjointInto(new Float64Array(cells.count), residual);
-      for (let j = 0; j < left.length; ++j) left[j] = alpha * source[j] - left[j];
-      const right = cells.applyInto(new Float64Array(n), left);
+      const right = new Float64Array(n);
+      // The first sources are those of the residuals: nothing is left of the second equation.
+      if (pass > 0) {
+        const own = cells.adjointInto(left[k], residual);
+        for (let j = 0; j < own.length; ++j) own[j] = alpha * source[j] - own[j];
+        cells.applyInto(right, own);
+      }
       cells.applyInto(seen, source);
       for (let i = 0; i < n; ++i) right[i] += alpha * (rights[k][i] - residual[i] - seen[i]);
-      return {left, right};
+      return right;
     });
-    const changes = once(missing.map(({right}) => right));
+    const changes = once(missing);
     open.forEach((k, at) => {
       const {source, residual} = pairs[k];
       cells.adjointInto(onCells, changes[at]);
-      const {left} = missing[at];
       let change = 0;
       for (let j = 0; j < source.length; ++j) {
-        const step = (onCells[j] - left[j]) / alpha;
+        const step = (onCells[j] - left[k][j]) / alpha;
         source[j] += step;
         change += step * step;
       }
       for (let i = 0; i < n; ++i) residual[i] += changes[at][i];
       const share = Math.sqrt(change / (dot(source, source) || 1));
-      stuck[k] = !(share < 0.5 * last[k]);
+      next[k] = share * (share / last[k]);
+      done[k] = (!(next[k] > ENOUGH) && (pass > 0 || share < FIRST_ENOUGH)) || !(share < 0.5 * last[k]);
       last[k] = share;
     });
   }
+
   // Written so that NaN fails.
-  if (!last.every((share) => share < SOLVED)) throw tooSmall(alpha);
+  if (!next.every((share) => share < SOLVED)) throw tooSmall(alpha);
   return pairs;
 }
 

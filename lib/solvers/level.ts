@@ -1,8 +1,10 @@
 /** The solver for level lines: the questions of `solver.ts` to the system of `level-system.ts`. */
 import {NumericalError} from "../errors.ts";
+import {lazily} from "../numeric/lazily.ts";
 import type {LevelCells} from "../operators/level-cells.ts";
 import type {Panels} from "../operators/panels.ts";
-import type {AtMultiplier, LevelSystem, Pair} from "./level-system.ts";
+import {asFewMultiplier, isFewMultiplier} from "./few-multipliers.ts";
+import {type AtMultiplier, type LevelSystem, NEAR, type Pair} from "./level-system.ts";
 import type {Solver} from "./solver.ts";
 
 /** The least multiplier tried, over the largest eigenvalue; and the factor to the next, where rounding leaves no solution. */
@@ -21,8 +23,8 @@ interface Figures {
   readonly largestNormSquared: number;
   /** ½ d‖f‖²/dα. */
   slope(): number;
-  readonly degreesOfFreedom: number;
-  readonly logDeterminant: number;
+  degreesOfFreedom(): number;
+  logDeterminant(): number;
 }
 
 /**
@@ -33,15 +35,29 @@ export function levelSolver(system: LevelSystem, data: Float64Array, panels: Pan
   const {cells} = system;
   const n = cells.readings;
   const pairs = new Map<number, Pair>();
+  /** A search ends in small steps, and the last inverse serves them. */
+  let last: AtMultiplier | undefined;
+  const answersAt = (alpha: number): AtMultiplier => {
+    if (last?.alpha === alpha) return last;
+    const few = isFewMultiplier(alpha, system.largest);
+    if (!few && last !== undefined && Math.abs(alpha / last.alpha - 1) < NEAR) return last.near(alpha);
+    last = system.at(alpha);
+    return last;
+  };
   const solveAt = (alpha: number): Figures => {
-    const at = system.at(alpha);
+    const at = answersAt(alpha);
     const [pair] = at.refined([data]);
-    const [again] = at.refined([pair!.residual]);
     pairs.delete(alpha);
     pairs.set(alpha, pair!);
     if (pairs.size > KEPT) pairs.delete(pairs.keys().next().value as number);
-    const slope = slopeOf([pair!], [again!], alpha);
-    return figuresOf([pair!], at, () => slope);
+    return figuresOf([pair!], {
+      // As dear as the rest, and asked for by few; nothing here may hold on to sources and inverses.
+      slope: lazily(() => {
+        const own = pairAt(alpha);
+        return slopeOf([own], answersAt(alpha).refined([own.residual]), alpha);
+      }),
+      traces: at === last ? tracesOf(at) : lazily(() => tracesOf(system.at(alpha))()),
+    });
   };
   const figuresAt = remembered(solveAt);
   const least = leastServed(LEAST * system.largest, system.largest, figuresAt);
@@ -52,7 +68,8 @@ export function levelSolver(system: LevelSystem, data: Float64Array, panels: Pan
   };
   const withNoise = (noise: number): Solver => {
     const shrink = 1 / (noise * noise);
-    const served = (multiplier: number): number => Math.max(multiplier / shrink, least);
+    const served = (multiplier: number): number =>
+      Math.max(asFewMultiplier(multiplier / shrink, system.largest), least);
     return {
       ...answers(system, 1, dot(data, data), least, figuresAt, shrink),
       estimate(multiplier) {
@@ -91,12 +108,7 @@ export function pooledLevelSolver(system: LevelSystem, rows: readonly Float64Arr
   };
   const figuresAt = remembered((alpha) => {
     const {at, pairs} = solvedAt(alpha);
-    // Asked for by few, as dear as the rest, and never to hold on to the sources.
-    let slope: number | undefined;
-    return figuresOf(pairs, at, () => {
-      slope ??= slopeAt(alpha);
-      return slope;
-    });
+    return figuresOf(pairs, {slope: lazily(() => slopeAt(alpha)), traces: tracesOf(at)});
   });
   const least = leastServed(LEAST_POOLED * system.largest, system.largest, figuresAt);
   const energy = rows.reduce((sum, row) => sum + dot(row, row), 0);
@@ -122,7 +134,7 @@ function answers(
   figuresAt: (alpha: number) => Figures,
   shrink: number,
 ): Answers {
-  const served = (multiplier: number): number => Math.max(multiplier / shrink, least);
+  const served = (multiplier: number): number => Math.max(asFewMultiplier(multiplier / shrink, largest), least);
   const at = (multiplier: number): Figures => figuresAt(served(multiplier));
   const norm = (multiplier: number): number => (multiplier === Infinity ? 0 : Math.sqrt(at(multiplier).normSquared));
   const freedom = lines * (cells.readings - basis.terms);
@@ -135,12 +147,12 @@ function answers(
     norm,
     misfit: (multiplier) => (multiplier === Infinity ? energy : at(multiplier).residualEnergy) * shrink,
     normSlope: (multiplier) => at(multiplier).slope() / norm(multiplier) / shrink,
-    degreesOfFreedom: (multiplier) => (multiplier === Infinity ? 0 : at(multiplier).degreesOfFreedom),
+    degreesOfFreedom: (multiplier) => (multiplier === Infinity ? 0 : at(multiplier).degreesOfFreedom()),
     evidence: (multiplier) => {
       const {residualEnergy, normSquared, logDeterminant} = at(multiplier);
       const quadratic = (residualEnergy + served(multiplier) * normSquared) * shrink;
       return {
-        against: Math.log(quadratic / freedom) + logDeterminant / freedom,
+        against: Math.log(quadratic / freedom) + logDeterminant() / freedom,
         noise: Math.sqrt(quadratic / freedom),
       };
     },
@@ -151,10 +163,20 @@ function answers(
 const slopeOf = (pairs: readonly Pair[], again: readonly Pair[], alpha: number): number =>
   pairs.reduce((sum, {source}, k) => sum - dot(source, again[k]!.source), 0) / alpha;
 
+interface Traces {
+  readonly degreesOfFreedom: number;
+  readonly logDeterminant: number;
+}
+
+/** Numbers, found at once: the inverse is let go. */
+function tracesOf(at: AtMultiplier): () => Traces {
+  const found = {degreesOfFreedom: at.degreesOfFreedom(), logDeterminant: at.logDeterminant()};
+  return () => found;
+}
+
 function figuresOf(
   pairs: readonly Pair[],
-  {degreesOfFreedom, logDeterminant}: Pick<AtMultiplier, "degreesOfFreedom" | "logDeterminant">,
-  slope: () => number,
+  {slope, traces}: {readonly slope: () => number; readonly traces: () => Traces},
 ): Figures {
   const lines = pairs.length;
   const norms = pairs.map(({source}) => dot(source, source));
@@ -163,8 +185,8 @@ function figuresOf(
     normSquared: norms.reduce((sum, own) => sum + own, 0),
     largestNormSquared: norms.reduce((most, own) => Math.max(most, own), 0),
     slope,
-    degreesOfFreedom: lines * degreesOfFreedom,
-    logDeterminant: lines * logDeterminant,
+    degreesOfFreedom: () => lines * traces().degreesOfFreedom,
+    logDeterminant: () => lines * traces().logDeterminant,
   };
 }
 
