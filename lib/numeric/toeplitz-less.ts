@@ -40,10 +40,11 @@ export function lowRank(
     for (let i = 1; i < n; ++i) if (rest[i] > rest[pivot]) pivot = i;
     if (!(rest[pivot] > leave)) break;
     const column = columnInto(new Float64Array(n), pivot);
-    for (const earlier of columns) {
-      const share = earlier[pivot];
-      for (let i = 0; i < n; ++i) column[i] -= share * earlier[i];
-    }
+    addCombination(
+      column,
+      columns,
+      Float64Array.from(columns, (earlier) => -earlier[pivot]),
+    );
     if (!(column[pivot] > leave)) {
       // The column is rounded more than the diagonal was: nothing more to be had there.
       rest[pivot] = 0;

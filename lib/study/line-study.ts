@@ -40,6 +40,7 @@ import {intervalsOn, type Operated, operated} from "./operated.ts";
 import type {LineStudy} from "./outcome.ts";
 import {remarksOfRegional} from "./regional-remark.ts";
 import type {Settings} from "./settings.ts";
+import type {SharedGeometry} from "./shared-geometry.ts";
 import {doubtsOfSpacing} from "./spacing-doubt.ts";
 import {acrossStrike, crossingOf, squareToStrike} from "./strike.ts";
 import {stripsOfLine} from "./strips-of-line.ts";
@@ -48,14 +49,20 @@ import {namingTies, type TieRow, tieRows, tiesHeard, tiesOfLine} from "./ties-of
 import {type LineZones, zonesFor} from "./zones.ts";
 
 /**
+ * @param shared what lines of one geometry share, as `sharedGeometry` makes it; speed alone depends on it
  * @throws {ReportableError} when the line cannot be answered: its heights, noise, support or bound are at fault, or no
  *   source explains it
  */
-export function studyLine(line: SurveyLine, settings: Settings, zones = zonesFor(settings)(line)): LineStudy {
+export function studyLine(
+  line: SurveyLine,
+  settings: Settings,
+  zones = zonesFor(settings)(line),
+  shared?: SharedGeometry,
+): LineStudy {
   const crossing = crossingOf(line, settings);
   const direction = effectiveDirectionOf(line, settings, crossing?.azimuth);
-  if (crossing === undefined) return studySquare(line, settings, zones, direction);
-  return acrossStrike(line, settings, zones, crossing, (...scaled) => studySquare(...scaled, direction));
+  if (crossing === undefined) return studySquare(line, settings, zones, direction, shared);
+  return acrossStrike(line, settings, zones, crossing, (...scaled) => studySquare(...scaled, direction, shared));
 }
 
 /** The source of a line without any answer, on chainage times `scale`: square to the strike, where one was given. */
@@ -93,6 +100,7 @@ function sourceSquare(
   settings: Settings,
   zones: LineZones,
   direction: EffectiveDirection | undefined,
+  shared?: SharedGeometry,
 ) {
   const {model, wanted} = settings;
   const first = condition(line, model.boundary, direction);
@@ -110,6 +118,7 @@ function sourceSquare(
     model.regional,
     rows,
     settings.bound.modes,
+    shared,
   );
   const signs = gradientSignNotices(conditioned, panels, model.regional);
   const apart = signs[0] ?? disagreement(first, panels, model.regional, asGiven);
@@ -151,9 +160,10 @@ function studySquare(
   settings: Settings,
   zones: LineZones,
   direction: EffectiveDirection | undefined,
+  shared?: SharedGeometry,
 ): LineStudy {
   const {model, wanted} = settings;
-  const source = sourceSquare(line, settings, zones, direction);
+  const source = sourceSquare(line, settings, zones, direction, shared);
   const {first, support, panels, ties, rows, conditioned, readings, strips, curve, asked, choice, feasible, estimate} =
     source;
   const {continuum, intervals} = intervalsOn(
@@ -251,8 +261,9 @@ function settled(
   degree: number,
   ties: readonly TieRow[] = [],
   modes = false,
+  shared?: SharedGeometry,
 ): Settled {
-  const asGiven = operated(first, panels, degree, ties, modes);
+  const asGiven = operated(first, panels, degree, ties, modes, shared);
   const {solver} = asGiven;
   const apparent = first.channels.every(({noiseFrom}) => noiseFrom === "record") ? apparentNoise(solver) : undefined;
   if (apparent === undefined || !(apparent.ratio > chanceRatio(solver.data)))

@@ -6,21 +6,21 @@ import {type LineIntervals, solverByKind} from "../inverse/solver-by-kind.ts";
 import {type Continuum, continuumOf} from "../operators/continuum.ts";
 import {type ForwardOperator, forwardOperator} from "../operators/forward.ts";
 import {withKnownMeans} from "../operators/known-means.ts";
-import {levelCells} from "../operators/level-cells.ts";
 import {multipoleOperator} from "../operators/multipole.ts";
 import {boundaryOfPanels, type Panels} from "../operators/panels.ts";
 import {pick, type Readings} from "../operators/readings.ts";
 import {type PointReading, readingsOfLine, readingsWithPoints, valuesOfLine} from "../operators/readings-of-line.ts";
-import {type RegionalBasis, regionalBasis} from "../operators/regional.ts";
+import {projectOutInPlace, type RegionalBasis, regionalBasis} from "../operators/regional.ts";
 import {whiten, whitenData} from "../operators/whitened.ts";
 import {constrain} from "../solvers/constraint.ts";
 import {iterativeSolver} from "../solvers/iterative.ts";
 import {levelSolver} from "../solvers/level.ts";
-import {levelSystem} from "../solvers/level-system.ts";
+import {systemOf} from "../solvers/level-systems.ts";
 import type {Solver} from "../solvers/solver.ts";
 import {spectralSolver} from "../solvers/spectral.ts";
 import {byChainage} from "../survey/by-chainage.ts";
 import type {ConditionedLine} from "../survey/conditioned.ts";
+import type {SharedGeometry} from "./shared-geometry.ts";
 import type {TieRow} from "./ties-of-line.ts";
 
 export interface Operated {
@@ -48,6 +48,7 @@ const LONG_STATIONS = 4000;
  * @param degree of the regional, −1 for none; ties have none
  * @param ties what each asks of the panels
  * @param modes whether the rule for the bound weighs them one by one
+ * @param shared with lines of the same geometry; none: it is worked out for this line alone
  */
 export function operated(
   conditioned: ConditionedLine,
@@ -55,11 +56,12 @@ export function operated(
   degree: number,
   ties: readonly TieRow[] = [],
   modes = false,
+  shared?: SharedGeometry,
 ): Operated {
   const without =
     modes || ties.length > 0
       ? undefined
-      : (levelOperated(conditioned, panels, degree) ?? longOperated(conditioned, panels, degree));
+      : (levelOperated(conditioned, panels, degree, shared) ?? longOperated(conditioned, panels, degree));
   if (without !== undefined) return without;
   const soft = ties.filter(({exact}) => !exact);
   const exact = ties.filter((tie) => tie.exact);
@@ -89,22 +91,26 @@ export function operated(
 }
 
 /** A long line, level and even, of one channel with white noise; undefined for any other. */
-function levelOperated(conditioned: ConditionedLine, panels: Panels, degree: number): Operated | undefined {
+function levelOperated(
+  conditioned: ConditionedLine,
+  panels: Panels,
+  degree: number,
+  shared: SharedGeometry | undefined,
+): Operated | undefined {
   if (conditioned.channels.length > 1 || conditioned.line.stations.count < LEVEL_STATIONS) return undefined;
   const readings = readingsOfLine(conditioned);
   // Flown backwards, it is the same line.
   const order = Int32Array.from(byChainage(readings.x));
   const sorted = pick(readings, order);
-  const cells = levelCells(sorted, panels);
-  if (cells === undefined) return undefined;
+  const system = shared === undefined ? systemOf(sorted, panels, degree) : shared.systems.of(sorted, panels, degree);
+  if (system === undefined) return undefined;
   const values = valuesOfLine(conditioned);
-  const basis = regionalBasis(sorted, degree);
-  const data = whitenData(
+  // The system knows no noise, so that lines of one geometry share it.
+  const data = projectOutInPlace(
     Float64Array.from(order, (i) => values[i]!),
-    sorted,
-    basis,
+    system.basis,
   );
-  const solver = levelSolver(levelSystem(cells, basis), data, panels);
+  const solver = levelSolver(system, data, panels).withNoise(readings.noise[0]!);
   if (readings.count <= MODES_SERVE && solver.misfit(solver.least) > misfitTarget(readings.count)) return undefined;
   return {
     readings,

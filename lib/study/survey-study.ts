@@ -5,6 +5,7 @@ import type {LineRecord, Survey} from "../survey/survey.ts";
 import {studyLine} from "./line-study.ts";
 import type {LineOutcome} from "./outcome.ts";
 import type {ChainageZone, Settings} from "./settings.ts";
+import {sharedGeometry} from "./shared-geometry.ts";
 import {allSkipped, statusWithout} from "./skipped.ts";
 import {zonesFor} from "./zones.ts";
 
@@ -17,6 +18,7 @@ export type LineAnswer = (record: LineRecord, index: number) => LineOutcome | Pr
  */
 export function lineAnswers(settings: Settings): (record: LineRecord) => LineOutcome {
   const zonesOf = zonesFor(settings);
+  const shared = sharedGeometry();
   const without = (id: string, failure: ReportableError): LineOutcome => ({
     status: statusWithout(failure),
     id,
@@ -27,7 +29,7 @@ export function lineAnswers(settings: Settings): (record: LineRecord) => LineOut
     const {id} = record.line;
     const zones = zonesOf(record.line);
     try {
-      const study = studyLine(record.line, settings, zones);
+      const study = studyLine(record.line, settings, zones, shared);
       return {status: isDoubtful(study.notices) ? "doubtful" : "done", id, study};
     } catch (error) {
       if (!(error instanceof ReportableError)) throw error;

@@ -1,0 +1,8 @@
+/** What lines of one geometry share, whatever they read. A process makes one, and results do not depend on what is in it. */
+import {type LevelSystems, levelSystems} from "../solvers/level-systems.ts";
+
+export interface SharedGeometry {
+  readonly systems: LevelSystems;
+}
+
+export const sharedGeometry = (): SharedGeometry => ({systems: levelSystems()});
