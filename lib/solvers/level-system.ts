@@ -28,7 +28,7 @@ const LEFT_OVER = 4e-15;
  * more; then the next must be less than the third. How the first shrinks is not known yet, and it must be less itself.
  */
 const ENOUGH = 1e-13;
-const FIRST_ENOUGH = 1e-9;
+const FIRST_ENOUGH = 1e-6;
 const SOLVED = 1e-9;
 const MOST_CORRECTIONS = 12;
 /** Steps for the largest eigenvalue: a part in a thousand, and it only scales searches. */

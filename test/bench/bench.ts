@@ -9,8 +9,11 @@ import {bandCase} from "./band-case.ts";
 import {coverageCase} from "./coverage-case.ts";
 import {crossingsCase} from "./crossings-case.ts";
 import {gridCase} from "./grid-case.ts";
+import {growthCase} from "./growth-case.ts";
 import {hugeGridCase} from "./huge-grid-case.ts";
 import {levelGridCase} from "./level-grid-case.ts";
+import {levelLineCase} from "./level-line-case.ts";
+import {levelLinesCase} from "./level-lines-case.ts";
 import {lineCase} from "./line-case.ts";
 import {BENCH_FOLDER} from "./measured.ts";
 import {machineLines, resultsText, type Told, tableOf} from "./results.ts";
@@ -18,9 +21,12 @@ import {rulesCase} from "./rules-case.ts";
 import {startCase} from "./start-case.ts";
 import {unevenLineCase} from "./uneven-line-case.ts";
 
-const CASES = [lineCase, gridCase, crossingsCase, startCase];
-/** Slower, and of answers rather than speed: run by name alone. */
-const ON_REQUEST = [rulesCase, coverageCase, bandCase, assumedCase, unevenLineCase, levelGridCase, hugeGridCase];
+const CASES = [
+  ...[lineCase, levelLineCase, levelLinesCase, growthCase, gridCase, levelGridCase],
+  ...[crossingsCase, startCase],
+];
+/** Slower, or of answers rather than speed: run by name alone. */
+const ON_REQUEST = [rulesCase, coverageCase, bandCase, assumedCase, unevenLineCase, hugeGridCase];
 const NAMED = [...CASES, ...ON_REQUEST];
 
 const asked = process.argv.slice(2);

@@ -1,0 +1,53 @@
+/** A thousand level lines of one geometry, whole command, against the dense job on a few of them. */
+import {writeFileSync} from "node:fs";
+import {type BenchCase, bytesText, median, spreadText} from "./bench-case.ts";
+import {columnsOf, relativeDifference} from "./columns.ts";
+import {levelJob, levelOptions, levelTable} from "./level-input.ts";
+import {levelBaseline} from "./level-line-case.ts";
+import {measuredProgram} from "./measured.ts";
+
+const STATIONS = 2_000;
+const LINES = 1_000;
+/** Lines that the baseline works out, from the first on. */
+const SAMPLE = 3;
+const TARGET = 0.05;
+/** Readings in the table are rounded to five places, a ten-thousandth of their noise. */
+const ROUNDED = 1e-3;
+
+export const levelLinesCase: BenchCase = {
+  name: "level-lines",
+  title: "A thousand level lines of 2,000 stations and one geometry: whole command",
+  run(folder) {
+    const table = `${folder}/lines.csv`;
+    const out = `${folder}/program`;
+    writeFileSync(table, levelTable(STATIONS, LINES));
+    const program = measuredProgram(["continue", table, ...levelOptions(STATIONS, out)]);
+    const seconds: number[] = [];
+    const apart: number[] = [];
+    const [density] = columnsOf(`${out}/source.csv`, ["source_nT"]);
+    for (let k = 0; k < SAMPLE; ++k) {
+      writeFileSync(`${folder}/job.json`, JSON.stringify(levelJob(STATIONS, k + 1)));
+      const dense = levelBaseline("dense", folder);
+      seconds.push(dense.seconds);
+      apart.push(
+        relativeDifference(density!.subarray(k * STATIONS, (k + 1) * STATIONS), Float64Array.from(dense.density)),
+      );
+    }
+    const most = Math.max(...apart);
+    if (!(most <= ROUNDED)) throw new Error(`The sources of the case level-lines differ by ${most} of the largest.`);
+    const own = program.processor / LINES;
+    const ratio = own / median(seconds);
+    return {
+      figures: [
+        {
+          ...{what: "a line, processor time", program: spreadText([own]), baseline: spreadText(seconds), ratio},
+          ...{target: `≤ ${TARGET}×`, met: ratio <= TARGET},
+        },
+      ],
+      notes: [
+        `The program ran ${LINES} lines in ${program.processor.toFixed(0)} s of processor time on one core (${program.seconds.toFixed(0)} s by the clock) with reading, report and tables; the baseline ran ${SAMPLE} of them without reading, and is taken to need as much for each of the rest.`,
+        `Sources agree to ${most.toExponential(0)} of the largest (allowed ${ROUNDED}). Peak memory of the program ${bytesText(program.peak)}.`,
+      ],
+    };
+  },
+};
