@@ -46,6 +46,19 @@ export function backTransformInPlace(x: Float64Array, rows: number, t: Tridiagon
   return x;
 }
 
+/** The same for a single row, by one reflection after the other. */
+export function backTransformRowInPlace(x: Float64Array, {reflectors, multipliers}: Tridiagonal): Float64Array {
+  const n = multipliers.length;
+  for (let i = 1; i < n; ++i) {
+    const row = i * n;
+    let dot = 0;
+    for (let c = 0; c < i; ++c) dot += reflectors[row + c] * x[c];
+    dot *= multipliers[i];
+    for (let c = 0; c < i; ++c) x[c] -= dot * reflectors[row + c];
+  }
+  return x;
+}
+
 /** S (transposed: row j holds column j) with H_first … H_last = I − V S Vᵀ. */
 function blockFactorInto(
   s: Float64Array,

@@ -3,7 +3,7 @@
  * caller; an array may be longer than its matrix. Targets never alias operands.
  */
 import {block} from "./block.ts";
-import {addProductTransposed} from "./tile-product.ts";
+import {addLowerProductTransposed, addProductTransposed} from "./tile-product.ts";
 
 /** Rows of Bᵀ formed at a time; a heuristic. */
 const TRANSPOSED_ROWS = 64;
@@ -51,10 +51,7 @@ export function crossProductInto(c: Float64Array, a: Float64Array, m: number, n:
 /** C = A Aᵀ, with A m × n and C m × m, exactly symmetric. */
 export function outerProductInto(c: Float64Array, a: Float64Array, m: number, n: number): Float64Array {
   c.fill(0, 0, m * m);
-  for (let i0 = 0; i0 < m; i0 += TRANSPOSED_ROWS) {
-    const i1 = Math.min(m, i0 + TRANSPOSED_ROWS);
-    addProductTransposed(block(c, i0 * m, m), block(a, i0 * n, n), block(a, 0, n), i1 - i0, n, i1, 1);
-  }
+  addLowerProductTransposed(block(c, 0, m), block(a, 0, n), block(a, 0, n), n, m, 1);
   return mirrorLowerInPlace(c, m);
 }
 

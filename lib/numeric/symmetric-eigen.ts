@@ -49,8 +49,20 @@ export function symmetricEigenvalues(a: Float64Array, n: number): Float64Array {
     .map((value) => value * scale);
 }
 
-/** The tridiagonal form of a / scale, `scale` a power of two that makes the largest entry lie in [1, 2). */
+/** The tridiagonal form of a / scale, `scale` a power of two, so that its norm is about one. */
 function reduce(a: Float64Array, n: number): {reduced: Tridiagonal; scale: number} {
+  const {work, scale} = scaledWork(a, n, n);
+  const reduced = tridiagonaliseInPlace(work, n);
+  return {reduced, scale: scale * rescaleInPlace(reduced.diagonal, reduced.offDiagonal)};
+}
+
+/**
+ * The lower triangle of a / scale in rows of length `stride`, `scale` a power of two that makes the largest entry lie in
+ * [1, 2); as many rows as columns, those beyond n zero.
+ *
+ * @throws {NumericalError} `numeric/not-finite`
+ */
+export function scaledWork(a: Float64Array, n: number, stride: number): {work: Float64Array; scale: number} {
   let largest = 0;
   for (let i = 0; i < n; ++i) {
     for (let j = 0; j <= i; ++j) {
@@ -64,10 +76,29 @@ function reduce(a: Float64Array, n: number): {reduced: Tridiagonal; scale: numbe
       if (size > largest) largest = size;
     }
   }
-  // The exponent is capped so that 1 / scale stays finite for subnormal matrices.
-  const scale = largest > 0 ? 2 ** Math.max(-1022, Math.floor(Math.log2(largest))) : 1;
-  const work = new Float64Array(n * n);
+  const scale = powerOfTwoBelow(largest);
+  const work = new Float64Array(stride * stride);
   const inverse = 1 / scale;
-  for (let i = 0; i < n; ++i) for (let j = 0; j <= i; ++j) work[i * n + j] = a[i * n + j] * inverse;
-  return {reduced: tridiagonaliseInPlace(work, n), scale};
+  for (let i = 0; i < n; ++i) for (let j = 0; j <= i; ++j) work[i * stride + j] = a[i * n + j] * inverse;
+  return {work, scale};
 }
+
+/**
+ * Divides a tridiagonal matrix by a power of two, which is returned, so that its norm is about one: a matrix of order n
+ * with entries of one may have norm n, and what its methods hold for negligible is absolute.
+ */
+export function rescaleInPlace(diagonal: Float64Array, offDiagonal: Float64Array): number {
+  let largest = 0;
+  for (let i = 0; i < diagonal.length; ++i)
+    largest = Math.max(largest, Math.abs(diagonal[i]), Math.abs(offDiagonal[i]));
+  const scale = powerOfTwoBelow(largest);
+  for (let i = 0; i < diagonal.length; ++i) {
+    diagonal[i] /= scale;
+    offDiagonal[i] /= scale;
+  }
+  return scale;
+}
+
+/** The exponent is capped so that 1 / scale stays finite for subnormal numbers. */
+const powerOfTwoBelow = (largest: number): number =>
+  largest > 0 ? 2 ** Math.max(-1022, Math.floor(Math.log2(largest))) : 1;

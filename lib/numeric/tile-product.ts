@@ -15,6 +15,8 @@ const KERNEL = tileKernel();
 /** Sides and terms below which packing costs more than it saves; heuristics. */
 const LEAST_SIDE = 8;
 const LEAST_TERMS = 8;
+/** Order up to which a triangle is worked out as the square that it is half of; a heuristic. */
+const LEAST_HALVED = 64;
 
 /**
  * Adds `scale` · A Bᵀ to C, with A m × k, B n × k and C m × n.
@@ -49,6 +51,27 @@ export function addProductTransposed(
       }
     }
   }
+}
+
+/**
+ * The same where C is symmetric, n × n, and its lower triangle alone is wanted; what is above it may be written to near
+ * the diagonal. In halves, so that large rectangles are packed once.
+ */
+export function addLowerProductTransposed(c: Block, a: Block, b: Block, k: number, n: number, scale: number): void {
+  if (n <= LEAST_HALVED) {
+    addProductTransposed(c, a, b, n, k, n, scale);
+    return;
+  }
+  // Halves of whole tiles.
+  const first = SIDE * Math.ceil(n / (2 * SIDE));
+  const from = (whole: Block, row: number, column: number): Block => ({
+    ...whole,
+    offset: whole.offset + row * whole.stride + column,
+  });
+  const below = from(a, first, 0);
+  addLowerProductTransposed(c, a, b, k, first, scale);
+  addProductTransposed(from(c, first, 0), below, b, n - first, k, first, scale);
+  addLowerProductTransposed(from(c, first, first), below, from(b, first, 0), k, n - first, scale);
 }
 
 /** Four rows side by side, zeros where there are no more rows or terms. */

@@ -16,12 +16,14 @@ const NEGLIGIBLE = 2 ** -54;
 /**
  * Overwrites `d` (n diagonal entries from `start`) with the eigenvalues, in no
  * order, destroys `e` (`e[i]` couples i and i + 1), and multiplies the rows
- * start … start + n − 1 of `z`, on columns of the same range, by the rotations:
- * given the identity there, row k becomes the eigenvector of `d[k]`.
+ * start … start + n − 1 of `z`, on `width` columns, by the rotations: given the
+ * identity there, row k becomes the eigenvector of `d[k]`; given one column of
+ * it, that entry of the eigenvector.
  *
  * The matrix must have norm about one (the caller scales).
  *
  * @param z row-major of row length `stride`, or undefined for values alone
+ * @param from first column; those of the rows by default
  * @throws {NumericalError} `numeric/no-convergence` after 60 sweeps for one value
  */
 export function tridiagonalQlInPlace(
@@ -31,6 +33,8 @@ export function tridiagonalQlInPlace(
   n: number,
   z?: Float64Array,
   stride = 0,
+  from = start,
+  width = n,
 ): void {
   const last = start + n - 1;
   for (let l = start; l <= last; ++l) {
@@ -46,7 +50,7 @@ export function tridiagonalQlInPlace(
           `Eigenvalue ${l - start} of ${n} did not settle in ${MAXIMUM_SWEEPS} QL sweeps; the matrix needs another method.`,
         );
       }
-      qlSweep(d, e, l, m, start, last, z, stride);
+      qlSweep(d, e, l, m, from, from + width, z, stride);
     }
   }
 }
@@ -56,8 +60,8 @@ function qlSweep(
   e: Float64Array,
   l: number,
   m: number,
-  start: number,
-  last: number,
+  from: number,
+  end: number,
   z: Float64Array | undefined,
   stride: number,
 ): void {
@@ -88,7 +92,7 @@ function qlSweep(
     if (z !== undefined) {
       const r0 = i * stride;
       const r1 = r0 + stride;
-      for (let k = start; k <= last; ++k) {
+      for (let k = from; k < end; ++k) {
         const z0 = z[r0 + k];
         const z1 = z[r1 + k];
         z[r1 + k] = s * z0 + c * z1;

@@ -10,12 +10,10 @@
  * (1989) 215–227, the block form; Golub & Van Loan, Matrix Computations, §8.3.
  */
 import {block} from "./block.ts";
-import {addProductTransposed} from "./tile-product.ts";
+import {addLowerProductTransposed} from "./tile-product.ts";
 
 /** Rows in one panel; a heuristic, flat between 16 and 48. */
 const PANEL = 32;
-/** Rows updated at once after a panel; the update does up to half a block too much. */
-const UPDATE_ROWS = 64;
 /** A column whose squares sum below this is left standing: entries under 1e-140 of a matrix of norm one. */
 const NEGLIGIBLE_SQUARE = 1e-280;
 
@@ -192,16 +190,5 @@ function updateRest(
       right[r * depth + width + q] = v;
     }
   }
-  for (let r0 = 0; r0 < bottom; r0 += UPDATE_ROWS) {
-    const r1 = Math.min(bottom, r0 + UPDATE_ROWS);
-    addProductTransposed(
-      block(a, r0 * n, n),
-      block(left, r0 * depth, depth),
-      block(right, 0, depth),
-      r1 - r0,
-      depth,
-      r1,
-      -1,
-    );
-  }
+  addLowerProductTransposed(block(a, 0, n), block(left, 0, depth), block(right, 0, depth), depth, bottom, -1);
 }

@@ -99,20 +99,25 @@ export function projectOutInPlace(vector: Float64Array, basis: RegionalBasis): F
   return vector;
 }
 
-/** Takes the regional out of every column of a count × columns matrix. */
+/** Takes the regional out of every column of a count × columns matrix, all its terms in one pass there and one back. */
 export function projectOutOfColumnsInPlace(matrix: Float64Array, columns: number, basis: RegionalBasis): Float64Array {
-  const dots = new Float64Array(columns);
-  for (let k = 0; k < basis.terms; ++k) {
-    dots.fill(0);
-    for (let i = 0; i < basis.count; ++i) {
-      const r = basis.rows[k * basis.count + i];
-      const row = i * columns;
-      for (let j = 0; j < columns; ++j) dots[j] += r * matrix[row + j];
+  const {terms, count, rows} = basis;
+  if (terms === 0) return matrix;
+  const dots = new Float64Array(terms * columns);
+  for (let i = 0; i < count; ++i) {
+    const row = i * columns;
+    for (let k = 0; k < terms; ++k) {
+      const r = rows[k * count + i];
+      const to = k * columns;
+      for (let j = 0; j < columns; ++j) dots[to + j] += r * matrix[row + j];
     }
-    for (let i = 0; i < basis.count; ++i) {
-      const r = basis.rows[k * basis.count + i];
-      const row = i * columns;
-      for (let j = 0; j < columns; ++j) matrix[row + j] -= r * dots[j];
+  }
+  for (let i = 0; i < count; ++i) {
+    const row = i * columns;
+    for (let k = 0; k < terms; ++k) {
+      const r = rows[k * count + i];
+      const from = k * columns;
+      for (let j = 0; j < columns; ++j) matrix[row + j] -= r * dots[from + j];
     }
   }
   return matrix;

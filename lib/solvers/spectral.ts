@@ -6,7 +6,8 @@
  * Source: Miller, SIAM J. Math. Anal. 1 (1970) 52; Groetsch, The Theory of Tikhonov Regularization (1984) (both from memory).
  */
 import type {WhitenedSystem} from "../operators/whitened.ts";
-import {combineRight, leftOf, modesAndCoefficients, USABLE} from "../spectral/singular-system.ts";
+import {resolved} from "../spectral/resolved.ts";
+import {dataCoefficients, USABLE} from "../spectral/singular-system.ts";
 import type {Constrained} from "./constraint.ts";
 import type {Solver} from "./solver.ts";
 
@@ -15,38 +16,35 @@ import type {Solver} from "./solver.ts";
  * @param tied what `system` was freed of, where values are met exactly
  */
 export function spectralSolver(system: WhitenedSystem, taken: number, tied?: Constrained): Solver {
-  const {modes, coefficients, rest} = modesAndCoefficients(system.matrix, system.rows, system.columns, system.data);
-  const energies = coefficients.map((c) => c * c);
+  const all = resolved(system.matrix, system.rows, system.columns, system.data);
+  const {energies} = all;
   const outside = energyOutside(system.data, energies);
   const {rootWidth} = system;
-  let left: Float64Array | undefined;
   /** The same readings with `noise` times the standard deviation: λ and c² shrink by its square. */
   const withNoise = (noise: number): Solver => {
     const shrink = 1 / (noise * noise);
-    const eigenvalues = modes.eigenvalues.map((lambda) => lambda * shrink);
+    const eigenvalues = all.eigenvalues.map((lambda) => lambda * shrink);
     const shrunk = energies.map((energy) => energy * shrink);
     // Modes below the floor add Bᵀd⊥/α; near the floor itself they would be rounding, and are let go smoothly.
     const floor = 10 * USABLE * (eigenvalues[0] ?? 0);
-    const below = rest.map((value) => value * shrink);
-    const sums = withBelow(modalSums(eigenvalues, shrunk, outside * shrink), below, floor);
+    const sums = withBelow(modalSums(eigenvalues, shrunk, outside * shrink), all.below * shrink * shrink, floor);
     return {
       ...(tied === undefined ? sums : withLeast(sums, tied.leastNorm)),
       data: system.rows,
-      unknowns: modes.columns,
-      modes: modes.count,
+      unknowns: system.columns,
+      modes: all.count,
       evidence: evidenceOf(eigenvalues, shrunk, outside * shrink, system.rows - taken),
       modal: {eigenvalues, energies: shrunk},
       dataSide: () => {
-        left ??= leftOf(modes, system.matrix);
+        const modes = all.modes();
+        const {left} = modes;
+        const coefficients = dataCoefficients(modes, system.data);
         const over = (values: Float64Array): Float64Array => values.map((value) => value / noise);
         return {eigenvalues, left, coefficients: over(coefficients), data: over(system.data), regional: system.basis};
       },
       estimate(multiplier) {
-        const weights = coefficients.map(
-          (c, k) => (Math.sqrt(eigenvalues[k]) * c) / noise / (eigenvalues[k] + multiplier),
-        );
-        const density = combineRight(modes, weights);
-        for (let j = 0; j < below.length; ++j) density[j] += below[j] / (multiplier + floor);
+        // Whitened by more noise, B and d both shrink.
+        const density = all.estimate(multiplier / shrink, floor / shrink);
         for (let j = 0; j < density.length; ++j) density[j] = (density[j] + (tied?.least[j] ?? 0)) / rootWidth[j];
         return density;
       },
@@ -57,8 +55,7 @@ export function spectralSolver(system: WhitenedSystem, taken: number, tied?: Con
 }
 
 /** Norms with what the modes below the floor add. */
-function withBelow(sums: Sums, below: Float64Array, floor: number): Sums {
-  const energy = below.reduce((sum, value) => sum + value * value, 0);
+function withBelow(sums: Sums, energy: number, floor: number): Sums {
   if (!(floor > 0)) return sums;
   const norm = (multiplier: number): number =>
     Math.hypot(sums.norm(multiplier), Math.sqrt(energy) / (multiplier + floor));

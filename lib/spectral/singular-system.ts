@@ -64,7 +64,8 @@ function smallerHalf(matrix: Float64Array, rows: number, columns: number, floor:
   return {count, eigenvalues: values.slice(0, count), vectors: vectors.subarray(0, count * size)};
 }
 
-const overRoots = (vectors: Float64Array, length: number, eigenvalues: Float64Array): Float64Array => {
+/** Divides row k by √λ_k. */
+export const overRoots = (vectors: Float64Array, length: number, eigenvalues: Float64Array): Float64Array => {
   for (let k = 0; k < eigenvalues.length; ++k) {
     const scale = 1 / Math.sqrt(eigenvalues[k]);
     for (let i = 0; i < length; ++i) vectors[k * length + i] *= scale;
@@ -72,14 +73,39 @@ const overRoots = (vectors: Float64Array, length: number, eigenvalues: Float64Ar
   return vectors;
 };
 
-const leftFrom = (half: Half, matrix: Float64Array, rows: number, columns: number): Float64Array =>
-  leftOf({...half, rows, columns, right: half.vectors}, matrix);
-
-const rightFrom = (half: Half, matrix: Float64Array, rows: number, columns: number): Float64Array =>
+/** u_k = B v_k/√λ_k, count × rows. Those of the smallest λ_k are orthogonal to ε √(λ_0/λ_k) only. */
+export const leftOf = (
+  right: Float64Array,
+  eigenvalues: Float64Array,
+  matrix: Float64Array,
+  rows: number,
+  columns: number,
+): Float64Array =>
   overRoots(
-    multiplyInto(new Float64Array(half.count * columns), half.vectors, matrix, half.count, rows, columns),
+    multiplyTransposedInto(
+      new Float64Array(eigenvalues.length * rows),
+      right,
+      matrix,
+      eigenvalues.length,
+      columns,
+      rows,
+    ),
+    rows,
+    eigenvalues,
+  );
+
+/** v_k = Bᵀu_k/√λ_k, count × columns. */
+const rightOf = (
+  left: Float64Array,
+  eigenvalues: Float64Array,
+  matrix: Float64Array,
+  rows: number,
+  columns: number,
+): Float64Array =>
+  overRoots(
+    multiplyInto(new Float64Array(eigenvalues.length * columns), left, matrix, eigenvalues.length, rows, columns),
     columns,
-    half.eigenvalues,
+    eigenvalues,
   );
 
 /**
@@ -94,51 +120,16 @@ export function singularSystem(matrix: Float64Array, rows: number, columns: numb
     columns,
     count: half.count,
     eigenvalues: half.eigenvalues,
-    left: tall ? leftFrom(half, matrix, rows, columns) : half.vectors,
-    right: tall ? half.vectors : rightFrom(half, matrix, rows, columns),
+    left: tall ? leftOf(half.vectors, half.eigenvalues, matrix, rows, columns) : half.vectors,
+    right: tall ? half.vectors : rightOf(half.vectors, half.eigenvalues, matrix, rows, columns),
   };
 }
 
 /** The data side alone, where nothing is asked of the unknowns. Arguments as `singularSystem`. */
 export function dataModes(matrix: Float64Array, rows: number, columns: number, floor = 0): DataModes {
   const half = smallerHalf(matrix, rows, columns, floor);
-  const left = rows >= columns ? leftFrom(half, matrix, rows, columns) : half.vectors;
+  const left = rows >= columns ? leftOf(half.vectors, half.eigenvalues, matrix, rows, columns) : half.vectors;
   return {rows, count: half.count, eigenvalues: half.eigenvalues, left};
-}
-
-/**
- * The modes and one data vector's coefficients c_k = u_kᵀ d; for a tall matrix without ever forming u_k, since
- * c_k = v_kᵀ Bᵀ d / √λ_k.
- *
- * @returns also `rest`, what of Bᵀd lies outside the modes kept
- */
-export function modesAndCoefficients(
-  matrix: Float64Array,
-  rows: number,
-  columns: number,
-  data: Float64Array,
-): {readonly modes: Modes; readonly coefficients: Float64Array; readonly rest: Float64Array} {
-  const half = smallerHalf(matrix, rows, columns, 0);
-  const {count, eigenvalues, vectors} = half;
-  const tall = rows >= columns;
-  const coefficients = new Float64Array(count);
-  const back = transposedMatVecInto(new Float64Array(columns), matrix, data, rows, columns);
-  if (tall) {
-    matVecInto(coefficients, vectors, back, count, columns);
-    for (let k = 0; k < count; ++k) coefficients[k] /= Math.sqrt(eigenvalues[k]);
-  } else matVecInto(coefficients, vectors, data, count, rows);
-  const modes = {rows, columns, count, eigenvalues, right: tall ? vectors : rightFrom(half, matrix, rows, columns)};
-  const seen = combineRight(
-    modes,
-    coefficients.map((c, k) => c * Math.sqrt(eigenvalues[k])),
-  );
-  return {modes, coefficients, rest: back.map((value, j) => value - seen[j])};
-}
-
-/** u_k = B v_k/√λ_k, count × rows. Those of the smallest λ_k are orthogonal to ε √(λ_0/λ_k) only. */
-export function leftOf({rows, columns, count, eigenvalues, right}: Modes, matrix: Float64Array): Float64Array {
-  const left = multiplyTransposedInto(new Float64Array(count * rows), right, matrix, count, columns, rows);
-  return overRoots(left, rows, eigenvalues);
 }
 
 /** u_kᵀ d for every mode. */

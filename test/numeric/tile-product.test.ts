@@ -4,7 +4,7 @@ import {type Block, block} from "../../lib/numeric/block.ts";
 import {addProductPlainly} from "../../lib/numeric/plain-product.ts";
 import {normalDeviates, seededRandom} from "../../lib/numeric/random.ts";
 import {MOST_COLUMNS, MOST_ROWS, MOST_TERMS, SIDE, tileKernel} from "../../lib/numeric/tile-kernel.ts";
-import {addProductTransposed} from "../../lib/numeric/tile-product.ts";
+import {addLowerProductTransposed, addProductTransposed} from "../../lib/numeric/tile-product.ts";
 import {assertClose} from "../harness/assert-close.ts";
 
 interface Operands {
@@ -93,6 +93,20 @@ describe("C += s · A Bᵀ", () => {
     for (const at of outside) expect(found[at]).toBe(c.data[at]);
   });
 });
+
+test.each([5, 64, 65, 200])(
+  "of a symmetric product the lower triangle has the bits of the whole one: order %d",
+  (n) => {
+    const random = seededRandom(5);
+    const a = block(normalDeviates(random, n * 30), 0, 30);
+    const whole = new Float64Array(n * n);
+    const lower = new Float64Array(n * n);
+    addProductTransposed(block(whole, 0, n), a, a, n, 30, n, -2);
+    addLowerProductTransposed(block(lower, 0, n), a, a, 30, n, -2);
+    for (let i = 0; i < n; ++i)
+      expect(lower.subarray(i * n, i * n + i + 1)).toEqual(whole.subarray(i * n, i * n + i + 1));
+  },
+);
 
 test("a tile of the kernel is the product of its packed rows", () => {
   const kernel = tileKernel()!;
