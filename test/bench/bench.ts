@@ -19,10 +19,11 @@ import {BENCH_FOLDER} from "./measured.ts";
 import {machineLines, resultsText, type Told, tableOf} from "./results.ts";
 import {rulesCase} from "./rules-case.ts";
 import {startCase} from "./start-case.ts";
+import {unevenCase} from "./uneven-case.ts";
 import {unevenLineCase} from "./uneven-line-case.ts";
 
 const CASES = [
-  ...[lineCase, levelLineCase, levelLinesCase, growthCase, gridCase, levelGridCase],
+  ...[lineCase, levelLineCase, unevenCase, levelLinesCase, growthCase, gridCase, levelGridCase],
   ...[crossingsCase, startCase],
 ];
 /** Slower, or of answers rather than speed: run by name alone. */
