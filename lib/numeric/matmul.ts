@@ -3,6 +3,7 @@
  * caller; an array may be longer than its matrix. Targets never alias operands.
  */
 import {block} from "./block.ts";
+import {MOST_TERMS} from "./tile-kernel.ts";
 import {addLowerProductTransposed, addProductTransposed} from "./tile-product.ts";
 
 /** Rows of Bᵀ formed at a time; a heuristic. */
@@ -41,11 +42,20 @@ export function multiplyTransposedInto(
   return c;
 }
 
-/** C = AᵀA, with A m × n and C n × n, exactly symmetric. */
+/**
+ * C = AᵀA, with A m × n and C n × n, exactly symmetric. Transposed a block of terms at a time: memory that was never
+ * touched before is slower than the product itself.
+ */
 export function crossProductInto(c: Float64Array, a: Float64Array, m: number, n: number): Float64Array {
-  const t = new Float64Array(m * n);
-  transposeInto(t, 0, m, a, 0, n, m, n);
-  return outerProductInto(c, t, n, m);
+  c.fill(0, 0, n * n);
+  const t = new Float64Array(n * Math.min(m, MOST_TERMS));
+  for (let first = 0; first < m; first += MOST_TERMS) {
+    const terms = Math.min(MOST_TERMS, m - first);
+    transposeInto(t, 0, terms, a, first * n, n, terms, n);
+    const rows = block(t, 0, terms);
+    addLowerProductTransposed(block(c, 0, n), rows, rows, terms, n, 1);
+  }
+  return mirrorLowerInPlace(c, n);
 }
 
 /** C = A Aᵀ, with A m × n and C m × m, exactly symmetric. */

@@ -30,9 +30,9 @@ export interface PivotedFactor {
  * The factor, down to the rounding of G, where its rank is well below the order; undefined elsewhere, as some rows in
  * the middle show, neighbours being those that are alike.
  *
- * @param g n × n row-major, positive semidefinite, not modified
+ * @param g n × n row-major, positive semidefinite; overwritten where it has a factor
  */
-export function lowRankFactor(g: Float64Array, n: number): PivotedFactor | undefined {
+export function lowRankFactorInPlace(g: Float64Array, n: number): PivotedFactor | undefined {
   if (n < LEAST_ORDER) return undefined;
   const first = (n - SAMPLE) >> 1;
   const sample = new Float64Array(SAMPLE * SAMPLE);
@@ -41,7 +41,7 @@ export function lowRankFactor(g: Float64Array, n: number): PivotedFactor | undef
     sample.set(g.subarray(at, at + SAMPLE), i * SAMPLE);
   }
   const tried = pivotedFactorInPlace(sample, SAMPLE, roundingOf(sample, SAMPLE));
-  return tried.rank > LOW_RANK * SAMPLE ? undefined : pivotedFactorInPlace(g.slice(), n, roundingOf(g, n));
+  return tried.rank > LOW_RANK * SAMPLE ? undefined : pivotedFactorInPlace(g, n, roundingOf(g, n));
 }
 
 /** What methods for eigenvalues promise of G, √n ε‖G‖: ‖G‖ is at least Σλ²/Σλ, all λ being positive. */

@@ -12,7 +12,7 @@ import {
   factorTimes,
   factorTimesRows,
   factorTransposedTimes,
-  lowRankFactor,
+  lowRankFactorInPlace,
 } from "../numeric/pivoted-factor.ts";
 import {type StartedTridiagonal, startedTridiagonal} from "../numeric/started-tridiagonal.ts";
 import {type DataModes, leftOf, overRoots, USABLE} from "./singular-system.ts";
@@ -100,7 +100,7 @@ function byModes(
 function standOf(matrix: Float64Array, rows: number, columns: number, data: Float64Array): Stand {
   if (rows > MOST_ROWS * columns) return standOnColumns(matrix, rows, columns, data);
   const gram = outerProductInto(new Float64Array(rows * rows), matrix, rows, columns);
-  const factor = lowRankFactor(gram, rows);
+  const factor = lowRankFactorInPlace(gram, rows);
   const backOf = (over: Float64Array): Float64Array =>
     transposedMatVecInto(new Float64Array(columns), matrix, over, rows, columns);
   if (factor === undefined)

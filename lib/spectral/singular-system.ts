@@ -12,12 +12,11 @@ import {
   multiplyInto,
   multiplyTransposedInto,
   outerProductInto,
-  transposedMatVecInto,
 } from "../numeric/matmul.ts";
 import {symmetricEigen} from "../numeric/symmetric-eigen.ts";
 
 /** Unknown side of the singular system. */
-export interface Modes {
+interface Modes {
   readonly rows: number;
   readonly columns: number;
   /** Modes kept, λ_k > floor. */
@@ -135,7 +134,3 @@ export function dataModes(matrix: Float64Array, rows: number, columns: number, f
 /** u_kᵀ d for every mode. */
 export const dataCoefficients = (system: DataModes, data: Float64Array): Float64Array =>
   matVecInto(new Float64Array(system.count), system.left, data, system.count, system.rows);
-
-/** Σ_k g_k v_k. */
-export const combineRight = (system: Modes, weights: Float64Array): Float64Array =>
-  transposedMatVecInto(new Float64Array(system.columns), system.right, weights, system.count, system.columns);

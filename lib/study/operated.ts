@@ -71,12 +71,7 @@ export function operated(
   );
   const values = Float64Array.of(...valuesOfLine(conditioned), ...soft.map(({value}) => value));
   const measured = forwardOperator(readingsOfLine(conditioned), panels);
-  const matrix = new Float64Array(readings.count * panels.count);
-  matrix.set(measured.matrix);
-  soft.forEach(({row}, k) => {
-    matrix.set(row, (measured.readings + k) * panels.count);
-  });
-  const operator: ForwardOperator = {readings: readings.count, panels, matrix};
+  const operator = soft.length === 0 ? measured : withRows(measured, soft);
   const regional = regionalBasis(readings, degree, conditioned.channels.length);
   const free = whiten(operator, readings, values, regional);
   const tied =
@@ -88,6 +83,16 @@ export function operated(
           exact.map(({value}) => value),
         );
   return {readings, values, regional, operator, solver: spectralSolver(tied?.system ?? free, regional.terms, tied)};
+}
+
+/** The readings of the line, then one more for each tie. */
+function withRows({readings, panels, matrix}: ForwardOperator, ties: readonly TieRow[]): ForwardOperator {
+  const longer = new Float64Array((readings + ties.length) * panels.count);
+  longer.set(matrix);
+  ties.forEach(({row}, k) => {
+    longer.set(row, (readings + k) * panels.count);
+  });
+  return {readings: readings + ties.length, panels, matrix: longer};
 }
 
 /** A long line, level and even, of one channel with white noise; undefined for any other. */

@@ -5,7 +5,7 @@ import {
   factorTimes,
   factorTimesRows,
   factorTransposedTimes,
-  lowRankFactor,
+  lowRankFactorInPlace,
   pivotedFactorInPlace,
 } from "../../lib/numeric/pivoted-factor.ts";
 import {normalDeviates, seededRandom} from "../../lib/numeric/random.ts";
@@ -24,12 +24,10 @@ const N = 400;
 
 describe("G ≈ F Fᵀ", () => {
   const g = smooth(N, 0.1);
-  const factor = lowRankFactor(g, N)!;
+  const factor = lowRankFactorInPlace(g.slice(), N)!;
 
   test("is found where much of G is rounding, and is G to that", () => {
     expect(factor.rank).toBeLessThan(0.8 * N);
-    const before = smooth(N, 0.1);
-    expect(g).toEqual(before);
     const rows = new Float64Array(N * factor.rank);
     for (let k = 0; k < factor.rank; ++k)
       for (let i = 0; i < N; ++i) rows[factor.order[i] * factor.rank + k] = factor.transposed[k * N + i];
@@ -68,9 +66,9 @@ describe("G ≈ F Fᵀ", () => {
   });
 
   test("is not sought where places hardly see each other, nor of a small matrix", () => {
-    expect(lowRankFactor(smooth(N, 3), N)).toBeUndefined();
-    expect(lowRankFactor(smooth(200, 0.1), 200)).toBeUndefined();
-    expect(lowRankFactor(new Float64Array(N * N), N)?.rank).toBe(0);
+    expect(lowRankFactorInPlace(smooth(N, 3), N)).toBeUndefined();
+    expect(lowRankFactorInPlace(smooth(200, 0.1), 200)).toBeUndefined();
+    expect(lowRankFactorInPlace(new Float64Array(N * N), N)?.rank).toBe(0);
   });
 });
 
