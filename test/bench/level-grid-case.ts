@@ -11,13 +11,15 @@ const CONFIDENCE = 0.95;
 /** On all cores, as both run by themselves. */
 const TARGET = 0.5;
 /**
- * Cells and multiplier are the same, its search ends at 1e-3 of it and less: 7e-5 was measured in the values. Half-widths of the
- * program are of the continuum, through windows of the row; the baseline's of cells a sixth of the height wide.
+ * Cells of the baseline are a third of the program's, for what averages away inside a cell is bias that its intervals would
+ * miss: 7 % of their width on the program's own cells. Values then differ by the width of cells, 4e-3 of the largest measured;
+ * on the same cells 6e-8.
  */
-const ALLOWED = {value: 1e-3, multiplier: 1e-2, resolution: 1e-2, norm: 1e-3, misfit: 1e-3};
-const SHORTEST = 0.98;
-const LONGEST = 1.15;
-const LONGEST_MEDIAN = 1.06;
+const ALLOWED = {value: 1e-2, multiplier: 1e-2, resolution: 1e-2, norm: 1e-3, misfit: 3e-3};
+/** The program's intervals look at windows of a row and are a little longer than the best: 0.7 % to 1.4 % measured. */
+const SHORTEST = 0.995;
+const LONGEST = 1.05;
+const LONGEST_MEDIAN = 1.03;
 
 export const levelGridOptions = (out: string): readonly string[] => [
   ...["--observable", "field-vertical", "--clearance", `${CLEARANCE}`, "--noise", "1", "--bound", "discrepancy"],
@@ -40,8 +42,8 @@ export const levelGridCase: BenchCase = {
         settings,
         JSON.stringify({
           ...{clearance: CLEARANCE, noise: 1, confidence: CONFIDENCE, bound},
-          // Cells of half a pixel, as the program's; and the rows that it chose the multiplier by.
-          split: 2,
+          // Cells a sixth of a pixel wide; and the rows that the program chose the multiplier by.
+          split: 6,
           sample: [0, ...Array.from({length: 40}, (_, k) => 24 + 50 * k)],
           threads: threads === "one" ? 1 : "ALL_CPUS",
         }),
