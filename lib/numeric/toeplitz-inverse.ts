@@ -4,9 +4,9 @@
  *   T⁻¹ = (L(x) L(x)ᵀ − L(y) L(y)ᵀ)/x₀,    y = (0, x_{n−1}, …, x₁),   L lower-triangular Toeplitz,
  *
  * so that each solution costs a few Fourier transforms, and each diagonal of the inverse O(n). x comes from the recursion
- * of Levinson and Durbin, O(n²), or for large T from conjugate gradients with the nearest circulant as preconditioner.
- * Sources: Gohberg & Semencul, Mat. Issled. 7 (1972) 201; Golub & Van Loan, Matrix Computations, §4.7; T. Chan, SIAM J.
- * Sci. Stat. Comput. 9 (1988) 766 (all from memory).
+ * of Levinson and Durbin, O(n²), or for large T from conjugate gradients that begin where the recursion ended.
+ * Sources: Gohberg & Semencul, Mat. Issled. 7 (1972) 201; Golub & Van Loan, Matrix Computations, §4.7; Burg, thesis,
+ * Stanford (1975) (all from memory).
  */
 import FFT from "fft.js";
 import {NumericalError} from "../errors.ts";
@@ -35,29 +35,21 @@ export interface ToeplitzInverse {
 const RECURSION_SERVES = 4096;
 /** Conjugate gradients end at a residual of so many ε ‖T‖ ‖x‖: rounding of the products themselves. */
 const ENOUGH = 4 * Number.EPSILON;
-const MOST_STEPS = 1000;
-
-/** How many diagonals of a matrix of order n `toeplitzInverse` can make use of. */
-export function usefulDiagonals(n: number): number {
-  let size = 2;
-  while (size < n) size *= 2;
-  return size;
-}
+const MOST_STEPS = 100;
 
 /**
- * @param diagonals first column of T; further entries, as a larger matrix of the kind would have, up to
- *   `usefulDiagonals(n)`, make the preconditioner a good one where n is no power of two
+ * @param column first column of T
  * @throws {NumericalError} `numeric/not-positive-definite`
  */
-export function toeplitzInverse(diagonals: Float64Array, n: number, transforms = transformsFor(n)): ToeplitzInverse {
-  const column = diagonals.subarray(0, n);
+export function toeplitzInverse(column: Float64Array, transforms = transformsFor(column.length)): ToeplitzInverse {
+  const n = column.length;
   let made: PairMap | undefined;
   const product: PairMap = (...given) => {
     made ??= pairProduct(column, transforms);
     made(...given);
   };
   const recursion = byRecursion(column.subarray(0, RECURSION_SERVES));
-  const first = n <= RECURSION_SERVES ? recursion.first : byGradients(diagonals, n, product);
+  const first = n <= RECURSION_SERVES ? recursion.first : byGradients(column, recursion.first, product, transforms);
   if (!(first[0] > 0))
     throw new NumericalError(
       "numeric/not-positive-definite",
@@ -238,16 +230,31 @@ function byRecursion(column: Float64Array) {
   return {first: x.map((value) => value / left), left, logDeterminant};
 }
 
-/** T⁻¹e₁ by conjugate gradients. */
-function byGradients(diagonals: Float64Array, n: number, product: PairMap): Float64Array {
-  const {smooth, largest} = circulantInverse(diagonals, n);
+/**
+ * T⁻¹e₁ by conjugate gradients. The filter that predicts from the neighbours that the recursion reached, with nothing
+ * beyond, is the first column of the inverse of another Toeplitz matrix, with the same diagonals so far (Burg's maximum
+ * entropy): that inverse is the preconditioner. A handful of steps is all, however small the spectrum gets.
+ */
+function byGradients(
+  column: Float64Array,
+  short: Float64Array,
+  product: PairMap,
+  transforms: Transforms,
+): Float64Array {
+  const n = column.length;
   const solution = new Float64Array(n);
+  solution.set(short);
+  const smooth = pairInverse(solution.slice(), transforms);
   const residual = new Float64Array(n);
-  residual[0] = 1;
   const scratch = new Float64Array(n);
   const nothing = new Float64Array(n);
   const image = new Float64Array(n);
-  const next = smooth(residual, new Float64Array(n));
+  const next = new Float64Array(n);
+  product(image, scratch, solution, nothing);
+  for (let i = 0; i < n; ++i) residual[i] = (i === 0 ? 1 : 0) - image[i];
+  // Not less than the norm.
+  const largest = column.reduce((sum, value) => sum + 2 * Math.abs(value), 0);
+  smooth(next, scratch, residual, nothing);
   const along = Float64Array.from(next);
   let size = dot(residual, next);
   const small = (): boolean =>
@@ -259,43 +266,13 @@ function byGradients(diagonals: Float64Array, n: number, product: PairMap): Floa
       solution[i] += far * along[i];
       residual[i] -= far * image[i];
     }
-    smooth(residual, next);
+    smooth(next, scratch, residual, nothing);
     const grown = dot(residual, next);
     const turn = grown / size;
     size = grown;
     for (let i = 0; i < n; ++i) along[i] = next[i] + turn * along[i];
   }
   return solution;
-}
-
-/**
- * The inverse of the circulant of order 2^p ≥ n that is nearest to the Toeplitz matrix of that order,
- * c_k = ((N − k) t_k + k t_{N−k})/N, and its norm.
- */
-function circulantInverse(diagonals: Float64Array, n: number) {
-  const size = usefulDiagonals(n);
-  const plan = new FFT(size);
-  const buffer = plan.createComplexArray() as number[];
-  const spectrum = plan.createComplexArray() as number[];
-  const at = (k: number): number => (k < diagonals.length ? diagonals[k] : 0);
-  for (let k = 0; k < size; ++k) buffer[2 * k] = ((size - k) * at(k) + k * at(size - k)) / size;
-  plan.transform(spectrum, buffer);
-  const symbol = Array.from({length: size}, (_, k) => spectrum[2 * k]);
-  const largest = symbol.reduce((most, value) => Math.max(most, value), 0);
-  const inverse = symbol.map((value) => 1 / Math.max(value, largest * Number.EPSILON));
-  const smooth = (right: Float64Array, target: Float64Array): Float64Array => {
-    buffer.fill(0);
-    for (let i = 0; i < n; ++i) buffer[2 * i] = right[i];
-    plan.transform(spectrum, buffer);
-    for (let k = 0; k < size; ++k) {
-      spectrum[2 * k] *= inverse[k];
-      spectrum[2 * k + 1] *= inverse[k];
-    }
-    plan.inverseTransform(buffer, spectrum);
-    for (let i = 0; i < n; ++i) target[i] = buffer[2 * i];
-    return target;
-  };
-  return {smooth, largest};
 }
 
 function dot(a: Float64Array, b: Float64Array): number {

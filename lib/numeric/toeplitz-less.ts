@@ -9,7 +9,7 @@
 import {block} from "./block.ts";
 import {choleskyInPlace, choleskySolveInto} from "./cholesky.ts";
 import {addProductTransposed} from "./tile-product.ts";
-import {type ToeplitzInverse, type Transforms, toeplitzInverse, usefulDiagonals} from "./toeplitz-inverse.ts";
+import {type ToeplitzInverse, type Transforms, toeplitzInverse} from "./toeplitz-inverse.ts";
 
 /** V, one array a column, and the largest entry left on the diagonal before each. */
 export interface LowRank {
@@ -76,22 +76,22 @@ export interface ShiftedInverse {
 }
 
 /**
- * @param diagonals first column of T and as many further entries as `toeplitzInverse` can use
+ * @param diagonals first column of T
  * @throws {NumericalError} `numeric/not-positive-definite` where rounding leaves nothing of 1 − VᵀZ
  */
 export function shiftedInverse(
   diagonals: Float64Array,
   less: LowRank,
   alpha: number,
-  n: number,
   transforms?: Transforms,
 ): ShiftedInverse {
+  const n = diagonals.length;
   let rank = 0;
   while (rank < less.columns.length && less.left[rank]! > LEFT_OF_SHIFT * alpha) ++rank;
   const outside = less.columns.slice(0, rank);
   const raised = Float64Array.from(diagonals);
   raised[0] += alpha;
-  const endless = toeplitzInverse(raised, n, transforms);
+  const endless = toeplitzInverse(raised, transforms);
   const z = inPairs(endless.roughPairInto, n, outside);
   const capacity = productsOf(outside, z, n);
   for (let k = 0; k < rank * rank; ++k) capacity[k] = -capacity[k];
@@ -123,8 +123,8 @@ export function shiftedInverse(
     logDeterminant,
     solve: (rights) => withOutside(inPairs(endless.solvePairInto, n, rights), rights),
     rough: (rights) => withOutside(inPairs(endless.roughPairInto, n, rights), rights),
-    // Of the transforms two spectra, twice as long as the next power of two.
-    held: 8 * (rank * (n + rank) + n + 8 * usefulDiagonals(n)),
+    // Of the transforms two complex spectra, up to four times as long.
+    held: 8 * (rank * (n + rank) + n + 16 * n),
   };
 }
 

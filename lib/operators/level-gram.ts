@@ -3,7 +3,6 @@
  * give, V what this one does not hold. Products cost transforms, and nothing of readings × readings is kept.
  */
 import {toeplitzProduct} from "../numeric/fft.ts";
-import {usefulDiagonals} from "../numeric/toeplitz-inverse.ts";
 import {type LowRank, lowRank, type ShiftedInverse, shiftedInverse} from "../numeric/toeplitz-less.ts";
 import {logarithmOver, type Pole, pairOver} from "../potential/pair.ts";
 import type {Continuum} from "./continuum.ts";
@@ -35,10 +34,7 @@ export function levelGram(continuum: Continuum): LevelGram | undefined {
     return {x, z, aRe, aIm, order, logRe, logIm, slopeRe, slopeIm};
   };
   const origin = pole(0);
-  const diagonals = Float64Array.from(
-    {length: usefulDiagonals(n)},
-    (_, d) => scale * pairOver(endless, origin, pole(d * line.spacing)),
-  );
+  const diagonals = Float64Array.from({length: n}, (_, d) => scale * pairOver(endless, origin, pole(d * line.spacing)));
   const missing: LowRank = lowRank(
     Float64Array.from(poles, (own) => diagonals[0] - scale * pairOver(support, own, own)),
     (target, j) => {
@@ -48,8 +44,7 @@ export function levelGram(continuum: Continuum): LevelGram | undefined {
     },
     LEFT_OVER * diagonals[0],
   );
-  const column = diagonals.subarray(0, n);
-  const whole = toeplitzProduct(column, column);
+  const whole = toeplitzProduct(diagonals, diagonals);
   return {
     timesInto(target, vector) {
       const shares = missing.columns.map((v) => {
@@ -64,6 +59,6 @@ export function levelGram(continuum: Continuum): LevelGram | undefined {
       });
       return target;
     },
-    shifted: (a) => shiftedInverse(diagonals, missing, a, n),
+    shifted: (a) => shiftedInverse(diagonals, missing, a),
   };
 }

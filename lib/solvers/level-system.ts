@@ -16,7 +16,7 @@ import {NumericalError} from "../errors.ts";
 import {choleskyInPlace, choleskySolveInto} from "../numeric/cholesky.ts";
 import {largestEigenvalue} from "../numeric/largest-eigenvalue.ts";
 import {lazily} from "../numeric/lazily.ts";
-import {transformsFor, usefulDiagonals} from "../numeric/toeplitz-inverse.ts";
+import {transformsFor} from "../numeric/toeplitz-inverse.ts";
 import {type LowRank, lowRank, type ShiftedInverse, shiftedInverse} from "../numeric/toeplitz-less.ts";
 import type {LevelCells} from "../operators/level-cells.ts";
 import {projectOutInPlace, type RegionalBasis} from "../operators/regional.ts";
@@ -69,11 +69,11 @@ export const NEAR = 0.03;
 /** @param basis of the regional, in whitened readings */
 export function levelSystem(cells: LevelCells, basis: RegionalBasis): LevelSystem {
   const n = cells.readings;
-  const diagonals = cells.endless(usefulDiagonals(n));
+  const diagonals = cells.endless(n);
   const missing = whatIsMissing(cells, diagonals);
   const freedom = n - basis.terms;
   const transforms = transformsFor(n);
-  const inverseAt = (alpha: number): ShiftedInverse => shiftedInverse(diagonals, missing, alpha, n, transforms);
+  const inverseAt = (alpha: number): ShiftedInverse => shiftedInverse(diagonals, missing, alpha, transforms);
   /** @param serves the inverse at this multiplier or one near it. @param exact that at this one */
   const answers = (alpha: number, serves: ShiftedInverse, exact: () => ShiftedInverse): AtMultiplier => {
     const free = lazily(() => withoutRegional((rights) => refined(cells, alpha, rights, serves.rough), basis, alpha));
