@@ -8,13 +8,12 @@ import {type Continuum, nodeMatrix, nodesFor} from "../operators/continuum.ts";
 import type {Functional} from "../operators/functional.ts";
 import {levelLine} from "../operators/level-cells.ts";
 import {basisWithin, projectOutInPlace, projectOutOfColumnsInPlace, type RegionalBasis} from "../operators/regional.ts";
-import type {Block, Patch} from "../solvers/patches.ts";
 import {type DataModes, dataModes} from "../spectral/singular-system.ts";
 import {congruentWindows} from "./congruent.ts";
 import {farStations, type SharedPart} from "./far-stations.ts";
 import {levelWholeLine} from "./level-whole-line.ts";
 import {type RegionalReader, regionalReader} from "./regional-reader.ts";
-import {type WholeLine, wholeLine} from "./whole-line.ts";
+import {type Block, type Patch, type WholeLine, wholeLine} from "./whole-line.ts";
 import {BLOCKS_BEYOND, heightOf, windowLayout} from "./window-layout.ts";
 
 /** Lines with no more stations than this, or no more nodes than the next, are one window. Heuristics, for speed alone. */

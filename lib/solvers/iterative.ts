@@ -26,7 +26,7 @@ const ENOUGH = 1e-13;
 const SOLVED = 1e-8;
 const MOST_STEPS = 240;
 /** A slope only steers searches. */
-const ENOUGH_FOR_SLOPE = 1e-9;
+const ENOUGH_FOR_SLOPE = 1e-8;
 /** The least multiplier tried, over the largest eigenvalue; and the factor to the next, where steps do not get there. */
 const LEAST = 1e-7;
 const LESS_BOLD = 10;

@@ -1,4 +1,5 @@
 /** A conditioned line with its operator and solver: what every later question is put to. */
+import {NumericalError} from "../errors.ts";
 import type {Interval, Support} from "../geometry/interval.ts";
 import type {IntervalKind} from "../inverse/interval-kind.ts";
 import {misfitTarget} from "../inverse/misfit-range.ts";
@@ -38,11 +39,18 @@ export interface Operated {
  * multiplier and trade-off curve included. A matter of speed alone.
  */
 export const LEVEL_STATIONS = 600;
-/** Up to this many stations a level line falls back on its modes where the readings ask for a multiplier too small without. */
+/** Up to this many stations a line falls back on its modes where the readings ask for a multiplier too small without. */
 const MODES_SERVE = 3000;
 
-/** From this many stations on a line of one channel that is not level is solved in steps: modes would take minutes. */
-const LONG_STATIONS = 4000;
+/**
+ * From this many stations on a line that is not level is solved in steps. Modes take twice as long from 1,500 on, with one
+ * channel or two; but they count degrees of freedom exactly, so that a few seconds are left to them.
+ */
+const LONG_STATIONS = 2000;
+/** Above this share of the largest eigenvalue the least multiplier is what steps could not go below, not what readings ask for. */
+const STEPS_STOOD = 2e-7;
+/** Up to this many readings modes can be waited for then: some ten minutes. */
+const MODES_POSSIBLE = 12_000;
 
 /**
  * @param degree of the regional, −1 for none; ties have none
@@ -126,14 +134,20 @@ function levelOperated(
   };
 }
 
-/** A long line of one channel, however uneven; undefined for any other. */
+/** A long line, however uneven and of however many channels; undefined for any other. */
 function longOperated(conditioned: ConditionedLine, panels: Panels, degree: number): Operated | undefined {
-  if (conditioned.channels.length > 1 || conditioned.line.stations.count < LONG_STATIONS) return undefined;
+  const {count} = conditioned.line.stations;
+  if (count < LONG_STATIONS) return undefined;
   const readings = readingsOfLine(conditioned);
   const values = valuesOfLine(conditioned);
   const regional = regionalBasis(readings, degree);
   const operator = multipoleOperator(readings, panels);
   const solver = iterativeSolver(operator, readings, whitenData(values, readings, regional), regional);
+  if (solver.misfit(solver.least) > misfitTarget(readings.count)) {
+    const stood = solver.least > STEPS_STOOD * solver.largest;
+    if (count <= MODES_SERVE || (stood && readings.count <= MODES_POSSIBLE)) return undefined;
+    if (stood) throw tooPrecise(readings.count);
+  }
   const field = (estimate: Solver["estimate"]) => (multiplier: number) =>
     operator.applyInto(new Float64Array(readings.count), estimate(multiplier));
   const told = (own: Solver): Solver => ({
@@ -143,6 +157,12 @@ function longOperated(conditioned: ConditionedLine, panels: Panels, degree: numb
   });
   return {readings, values, regional, operator: undefined, solver: told(solver)};
 }
+
+const tooPrecise = (readings: number): NumericalError =>
+  new NumericalError(
+    "line/too-precise",
+    `The ${readings} readings of this long line are too precise, or too little alike in their channels, to be fitted in steps, and too many to be fitted otherwise. Take one channel, a larger noise, or the line in parts.`,
+  );
 
 /** @param order `order[k]` is the place in the file of the k-th from the left */
 function inOrderOfFile(solver: Solver, order: Int32Array): Solver {

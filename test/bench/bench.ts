@@ -20,14 +20,14 @@ import {machineLines, resultsText, type Told, tableOf} from "./results.ts";
 import {rulesCase} from "./rules-case.ts";
 import {startCase} from "./start-case.ts";
 import {unevenCase} from "./uneven-case.ts";
-import {unevenLineCase} from "./uneven-line-case.ts";
+import {millionCase, unevenLineCase} from "./uneven-line-case.ts";
 
 const CASES = [
   ...[lineCase, levelLineCase, unevenCase, levelLinesCase, growthCase, gridCase, levelGridCase],
   ...[crossingsCase, startCase],
 ];
 /** Slower, or of answers rather than speed: run by name alone. */
-const ON_REQUEST = [rulesCase, coverageCase, bandCase, assumedCase, unevenLineCase, hugeGridCase];
+const ON_REQUEST = [rulesCase, coverageCase, bandCase, assumedCase, unevenLineCase, millionCase, hugeGridCase];
 const NAMED = [...CASES, ...ON_REQUEST];
 
 const asked = process.argv.slice(2);

@@ -22,7 +22,7 @@ const CASES: readonly (readonly [name: string, line: UnevenLine, degree: number,
   ["heights ±10 %, regional 1", {stations: 700, sway: 0.1}, 1, [1e-2, 1e-4, 1e-6]],
   ["heights ±40 %, no regional", {stations: 420, sway: 0.4}, -1, [1e-2, 1e-4, 1e-6]],
   ["a gap, regional 0", {stations: 420, sway: 0.2, gap: true}, 0, [1e-2, 1e-4, 1e-6]],
-  ["two channels", {stations: 600, sway: 0.2, responses: [FIELD, GRADIENT]}, 1, [1e-1, 1e-3, 1e-5]],
+  ["two channels", {stations: 450, sway: 0.2, responses: [FIELD, GRADIENT]}, 1, [1e-1, 1e-3, 1e-5]],
   ["total field", {stations: 420, sway: 0.2, responses: [TOTAL_FIELD]}, 1, [1e-2, 1e-4, 1e-6]],
   ["correlated noise", {stations: 420, sway: 0.2, noiseLength: 12}, 1, [1e-2, 1e-4, 1e-6]],
 ];
@@ -41,8 +41,8 @@ test.each(CASES)("%s: as the modes say", (_, line, degree, shares) => {
     expect(Math.max(...found.map((value, j) => Math.abs(value - estimate[j]!)))).toBeLessThan(1e-8 * scale);
     expect(ratioOff(long.misfit(multiplier), dense.misfit(multiplier))).toBeLessThan(1e-8);
     expect(ratioOff(long.norm(multiplier), dense.norm(multiplier))).toBeLessThan(1e-8);
-    // Solved to 1e-8 itself.
-    expect(ratioOff(long.normSlope(multiplier), dense.normSlope(multiplier))).toBeLessThan(1e-6);
+    // Solved to 1e-8 of its own c, of which f sees the smooth part; it only steers searches.
+    expect(ratioOff(long.normSlope(multiplier), dense.normSlope(multiplier))).toBeLessThan(1e-5);
     // Counted by windows: an approximation, worst beside gaps.
     expect(ratioOff(long.degreesOfFreedom(multiplier), dense.degreesOfFreedom(multiplier))).toBeLessThan(0.01);
     expect(Math.abs(long.evidence!(multiplier).against - dense.evidence!(multiplier).against)).toBeLessThan(0.02);
