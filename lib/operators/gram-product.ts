@@ -1,10 +1,11 @@
 /**
  * G c = ∫ p_i Σ c_j p_j dt over all readings of a line, whitened, by the nodes of the continuum: nothing is left out but
- * what the nodes themselves leave out, and no matrix is formed. What known means and readings that are means add is summed
+ * what the nodes themselves leave out, and on long lines no matrix is formed. What known means and readings that are means add is summed
  * one by one, for they are few.
  */
 import type {Interval} from "../geometry/interval.ts";
-import {type Continuum, firstFrom, type Nodes, nodesFor} from "./continuum.ts";
+import {matVecInto, transposedMatVecInto} from "../numeric/matmul.ts";
+import {type Continuum, firstFrom, type Nodes, nodeMatrix, nodesFor} from "./continuum.ts";
 import {whitenAdjointInto, whitenInto} from "./correlated-noise.ts";
 import {nodeOperator} from "./node-operator.ts";
 import {pick} from "./readings.ts";
@@ -12,9 +13,24 @@ import {pick} from "./readings.ts";
 /** c ↦ G c; a new list. What it needs is made once, when it is first asked for. */
 export type GramProduct = (vector: Float64Array) => Float64Array;
 
-export function gramProduct(continuum: Continuum): GramProduct {
-  const {count, stretches, known} = continuum;
+/** Entries of readings × nodes up to which the matrix itself is kept and quicker, 16 MB. A heuristic. */
+const KEPT = 2e6;
+
+/** @param kept entries of readings × nodes that may be kept */
+export function gramProduct(continuum: Continuum, kept = KEPT): GramProduct {
+  const {count} = continuum;
   const nodes = nodesFor(continuum, 0, count);
+  if (count * nodes.count > kept) return byExpansions(continuum, nodes);
+  const matrix = nodeMatrix(continuum, nodes, 0, count);
+  const onNodes = new Float64Array(nodes.count);
+  return (vector) => {
+    transposedMatVecInto(onNodes, matrix, vector, count, nodes.count);
+    return matVecInto(new Float64Array(count), matrix, onNodes, count, nodes.count);
+  };
+}
+
+function byExpansions(continuum: Continuum, nodes: Nodes): GramProduct {
+  const {count, stretches, known} = continuum;
   const sensors = Int32Array.from(continuum.x.keys()).filter((i) => stretches?.[i] === undefined);
   const operator = nodeOperator(sensors.length < count ? pick(continuum, sensors) : continuum, nodes.at, nodes.y);
   const means = [...(stretches?.entries() ?? [])].flatMap(([i, stretch]) =>

@@ -135,7 +135,7 @@ describe.each([
       column(dense, k).reduce((sum, p, i) => sum + p * weights[i]!, 0),
     );
     const norm = sums.reduce((sum, s) => sum + s * s, 0);
-    const gram = gramProduct(red)(weights);
+    const gram = gramProduct(red, 0)(weights);
     const square = gram.reduce((sum, value, i) => sum + value * weights[i]!, 0);
     absoluteClose(square / norm, 1, 1e-12, "rounding of sums that cancel");
     const size = Math.max(...gram.map(Math.abs));

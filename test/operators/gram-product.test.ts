@@ -59,7 +59,7 @@ test.each(Object.entries(CASES))("%s: as the responses at all nodes", (_, made) 
   const expected = timesGram(vector, matrix);
   // What rounding and expansions may change is a share of |G| |c|, entry by entry.
   const size = timesGram(vector.map(Math.abs), matrix.map(Math.abs));
-  const found = gramProduct(continuum)(vector);
+  const found = gramProduct(continuum, 0)(vector);
   for (let i = 0; i < count; ++i) expect(Math.abs(found[i]! - expected[i]!)).toBeLessThan(2e-13 * size[i]!);
 });
 
@@ -70,7 +70,7 @@ test("the worst bias of an estimate is the same by expansions and by all kernels
   const matrix = nodeMatrix(continuum, nodes, 0, count);
   const mean = meanOver({from: 300, to: 340}, SUPPORT);
   const seen = mean.respondInto(new Float64Array(count), continuum, 0, count);
-  const gram = gramProduct(continuum);
+  const gram = gramProduct(continuum, 0);
   // The weights of a mean by steps of steepest descent: large where neighbours are set off against each other.
   let weights = new Float64Array(count);
   for (let step = 0; step < 200; ++step) {
