@@ -7,7 +7,6 @@
  * so that f itself is needed only where it is asked for.
  */
 import {choleskyInPlace, choleskySolveInto} from "../numeric/cholesky.ts";
-import {usefulDiagonals} from "../numeric/toeplitz-inverse.ts";
 import {shiftedInverse} from "../numeric/toeplitz-less.ts";
 import type {LevelCells} from "../operators/level-cells.ts";
 import type {RegionalBasis} from "../operators/regional.ts";
@@ -29,8 +28,8 @@ export interface ManyRows {
 /** @param basis of the regional, in whitened readings */
 export function manyRows(cells: LevelCells, {terms, count, rows}: RegionalBasis, alpha: number): ManyRows {
   const n = cells.readings;
-  const diagonals = cells.endless(usefulDiagonals(n));
-  const inverse = shiftedInverse(diagonals, whatIsMissing(cells, diagonals), alpha, n);
+  const diagonals = cells.endless(n);
+  const inverse = shiftedInverse(diagonals, whatIsMissing(cells, diagonals), alpha);
   const regional = Array.from({length: terms}, (_, t) => rows.subarray(t * count, (t + 1) * count));
   const solved = inverse.solve(regional);
   const size = new Float64Array(terms * terms);
