@@ -12,20 +12,25 @@ import type {LevelLine} from "../operators/level-cells.ts";
 const APART = 60;
 
 export interface Congruent {
-  /** Windows of one key share their modes; undefined for a window that is like no other. */
-  key(first: number, last: number): string | undefined;
+  /** Windows of one key share the modes of the one that begins at `first`; undefined for a window that is like no other. */
+  like(first: number, last: number): {readonly key: string; readonly first: number} | undefined;
   /** The line over the longer support. */
   readonly extended: Continuum;
 }
 
-export function congruentWindows(continuum: Continuum, {height}: LevelLine): Congruent {
-  const {support, x} = continuum;
+export function congruentWindows(continuum: Continuum, {spacing, height}: LevelLine, floor: number): Congruent {
+  const {support, x, aRe, aIm, order, noise} = continuum;
   const from = support[0]!.from;
   const to = support[support.length - 1]!.to;
+  const name = [x[0], spacing, height, aRe[0], aIm[0], order[0], noise[0], from, to, floor].join();
   return {
-    key(first, last) {
+    like(first, last) {
       const [left, right] = [x[first] - APART * height, x[last - 1] + APART * height];
-      return support.some((part) => part.from <= left && right <= part.to) ? String(last - first) : undefined;
+      const part = support.find((own) => own.from <= left && right <= own.to);
+      if (part === undefined) return undefined;
+      // The leftmost, whichever is asked for first.
+      const leftmost = x.findIndex((at) => at - APART * height >= part.from);
+      return {key: `${name}:${leftmost}-${leftmost + last - first}`, first: leftmost};
     },
     extended: {...continuum, support: [{from: from - (to - from), to: to + (to - from)}], shared: new Map()},
   };

@@ -18,20 +18,19 @@
  * the line, RᵀW = 1, and s and b follow exactly; see `regional-reader.ts`.
  */
 import {matVecInto} from "../numeric/matmul.ts";
-import {foldedNormalQuantile} from "../numeric/normal.ts";
-import {minimise} from "../numeric/roots.ts";
 import type {Continuum} from "../operators/continuum.ts";
 import type {Functional} from "../operators/functional.ts";
 import type {RegionalBasis} from "../operators/regional.ts";
 import type {SharedPart} from "./far-stations.ts";
+import {A_RANGE, halfWidthOf, shortest} from "./half-width.ts";
+import type {IntervalStore} from "./interval-store.ts";
+import {lineReaders} from "./line-readers.ts";
+import {estimatesAlike} from "./number-estimates.ts";
 import type {RegionalReader} from "./regional-reader.ts";
+import {remember} from "./remember.ts";
+import {freed, shortestFree} from "./shortest-free.ts";
 import {addOnModes, type Layout, windowsOf} from "./windows.ts";
 
-/**
- * Search range of a, in units of 1/M². The best a is (δ/M)² with δ between one and a few standard deviations of
- * noise (Donoho 1994); the range is wide of that on both sides.
- */
-const A_RANGE = [0.02, 400] as const;
 /** How well ln a is found: a width feels 1e-5 of the first, and 1e-3 of the second, where each trial is a solution over the whole line. */
 const PRECISION = 5e-3;
 const LONG_STEP = 0.2;
@@ -81,6 +80,8 @@ export interface IntervalTerms {
   /** How many times M will be asked for; default 1. */
   readonly loosest?: number;
   readonly layout?: Layout;
+  /** What was worked out for lines read alike; default: nothing. */
+  readonly store?: IntervalStore | undefined;
 }
 
 /** An estimate found, whose weights are spelt out only where they are asked for. */
@@ -97,10 +98,12 @@ export function intervalSolver(
   continuum: Continuum,
   basis: RegionalBasis,
   data: Float64Array,
-  {bound, confidence, loosest = 1, layout = "by size"}: IntervalTerms,
+  {bound, confidence, loosest = 1, layout = "by size", store}: IntervalTerms,
 ): AffineIntervalSolver {
-  const windows = windowsOf(continuum, basis, data, bound, loosest, layout);
+  const windows = windowsOf(continuum, basis, data, bound, loosest, layout, "line", store);
   const {terms} = windows;
+  const readers =
+    terms === 0 ? undefined : lineReaders(continuum, basis, data, bound, windows.line, windows.even, windows.height);
 
   /** Readings that say nothing worth their noise are left alone: a = ∞. */
   const blind = (functional: Functional, most: number): Found => {
@@ -109,18 +112,14 @@ export function intervalSolver(
     return {deviation: 0, bias, halfWidth: bias, value: () => 0, weights};
   };
 
-  const short = (functional: Functional, most: number): Found => {
+  /** By the modes of a window of its own. */
+  const byModes = (functional: Functional, most: number): Found => {
     const window = windows.for(functional);
     const eta = windows.seenBy(window, functional);
     const lambda = window.modes.eigenvalues;
-    const regional = terms > 0 ? windows.regionalOn(window) : NOTHING;
+    const regional = readers?.regionalOn(window) ?? NOTHING;
     /** Wᵀ Pq, by reader. */
-    const shared = new Map<RegionalReader, SharedPart>();
-    const sharedWith = (reader: RegionalReader): SharedPart => {
-      const found = shared.get(reader) ?? windows.sharedWith(reader, functional);
-      shared.set(reader, found);
-      return found;
-    };
+    const parts = new Map<RegionalReader, SharedPart>();
     const gamma = new Float64Array(terms);
     const taken = new Float64Array(terms);
     const crossed = new Float64Array(terms);
@@ -134,9 +133,10 @@ export function intervalSolver(
         explained += g * g * (lambda[k] + 2 * a);
       }
       let left = functional.normSquared - explained;
-      if (terms > 0) {
-        const {reader, weights, weightsGram} = windows.readerOn(window, windows.readerAt(a));
-        const {near, beyond} = sharedWith(reader);
+      if (readers !== undefined) {
+        const reader = readers.of(readers.place(a));
+        const {weights, weightsGram} = readers.on(window, reader);
+        const {near, beyond} = remember(parts, reader, () => readers.sharedWith(reader, functional));
         gamma.fill(0);
         taken.fill(0);
         crossed.fill(0);
@@ -167,16 +167,52 @@ export function intervalSolver(
     const value = (): number => {
       let sum = 0;
       for (let k = 0; k < eta.length; ++k) sum += (eta[k] / (lambda[k] + a)) * window.data[k];
-      if (terms > 0) for (let t = 0; t < terms; ++t) sum -= gamma[t] * windows.readerAt(a).data[t];
+      const reader = readers?.of(readers.place(a));
+      if (reader !== undefined) for (let t = 0; t < terms; ++t) sum -= gamma[t] * reader.data[t];
       return sum;
     };
     const weights = (): Float64Array => {
       const c = new Float64Array(continuum.count);
       addOnModes(c, window, eta, a);
-      if (terms > 0) freeOfRegionalInPlace(c, basis, windows.readerAt(a));
+      if (readers !== undefined) freeOfRegionalInPlace(c, basis, readers.of(readers.place(a)));
       return c;
     };
     return {deviation, bias, halfWidth, value, weights};
+  };
+
+  const short = (functional: Functional, most: number): Found => {
+    const alike = windows.alike(functional);
+    if (alike === undefined) return byModes(functional, most);
+    const {at, value, weights} = estimatesAlike(windows, alike, basis, terms, data, most, confidence);
+    const {variance, left} = at(0);
+    const plain = {deviation: Math.sqrt(variance), bias: most * Math.sqrt(left)};
+    if (readers === undefined) {
+      const halfWidth = halfWidthOf(plain.deviation, plain.bias, confidence);
+      if (!(halfWidth < most * Math.sqrt(functional.normSquared))) return blind(functional, most);
+      return {...plain, halfWidth, value: () => value(0), weights: () => weights(0)};
+    }
+    /** Wᵀ Pq, by reader. */
+    const parts = new Map<RegionalReader, SharedPart>();
+    const measured = (step: number, place: number): ReturnType<typeof freed> => {
+      const reader = readers.of(place);
+      const part = remember(parts, reader, () => readers.sharedWith(reader, functional));
+      return freed(at(step), reader, part, most);
+    };
+    const best = shortestFree(measured, readers.place(at(0).a), plain, confidence);
+    const {step, place, deviation, bias, halfWidth} = best;
+    if (!(halfWidth < most * Math.sqrt(functional.normSquared))) return blind(functional, most);
+    const reader = readers.of(place);
+    return {
+      deviation,
+      bias,
+      halfWidth,
+      value: () => at(step).gamma.reduce((sum, share, t) => sum - share * reader.data[t], value(step)),
+      weights() {
+        const c = weights(step);
+        freeOfRegionalInPlace(c, basis, reader);
+        return c;
+      },
+    };
   };
 
   /** A mean longer than a window: from the whole line, at its best `a` among a few. */
@@ -186,7 +222,7 @@ export function intervalSolver(
     const at = (logA: number): Found => {
       const a = Math.exp(logA);
       const c = line.solve(a, all);
-      if (terms > 0) freeOfRegionalInPlace(c, basis, windows.readerFor(a));
+      if (readers !== undefined) freeOfRegionalInPlace(c, basis, readers.for(a));
       const gram = line.gram(c);
       let variance = 0;
       let left = functional.normSquared;
@@ -246,12 +282,6 @@ function freeOfRegionalInPlace(c: Float64Array, basis: RegionalBasis, reader: Re
     for (let i = 0; i < c.length; ++i) c[i] -= gamma[t] * reader.weights[t * c.length + i];
 }
 
-/** cv(b/s)·s; all bias where nothing is read. */
-function halfWidthOf(deviation: number, bias: number, confidence: number): number {
-  if (!(deviation > 1e-12 * bias)) return bias;
-  return foldedNormalQuantile(bias / deviation, confidence) * deviation;
-}
-
 /** Halves a range of whole steps around the least of a function with one minimum, asking at two neighbours each time. */
 function leastOfSteps(width: (step: number) => number, low: number, high: number): void {
   let [from, to] = [low, high];
@@ -260,10 +290,4 @@ function leastOfSteps(width: (step: number) => number, low: number, high: number
     if (width(middle) <= width(middle + 1)) to = middle;
     else from = middle + 1;
   }
-}
-
-/** ln a with the shortest interval; the width is flat there, its own error second order in that of ln a. */
-function shortest(width: (logA: number) => number, bound: number, precision: number): number {
-  const unit = -2 * Math.log(bound);
-  return minimise(width, unit + Math.log(A_RANGE[0]), unit + Math.log(A_RANGE[1]), precision).x;
 }

@@ -5,9 +5,9 @@ import type {LevelLine} from "../operators/level-cells.ts";
 
 /** Core and margin of a window in heights; what is lost is measured in the tests of `intervals.ts`. */
 const WINDOW_CORE = 12;
-const WINDOW_MARGIN = 12;
+export const WINDOW_MARGIN = 12;
 /** A window reaches out until it holds this many stations. */
-const LEAST_STATIONS = 48;
+export const LEAST_STATIONS = 48;
 /** Blocks beyond either end of the line; further out windows hold the same stations, the last of it. */
 export const BLOCKS_BEYOND = 2;
 

@@ -2,37 +2,32 @@
  * Windows of stations for functionals: the whole line where it is short, else the stations within a margin around the
  * functional. Sources outside a window still count, through the inner products over the whole support.
  */
-import {matVecInto, multiplyTransposedInto} from "../numeric/matmul.ts";
+import {matVecInto} from "../numeric/matmul.ts";
 import {recent} from "../numeric/recent.ts";
 import {type Continuum, nodeMatrix, nodesFor} from "../operators/continuum.ts";
 import type {Functional} from "../operators/functional.ts";
-import {levelLine} from "../operators/level-cells.ts";
+import {type LevelLine, levelLine} from "../operators/level-cells.ts";
 import {basisWithin, projectOutInPlace, projectOutOfColumnsInPlace, type RegionalBasis} from "../operators/regional.ts";
 import {type DataModes, dataModes} from "../spectral/singular-system.ts";
+import {type Alike, centredWindows} from "./centred-windows.ts";
 import {congruentWindows} from "./congruent.ts";
-import {farStations, type SharedPart} from "./far-stations.ts";
+import {type IntervalStore, intervalStore} from "./interval-store.ts";
 import {levelWholeLine} from "./level-whole-line.ts";
-import {type RegionalReader, regionalReader} from "./regional-reader.ts";
+import {remember} from "./remember.ts";
 import {type Block, type Patch, type WholeLine, wholeLine} from "./whole-line.ts";
 import {BLOCKS_BEYOND, heightOf, windowLayout} from "./window-layout.ts";
 
 /** Lines with no more stations than this, or no more nodes than the next, are one window. Heuristics, for speed alone. */
 const WHOLE_STATIONS = 480;
 const WHOLE_NODES = 640;
-/** Windows, and modes that several of them share, kept at a time: a window takes about a megabyte. */
+/** Windows kept at a time: one takes about a megabyte. */
 const WINDOWS_KEPT = 64;
-const MODES_KEPT = 16;
 /** A support of so many heights has more nodes than one window, and is not asked for them. */
 const SURELY_LONG = 2000;
 /** Windows of levels above the line are this much wider; a level far above would gain from more, at the cost of the cube. */
 const WIDEST_WINDOW = 2;
 /** Modes with λ below this share of 1/M² are counted as bias: a relative change of the half-width below 1e-4. */
 const MODE_FLOOR = 1e-5;
-
-/** Readers of the regional are made for values of a this far apart, as a factor; the nearest one serves. A heuristic. */
-const READER_STEP = 12;
-/** Readers for one `a` alone, kept: those of one search. */
-const READERS_KEPT = 12;
 
 /** One window or many; by size of the line unless a test asks. */
 export type Layout = "by size" | "whole" | "windows";
@@ -47,14 +42,15 @@ export interface Window extends Block {
   readonly projected: RegionalBasis | undefined;
 }
 
-/** A reader of the regional as a window sees it: u_kᵀ W and u_kᵀ G W, modes × terms. */
-interface WindowReader {
-  readonly reader: RegionalReader;
-  readonly weights: Float64Array;
-  readonly weightsGram: Float64Array;
+export interface WindowAlike extends Alike {
+  readonly first: number;
+  readonly last: number;
+  /** η_k = u_kᵀ Pq, and the modes. */
+  seen(): {readonly eta: Float64Array; readonly modes: DataModes};
 }
 
 export interface Windows {
+  readonly store: IntervalStore;
   /** Upper bound on the number of different windows that can ever be asked for. */
   readonly possible: number;
   /** The longest mean that one window can serve, m. */
@@ -64,21 +60,19 @@ export interface Windows {
   /** The whole line, for numbers beyond the reach of windows; not where it is one window. */
   line(): WholeLine;
   for(functional: Functional): Window;
+  /** What numbers that lie alike share; undefined for one that is like no other. */
+  alike(functional: Functional): WindowAlike | undefined;
   /** The functional seen by a window's modes: η_k = u_kᵀ Pq. */
   seenBy(window: Window, functional: Functional): Float64Array;
   /** See `IntervalSolver`. */
   resolvingPower(point: Functional, multiplier: number): number;
   kernelWeights(point: Functional, multiplier: number): Float64Array;
+  /** Spacing and height of a line that is level and even over a flat boundary. */
+  readonly even: LevelLine | undefined;
+  /** The median height of the stations above the boundary, m. */
+  readonly height: number;
   /** Terms of the regional that a window must be freed of: none where they were projected out before. */
   readonly terms: number;
-  /** u_kᵀ R, modes × terms. */
-  regionalOn(window: Window): Float64Array;
-  /** The reader for about this `a`, the same object for all `a` near by; and the one for `a` itself. */
-  readerAt(a: number): RegionalReader;
-  readerFor(a: number): RegionalReader;
-  readerOn(window: Window, reader: RegionalReader): WindowReader;
-  /** Wᵀ Pq. */
-  sharedWith(reader: RegionalReader, functional: Functional): SharedPart;
 }
 
 /**
@@ -94,6 +88,7 @@ export function windowsOf(
   loosest: number,
   layout: Layout,
   regionalOf: RegionalOf = "line",
+  store = intervalStore(),
 ): Windows {
   // A mean over a stretch of the boundary has no height.
   const heights = continuum.z
@@ -109,13 +104,14 @@ export function windowsOf(
         (span < SURELY_LONG * height && nodesFor(continuum, 0, continuum.count).count <= WHOLE_NODES)));
   const even = continuum.boundary === undefined && continuum.known === undefined ? levelLine(continuum) : undefined;
   const {core, blocks, blockAt, stations} = windowLayout(continuum, even);
-  // Shared modes overstate the Gram matrix a little, which is safe for affine estimates alone.
-  const congruent =
-    even === undefined || whole || regionalOf !== "line" ? undefined : congruentWindows(continuum, even);
   const windows = recent<string, Window>(WINDOWS_KEPT);
-  const sharedModes = recent<string, DataModes>(MODES_KEPT);
   const response = new Float64Array(continuum.count);
   const floor = MODE_FLOOR / (loosest * bound) ** 2;
+  // Shared modes overstate the Gram matrix a little, which is safe for affine estimates alone.
+  const centred =
+    even === undefined || whole || regionalOf !== "line" ? undefined : centredWindows(continuum, even, floor, store);
+  const congruent =
+    even === undefined || whole || regionalOf !== "line" ? undefined : congruentWindows(continuum, even, floor);
   const terms = whole || regionalOf === "window" ? 0 : basis.terms;
 
   const modesOn = (first: number, last: number, over: Continuum, projected: RegionalBasis | undefined): DataModes => {
@@ -126,14 +122,30 @@ export function windowsOf(
   };
   const windowOn = (first: number, last: number): Window => {
     const projected = whole ? basis : regionalOf === "window" ? basisWithin(basis, first, last) : undefined;
-    const key = congruent?.key(first, last);
-    const modes =
-      key === undefined
-        ? modesOn(first, last, continuum, projected)
-        : sharedModes(key, () => modesOn(first, last, congruent!.extended, undefined));
     const rows = last - first;
+    const like = congruent?.like(first, last);
+    const modes =
+      like === undefined
+        ? modesOn(first, last, continuum, projected)
+        : store.modes(like.key, () => modesOn(like.first, like.first + rows, congruent!.extended, undefined));
     const seen = matVecInto(new Float64Array(modes.count), modes.left, data.subarray(first, last), modes.count, rows);
     return {first, last, modes, data: seen, projected};
+  };
+  const centredOn = (first: number, last: number): Window => {
+    const modes = centred!.modes(last - first);
+    // Most are asked for once, and for what they share with others alone.
+    return {
+      ...{first, last, modes, projected: undefined},
+      get data() {
+        return matVecInto(
+          new Float64Array(modes.count),
+          modes.left,
+          data.subarray(first, last),
+          modes.count,
+          modes.rows,
+        );
+      },
+    };
   };
   const remembered = (first: number, last: number): Window => windows(`${first}-${last}`, () => windowOn(first, last));
   const around = (from: number, to: number, scale: number): Window =>
@@ -150,27 +162,12 @@ export function windowsOf(
   const lines = new Map<"line", WholeLine>();
   const line = (): WholeLine =>
     remember(lines, "line", () => levelWholeLine(continuum) ?? wholeLine(continuum, cover()));
-  const readers = new Map<number, RegionalReader>();
-  const exactReaders = recent<number, RegionalReader>(READERS_KEPT);
-  const readerFor = (a: number): RegionalReader => exactReaders(a, () => regionalReader(line(), basis, data, a));
-  const far = even === undefined ? undefined : farStations(continuum, even);
-  const blocksOf = new WeakMap<RegionalReader, Float64Array>();
-  const nothing = new Float64Array(terms);
-  const everywhere = new Float64Array(terms > 0 ? continuum.count : 0);
-  let responded: Functional | undefined;
-  const seenReaders = new WeakMap<Window, Map<RegionalReader, WindowReader>>();
-  const onModes = ({first, last, modes}: Window, vectors: Float64Array): Float64Array => {
-    const rows = last - first;
-    const part = new Float64Array(terms * rows);
-    for (let t = 0; t < terms; ++t)
-      part.set(vectors.subarray(t * continuum.count + first, t * continuum.count + last), t * rows);
-    return multiplyTransposedInto(new Float64Array(modes.count * terms), modes.left, part, modes.count, rows, terms);
-  };
-  const regionals = new WeakMap<Window, Float64Array>();
-
+  const scaleOf = ({spread}: Functional): number => (spread > height ? WIDEST_WINDOW * height : height);
   const windowFor = (functional: Functional): Window => {
     if (whole) return remembered(0, continuum.count);
-    const scale = functional.spread > height ? WIDEST_WINDOW * height : height;
+    const scale = scaleOf(functional);
+    const own = centred?.around(functional, scale);
+    if (own !== undefined) return own.isLike ? centredOn(own.first, own.last) : remembered(own.first, own.last);
     const {from, to} = functional;
     // Whole blocks, so that neighbouring functionals share a window.
     if (to - from > core(scale)) return around(from, to, scale);
@@ -190,53 +187,55 @@ export function windowsOf(
     );
   };
 
+  const alike = (functional: Functional): WindowAlike | undefined => {
+    const own = functional.moved === undefined ? undefined : centred?.around(functional, scaleOf(functional));
+    if (own?.isLike !== true) return undefined;
+    const {first, last} = own;
+    const found = centred!.alike(functional, first, last);
+    return (
+      found && {
+        ...found,
+        first,
+        last,
+        seen() {
+          const modes = centred!.modes(last - first);
+          found.functional.respondInto(response, found.stations, 0, modes.rows);
+          return {modes, eta: matVecInto(new Float64Array(modes.count), modes.left, response, modes.count, modes.rows)};
+        },
+      }
+    );
+  };
+  const powerOf = (eta: Float64Array, {eigenvalues}: DataModes, multiplier: number): number =>
+    eta.reduce((power, value, k) => power + (value * value) / (eigenvalues[k] + multiplier), 0);
+
   return {
+    store,
+    alike,
     // A mean reaches over its own block and up to two more; a point is in one block, of either scale.
     possible: whole ? 1 : 3 * (blocks(height) + 2 * BLOCKS_BEYOND) + blocks(WIDEST_WINDOW * height) + 2 * BLOCKS_BEYOND,
     reach: whole ? Infinity : 2 * core(height),
     piece: core(height),
     line,
+    even,
+    height,
     terms,
     for: windowFor,
     seenBy,
     resolvingPower(point, multiplier) {
+      const shared = alike(point);
+      if (shared !== undefined)
+        return store.resolving(`${multiplier} ${shared.key}`, () => {
+          const {eta, modes} = shared.seen();
+          return powerOf(eta, modes, multiplier);
+        });
       const window = windowFor(point);
-      const {eigenvalues} = window.modes;
-      return seenBy(window, point).reduce((power, eta, k) => power + (eta * eta) / (eigenvalues[k] + multiplier), 0);
+      return powerOf(seenBy(window, point), window.modes, multiplier);
     },
     kernelWeights(point, multiplier) {
       const window = windowFor(point);
       const weights = new Float64Array(continuum.count);
       addOnModes(weights, window, seenBy(window, point), multiplier);
       return weights;
-    },
-    regionalOn: (window) => remember(regionals, window, () => onModes(window, basis.rows)),
-    readerAt(a) {
-      const place = Math.round(Math.log(a * bound * bound) / Math.log(READER_STEP));
-      return remember(readers, place, () =>
-        regionalReader(line(), basis, data, READER_STEP ** place / (bound * bound)),
-      );
-    },
-    readerFor,
-    sharedWith(reader, functional) {
-      if (far !== undefined) {
-        const blocks = remember(blocksOf, reader, () => far.blocks(reader.weights, terms));
-        const found = far.shared(reader.weights, blocks, terms, functional);
-        if (found !== undefined) return found;
-      }
-      // All readers of one functional see the same response.
-      if (responded !== functional) functional.respondInto(everywhere, continuum, 0, continuum.count);
-      responded = functional;
-      const near = matVecInto(new Float64Array(terms), reader.weights, everywhere, terms, continuum.count);
-      return {near, beyond: nothing};
-    },
-    readerOn(window, reader) {
-      const seen = remember(seenReaders, window, () => new Map<RegionalReader, WindowReader>());
-      return remember(seen, reader, () => ({
-        reader,
-        weights: onModes(window, reader.weights),
-        weightsGram: onModes(window, reader.gramWeights),
-      }));
     },
   };
 }
@@ -248,18 +247,4 @@ export function addOnModes(c: Float64Array, {modes, first, last}: Window, eta: F
     const row = k * (last - first);
     for (let i = first; i < last; ++i) c[i] += g * modes.left[row + i - first];
   }
-}
-
-interface Kept<Key, Value> {
-  get(key: Key): Value | undefined;
-  set(key: Key, value: Value): unknown;
-}
-
-/** What `kept` holds for `key`, made now if it was not asked for before. */
-function remember<Key, Value>(kept: Kept<Key, Value>, key: Key, make: () => Value): Value {
-  const found = kept.get(key);
-  if (found !== undefined) return found;
-  const made = make();
-  kept.set(key, made);
-  return made;
 }

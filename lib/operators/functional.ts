@@ -22,6 +22,15 @@ export interface Functional {
   cut?(parts: number): readonly {readonly mean: Functional; readonly share: number}[];
   /** ∫|q| over all that there could be of q, where q is nowhere negative: its kernel then fades as that of a point does. */
   readonly mass?: number;
+  /** What it is the mean over, where that lies in one piece within the support of a flat boundary. */
+  readonly over?: Interval;
+  /** The point it is the field at, over a flat boundary, where its kernel is of order 0. */
+  readonly pole?: Pole;
+  /**
+   * Itself with its places counted from `origin` and rounded to `part`, among stations on a support that holds it; the
+   * key tells apart what then differs. Absent for a number that is like no other.
+   */
+  moved?(origin: number, part: number, stations: Continuum): Moved;
   /**
    * Writes ⟨p_i, q⟩, whitened, for the readings `first … last − 1` to the head of `target`; of p_i what is left beside
    * means that are known exactly.
@@ -29,7 +38,15 @@ export interface Functional {
   respondInto(target: Float64Array, continuum: Continuum, first: number, last: number): Float64Array;
 }
 
+interface Moved {
+  readonly key: string;
+  readonly functional: Functional;
+}
+
 type Respond = Functional["respondInto"];
+
+/** `at` from `origin` on, to whole parts. */
+const placed = (at: number, origin: number, part: number): number => Math.round((at - origin) / part) * part;
 
 /** `whole` is about all of f; where means of it are known, what they have in common with q is taken off. */
 const besideKnown =
@@ -82,12 +99,16 @@ export function meanOver(
   const length = totalLength(stretches);
   const inside = parts.reduce((sum, part) => sum + part.to - part.from, 0);
   const pieces = piecesOf(parts, boundary);
+  const [only] = parts;
+  const isWhole =
+    boundary === undefined && parts.length === 1 && only!.from === interval.from && only!.to === interval.to;
   return {
     from: interval.from,
     to: interval.to,
     spread: 0,
     normSquared: inside / (length * length),
     mass: inside / length,
+    ...(isWhole ? {over: interval, moved: movedMean(interval)} : {}),
     cut: (count) =>
       Array.from({length: count}, (_, k) => {
         const at = (place: number): number => interval.from + ((interval.to - interval.from) * place) / count;
@@ -112,6 +133,14 @@ export function meanOver(
   };
 }
 
+const movedMean =
+  ({from, to}: Interval): NonNullable<Functional["moved"]> =>
+  (origin, part, {support}) => {
+    const start = placed(from, origin, part);
+    const long = placed(to - from, 0, part);
+    return {key: `mean ${start} ${long}`, functional: meanOver({from: start, to: start + long}, support)};
+  };
+
 /**
  * What a sensor of the given response would read of f at height z above chainage x. On a flat boundary in closed form;
  * on any other by nodes that lie close under the point too.
@@ -133,6 +162,12 @@ export function fieldAt(x: number, z: number, response: Response, continuum: Con
       spread: above,
       normSquared: pairOver(continuum.support, point, point),
       ...(order === 0 && aRe === 0 ? {mass: Math.PI * Math.abs(aIm)} : {}),
+      ...(order === 0 ? {pole: point} : {}),
+      moved(origin, part, stations) {
+        const at = placed(x, origin, part);
+        const key = `field ${[at, z, aRe, aIm, order].join(" ")}`;
+        return {key, functional: fieldAt(at, z, response, stations)};
+      },
       respondInto: besideKnown((target, readings, first, last) => {
         const {support, poles, noise, stretches} = readings;
         const rawAt = (i: number): number => {
@@ -201,6 +236,14 @@ export const densityAt = (x: number, boundary?: BoundaryLine): Functional => {
     to: x,
     spread: 0,
     normSquared: Infinity,
+    ...(boundary === undefined
+      ? {
+          moved: (origin: number, part: number): Moved => {
+            const at = placed(x, origin, part);
+            return {key: `density ${at}`, functional: densityAt(at)};
+          },
+        }
+      : {}),
     respondInto: besideKnown((target, continuum, first, last) => {
       const {aRe, aIm, order, noise, z, stretches} = continuum;
       const rawAt = (i: number): number => {
