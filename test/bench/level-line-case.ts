@@ -27,7 +27,7 @@ interface Answer extends Omit<LevelRun, "seconds"> {
 const numbers = (values: readonly number[]): Float64Array => Float64Array.from(values);
 
 /** @throws {Error} where the answers differ by more than is stated above: then no time means anything */
-export function levelAgreement(ours: Omit<LevelRun, "seconds">, theirs: Omit<LevelRun, "seconds">): string {
+function levelAgreement(ours: Omit<LevelRun, "seconds">, theirs: Omit<LevelRun, "seconds">): string {
   const apart = relativeDifference(numbers(ours.density), numbers(theirs.density));
   const widths = ours.half.map((half, j) => half / theirs.half[j]!);
   const shifts = ours.average.map((value, j) => Math.abs(value - theirs.average[j]!) / theirs.half[j]!);
