@@ -176,6 +176,7 @@ function studySquare(
       confidence: wanted.confidence,
       loosest: choice.basis === "assumed-bound" ? LOOSEST_FACTOR : 1,
       kind: wanted.intervals,
+      shared,
     },
     tiesHeard(ties, rows, conditioned),
   );

@@ -200,6 +200,7 @@ interface IntervalQuestion {
   readonly loosest?: number;
   /** Default: single. */
   readonly kind?: IntervalKind | undefined;
+  readonly shared?: SharedGeometry | undefined;
 }
 
 /** What is known of a line beside its channels. */
@@ -217,7 +218,7 @@ const NOTHING: Known = {readings: [], means: []};
  */
 export function intervalsOn(
   conditioned: ConditionedLine,
-  {support, panels, degree, bound, confidence, loosest = 1, kind = "single"}: IntervalQuestion,
+  {support, panels, degree, bound, confidence, loosest = 1, kind = "single", shared}: IntervalQuestion,
   known = NOTHING,
 ): {readonly continuum: Continuum; readonly intervals: LineIntervals} {
   const readings = readingsWithPoints(
@@ -236,6 +237,13 @@ export function intervalsOn(
     sorted,
   );
   const met = Float64Array.from(known.means, ({value}) => value);
-  const intervals = solverByKind(kind, continuum, sorted, data, {bound, confidence, loosest}, met);
+  const intervals = solverByKind(
+    kind,
+    continuum,
+    sorted,
+    data,
+    {bound, confidence, loosest, store: shared?.intervals},
+    met,
+  );
   return {continuum, intervals};
 }
