@@ -9,8 +9,11 @@ import type {ConditionedLine} from "../survey/conditioned.ts";
 export function remarksOfLevels(
   settings: readonly LevelSetting[],
   conditioned: ConditionedLine,
-  trust: Trust | undefined,
+  trustOf: () => Trust | undefined,
 ): Notice[] {
+  // Without levels there is nothing to weigh, and the depth to trust takes its time.
+  if (settings.length === 0) return [];
+  const trust = trustOf();
   if (trust === undefined) return [];
   const {level, sensor} = trust;
   const below = settings.filter((setting) => {

@@ -11,6 +11,7 @@ import type {SourceEstimate} from "../inverse/nouns.ts";
 import {plainMeanOf, stripEstimate} from "../inverse/strip-estimate.ts";
 import {tradeoffCurve} from "../inverse/tradeoff.ts";
 import type {Notice} from "../notice.ts";
+import {lazily, withLater} from "../numeric/lazily.ts";
 import type {Panels} from "../operators/panels.ts";
 import type {EffectiveDirection} from "../potential/effective-direction.ts";
 import {BOUNDARY_FIELD} from "../potential/level-quantity.ts";
@@ -116,7 +117,6 @@ function sourceSquare(
   const signs = gradientSignNotices(conditioned, panels, model.regional);
   const apart = signs[0] ?? disagreement(first, panels, model.regional, asGiven);
   const strips = stripsOfLine(line, support, wanted.strips, zones.strips);
-  const curve = tradeoffCurve(solver);
   const asked = {
     solver,
     supportLength: totalLength(support),
@@ -144,7 +144,7 @@ function sourceSquare(
     ),
   );
   const estimate = estimateSource(solver, choice, operator, readings, regional, values);
-  return {first, support, panels, ties, rows, conditioned, readings, strips, curve, asked, choice, feasible, estimate};
+  return {first, support, panels, ties, rows, conditioned, readings, strips, asked, choice, feasible, estimate};
 }
 
 /** The sources run square to the line. */
@@ -157,8 +157,7 @@ function studySquare(
 ): LineStudy {
   const {model, wanted} = settings;
   const source = sourceSquare(line, settings, zones, direction, shared);
-  const {first, support, panels, ties, rows, conditioned, readings, strips, curve, asked, choice, feasible, estimate} =
-    source;
+  const {first, support, panels, ties, rows, conditioned, readings, strips, asked, choice, feasible, estimate} = source;
   const {continuum, intervals} = intervalsOn(
     conditioned,
     {
@@ -194,29 +193,33 @@ function studySquare(
     resolution,
     quantity: wanted.levelQuantity ?? BOUNDARY_FIELD,
   };
-  const trust = depthToTrust(question, wanted.trustFraction ?? DEFAULT_TRUST_FRACTION);
   const averages = averagesOn(intervals, panels, resolution, support);
   const levels = wanted.levels.map((level) => continueField(level, question));
   const estimates = strips.map((strip) => stripEstimate(intervals, panels, estimate.density, strip, support));
-  return {
+  // Not all who study a line read these, and they take as long as the rest.
+  const trust = lazily(() => depthToTrust(question, wanted.trustFraction ?? DEFAULT_TRUST_FRACTION));
+  const atBounds = lazily(() =>
+    choice.basis === "assumed-bound" ? answersAtBounds(question, strips, wanted.levels, choice.bound) : undefined,
+  );
+  if (intervals.tally !== undefined) {
+    // It counts what was asked for, and a notice tells of it.
+    trust();
+    atBounds();
+  }
+  const study = {
     line,
     observable: line.channels[0].observable,
     conditioned,
     panels,
-    curve,
     choice,
     ...(comparison === undefined ? {} : {comparison}),
     estimate,
     resolution,
-    kernels: averagingKernels(intervals, continuum, panels, resolution, choice.multiplier, line.stations.chainage),
     gain,
     noises,
     averages,
     levels,
     strips: estimates,
-    trust,
-    atBounds:
-      choice.basis === "assumed-bound" ? answersAtBounds(question, strips, wanted.levels, choice.bound) : undefined,
     confidence: wanted.confidence,
     intervals: wanted.intervals,
     notices: [
@@ -236,4 +239,11 @@ function studySquare(
       ...remarksOnBand(intervals.tally?.()),
     ],
   };
+  return withLater(study, {
+    curve: () => tradeoffCurve(asked.solver),
+    kernels: () =>
+      averagingKernels(intervals, continuum, panels, resolution, choice.multiplier, line.stations.chainage),
+    trust,
+    atBounds,
+  });
 }

@@ -11,6 +11,7 @@ import {totalLength} from "../geometry/interval.ts";
 import {trackDirection} from "../geometry/track-direction.ts";
 import {partsOf, type RuleAnswer, type Strip} from "../inverse/nouns.ts";
 import type {Notice} from "../notice.ts";
+import {lazily, replacing} from "../numeric/lazily.ts";
 import type {Panels} from "../operators/panels.ts";
 import type {SurveyLine} from "../survey/line.ts";
 import type {LineStudy} from "./outcome.ts";
@@ -141,8 +142,15 @@ export function acrossStrike(
     const strips = figures.strips.map((mean) => ({...mean, strip: own.get(mean.strip)!}));
     return {...told, figures: {...figures, resolution: figures.resolution / scale, strips}};
   };
-  return {
-    ...found,
+  const kernels = lazily(() =>
+    found.kernels.map(({at, width, chainage, value}) => ({
+      at: at / scale,
+      width: width / scale,
+      chainage: back(chainage),
+      value: value.map((height) => height * scale),
+    })),
+  );
+  return replacing<LineStudy>(found, {
     line,
     conditioned: {
       ...conditioned,
@@ -160,12 +168,9 @@ export function acrossStrike(
       local: back(resolution.local),
       worst: {length: resolution.worst.length / scale, at: resolution.worst.at / scale},
     },
-    kernels: found.kernels.map(({at, width, chainage, value}) => ({
-      at: at / scale,
-      width: width / scale,
-      chainage: back(chainage),
-      value: value.map((height) => height * scale),
-    })),
+    get kernels() {
+      return kernels();
+    },
     ...(comparison === undefined ? {} : {comparison: comparison.map(answerBack)}),
     gain: gain === undefined ? undefined : {...gain, without: gain.without / scale},
     noises: noises.map((one) => (one.length === undefined ? one : {...one, length: one.length / scale})),
@@ -177,7 +182,7 @@ export function acrossStrike(
       across: totalLength(partsOf(estimate.strip)),
     })),
     notices: found.notices.map((notice): Notice => explained(notice)),
-  };
+  });
 }
 
 const times = (support: Support, factor: number): Support =>
