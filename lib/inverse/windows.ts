@@ -6,9 +6,10 @@ import {matVecInto} from "../numeric/matmul.ts";
 import {recent} from "../numeric/recent.ts";
 import {type Continuum, nodeMatrix, nodesFor} from "../operators/continuum.ts";
 import type {Functional} from "../operators/functional.ts";
+import {gramMatrix} from "../operators/gram-matrix.ts";
 import {type LevelLine, levelLine} from "../operators/level-cells.ts";
 import {basisWithin, projectOutInPlace, projectOutOfColumnsInPlace, type RegionalBasis} from "../operators/regional.ts";
-import {type DataModes, dataModes} from "../spectral/singular-system.ts";
+import {type DataModes, dataModes, dataModesOfGramInPlace} from "../spectral/singular-system.ts";
 import {type Alike, centredWindows} from "./centred-windows.ts";
 import {congruentWindows} from "./congruent.ts";
 import {type IntervalStore, intervalStore} from "./interval-store.ts";
@@ -28,6 +29,9 @@ const SURELY_LONG = 2000;
 const WIDEST_WINDOW = 2;
 /** Modes with λ below this share of 1/M² are counted as bias: a relative change of the half-width below 1e-4. */
 const MODE_FLOOR = 1e-5;
+
+/** Up to so many stations a window is seen by their inner products, and by nodes where there are more: memory. */
+const MOST_IN_GRAM = 1536;
 
 /** One window or many; by size of the line unless a test asks. */
 export type Layout = "by size" | "whole" | "windows";
@@ -115,6 +119,11 @@ export function windowsOf(
   const terms = whole || regionalOf === "window" ? 0 : basis.terms;
 
   const modesOn = (first: number, last: number, over: Continuum, projected: RegionalBasis | undefined): DataModes => {
+    const gram =
+      over === continuum && projected === undefined && last - first <= MOST_IN_GRAM
+        ? gramMatrix(over, first, last)
+        : undefined;
+    if (gram !== undefined) return dataModesOfGramInPlace(gram, last - first, floor);
     const nodes = nodesFor(over, first, last);
     const matrix = nodeMatrix(over, nodes, first, last);
     if (projected !== undefined) projectOutOfColumnsInPlace(matrix, nodes.count, projected);

@@ -12,9 +12,9 @@ const PANEL = 64;
 const STRIP = 128;
 
 /** Orders below which a factor saves less than finding it costs, and the share of the order that its rank must stay below; heuristics. */
-const LEAST_ORDER = 384;
+const LEAST_ORDER = 160;
 const LOW_RANK = 0.8;
-/** Neighbouring rows that are tried first. */
+/** Neighbouring rows that are tried first, at most half of all. */
 const SAMPLE = 128;
 const EPSILON = 2 ** -52;
 
@@ -31,17 +31,20 @@ export interface PivotedFactor {
  * the middle show, neighbours being those that are alike.
  *
  * @param g n × n row-major, positive semidefinite; overwritten where it has a factor
+ * @param negligible what the trace of G may lose beside its rounding
  */
-export function lowRankFactorInPlace(g: Float64Array, n: number): PivotedFactor | undefined {
+export function lowRankFactorInPlace(g: Float64Array, n: number, negligible = 0): PivotedFactor | undefined {
   if (n < LEAST_ORDER) return undefined;
-  const first = (n - SAMPLE) >> 1;
-  const sample = new Float64Array(SAMPLE * SAMPLE);
-  for (let i = 0; i < SAMPLE; ++i) {
+  const some = Math.min(SAMPLE, n >> 1);
+  const first = (n - some) >> 1;
+  const sample = new Float64Array(some * some);
+  for (let i = 0; i < some; ++i) {
     const at = (first + i) * n + first;
-    sample.set(g.subarray(at, at + SAMPLE), i * SAMPLE);
+    sample.set(g.subarray(at, at + some), i * some);
   }
-  const tried = pivotedFactorInPlace(sample, SAMPLE, roundingOf(sample, SAMPLE));
-  return tried.rank > LOW_RANK * SAMPLE ? undefined : pivotedFactorInPlace(g, n, roundingOf(g, n));
+  const tried = pivotedFactorInPlace(sample, some, Math.max(negligible, roundingOf(sample, some)));
+  if (tried.rank > LOW_RANK * some) return undefined;
+  return pivotedFactorInPlace(g, n, Math.max(negligible, roundingOf(g, n)));
 }
 
 /** What methods for eigenvalues promise of G, √n ε‖G‖: ‖G‖ is at least Σλ²/Σλ, all λ being positive. */

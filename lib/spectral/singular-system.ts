@@ -13,6 +13,7 @@ import {
   multiplyTransposedInto,
   outerProductInto,
 } from "../numeric/matmul.ts";
+import {factorGram, factorTimesRows, lowRankFactorInPlace} from "../numeric/pivoted-factor.ts";
 import {symmetricEigen} from "../numeric/symmetric-eigen.ts";
 
 /** Unknown side of the singular system. */
@@ -43,6 +44,9 @@ export interface SingularSystem extends Modes, DataModes {}
 /** Eigenvalues below this share of the largest are rounding: n ε with n up to a few hundred, and headroom. */
 export const USABLE = 1e-13;
 
+/** What a thin factor may leave out of the trace, over the floor. */
+const NEGLIGIBLE = 1e-2;
+
 /** Eigenpairs of the smaller Gram matrix above the floor. */
 interface Half {
   readonly count: number;
@@ -50,17 +54,43 @@ interface Half {
   readonly vectors: Float64Array;
 }
 
-function smallerHalf(matrix: Float64Array, rows: number, columns: number, floor: number): Half {
-  const tall = rows >= columns;
-  const size = tall ? columns : rows;
+/** The smaller of BᵀB and BBᵀ. */
+function smallerGram(matrix: Float64Array, rows: number, columns: number): {gram: Float64Array; size: number} {
+  const size = Math.min(rows, columns);
   const gram = new Float64Array(size * size);
-  if (tall) crossProductInto(gram, matrix, rows, columns);
+  if (rows >= columns) crossProductInto(gram, matrix, rows, columns);
   else outerProductInto(gram, matrix, rows, columns);
+  return {gram, size};
+}
+
+function halfOf(gram: Float64Array, size: number, floor: number): Half {
   const {values, vectors} = symmetricEigen(gram, size, floor);
   const least = Math.max(floor, USABLE * Math.max(values[0] ?? 0, 0));
   let count = 0;
   while (count < size && values[count] > least) ++count;
   return {count, eigenvalues: values.slice(0, count), vectors: vectors.subarray(0, count * size)};
+}
+
+/**
+ * The same where the Gram matrix is F Fᵀ with few columns, from FᵀF: a fraction of the work. What is left out of the trace
+ * is a hundredth of the floor, or rounding.
+ */
+function thinHalf(gram: Float64Array, size: number, floor: number): Half | undefined {
+  const factor = lowRankFactorInPlace(gram, size, NEGLIGIBLE * floor);
+  if (factor === undefined) return undefined;
+  const {count, eigenvalues, vectors} = halfOf(factorGram(factor), factor.rank, floor);
+  // Of length √λ but for the rounding of λ.
+  return {count, eigenvalues, vectors: unitRowsInPlace(factorTimesRows(factor, vectors, count), size)};
+}
+
+function unitRowsInPlace(vectors: Float64Array, length: number): Float64Array {
+  for (let row = 0; row < vectors.length; row += length) {
+    let square = 0;
+    for (let at = row; at < row + length; ++at) square += vectors[at] * vectors[at];
+    const scale = 1 / Math.sqrt(square);
+    for (let at = row; at < row + length; ++at) vectors[at] *= scale;
+  }
+  return vectors;
 }
 
 /** Divides row k by √λ_k. */
@@ -112,7 +142,8 @@ const rightOf = (
  * @param floor modes with λ ≤ floor are left out; at least `USABLE`·λ_0
  */
 export function singularSystem(matrix: Float64Array, rows: number, columns: number, floor = 0): SingularSystem {
-  const half = smallerHalf(matrix, rows, columns, floor);
+  const {gram, size} = smallerGram(matrix, rows, columns);
+  const half = halfOf(gram, size, floor);
   const tall = rows >= columns;
   return {
     rows,
@@ -126,9 +157,22 @@ export function singularSystem(matrix: Float64Array, rows: number, columns: numb
 
 /** The data side alone, where nothing is asked of the unknowns. Arguments as `singularSystem`. */
 export function dataModes(matrix: Float64Array, rows: number, columns: number, floor = 0): DataModes {
-  const half = smallerHalf(matrix, rows, columns, floor);
-  const left = rows >= columns ? leftOf(half.vectors, half.eigenvalues, matrix, rows, columns) : half.vectors;
+  // Not from BᵀB: B v/√λ would raise by √(λ_0/λ) what rounding leaves of v_0 in a thin v.
+  if (rows < columns)
+    return dataModesOfGramInPlace(outerProductInto(new Float64Array(rows * rows), matrix, rows, columns), rows, floor);
+  const {gram, size} = smallerGram(matrix, rows, columns);
+  const half = halfOf(gram, size, floor);
+  const left = leftOf(half.vectors, half.eigenvalues, matrix, rows, columns);
   return {rows, count: half.count, eigenvalues: half.eigenvalues, left};
+}
+
+/**
+ * The same from the Gram matrix of the data, BBᵀ.
+ * @param gram rows × rows; overwritten
+ */
+export function dataModesOfGramInPlace(gram: Float64Array, rows: number, floor: number): DataModes {
+  const {count, eigenvalues, vectors} = thinHalf(gram, rows, floor) ?? halfOf(gram, rows, floor);
+  return {rows, count, eigenvalues, left: vectors};
 }
 
 /** u_kᵀ d for every mode. */

@@ -67,9 +67,23 @@ describe("G ≈ F Fᵀ", () => {
 
   test("is not sought where places hardly see each other, nor of a small matrix", () => {
     expect(lowRankFactorInPlace(smooth(N, 3), N)).toBeUndefined();
-    expect(lowRankFactorInPlace(smooth(200, 0.1), 200)).toBeUndefined();
+    expect(lowRankFactorInPlace(smooth(150, 0.1), 150)).toBeUndefined();
     expect(lowRankFactorInPlace(new Float64Array(N * N), N)?.rank).toBe(0);
   });
+});
+
+test("stops where the trace that is left may be left out", () => {
+  const g = smooth(N, 0.1);
+  const negligible = 1e-6 * g[0];
+  const {rank, transposed} = lowRankFactorInPlace(g.slice(), N, negligible)!;
+  const traceOf = (columns: number): number => {
+    let sum = 0;
+    for (let at = 0; at < columns * N; ++at) sum += transposed[at] ** 2;
+    return sum;
+  };
+  expect(N - traceOf(rank)).toBeLessThan(negligible);
+  // One column fewer would not do.
+  expect(N - traceOf(rank - 1)).toBeGreaterThan(negligible);
 });
 
 test("the largest remaining diagonal entry is the next pivot", () => {

@@ -1,6 +1,7 @@
 import {describe, expect, test} from "vitest";
 import {normalDeviates, seededRandom} from "../../lib/numeric/random.ts";
-import {singularSystem, USABLE} from "../../lib/spectral/singular-system.ts";
+import {symmetricEigen} from "../../lib/numeric/symmetric-eigen.ts";
+import {dataModesOfGramInPlace, singularSystem, USABLE} from "../../lib/spectral/singular-system.ts";
 import {absoluteClose} from "../harness/assert-close.ts";
 
 describe("the singular system", () => {
@@ -47,4 +48,28 @@ describe("the singular system", () => {
     expect(singularSystem(matrix, 20, 5, 2 * all.eigenvalues[1]).count).toBe(1);
     expect(singularSystem(new Float64Array(100), 20, 5).count).toBe(0);
   });
+});
+
+test("modes of a thin Gram matrix are those of all of it", () => {
+  // As fields see each other that are read a sixth of their height apart: λ falls by some e^(−π/20) a mode.
+  const n = 240;
+  const gram = new Float64Array(n * n);
+  for (let i = 0; i < n; ++i)
+    for (let j = 0; j < n; ++j) gram[i * n + j] = 1 / (1 + ((i - j + 0.2 * Math.sin(i) - 0.2 * Math.sin(j)) / 12) ** 2);
+  const all = symmetricEigen(gram, n);
+  const floor = 1e-8 * all.values[0];
+  const {count, eigenvalues, left} = dataModesOfGramInPlace(gram.slice(), n, floor);
+  expect(count).toBeLessThan(0.6 * n);
+  expect(all.values[count]).toBeLessThan(1.1 * floor);
+  for (let k = 0; k < count; ++k) {
+    // A hundredth of the floor is left out of the trace.
+    absoluteClose(eigenvalues[k], all.values[k], 0.01 * floor, "what the factor leaves out");
+    for (let l = 0; l <= k; ++l) {
+      let product = 0;
+      for (let i = 0; i < n; ++i) product += left[k * n + i] * left[l * n + i];
+      // n ε λ_0/√(λ_k λ_l), the least being the floor.
+      const allowed = (n * 2 ** -52 * eigenvalues[0]) / Math.sqrt(eigenvalues[k] * eigenvalues[l]);
+      absoluteClose(product, k === l ? 1 : 0, 1e-13 + allowed, "λ from a squared factor");
+    }
+  }
 });
