@@ -43,10 +43,11 @@ export const LEVEL_STATIONS = 600;
 const MODES_SERVE = 3000;
 
 /**
- * From this many stations on a line that is not level is solved in steps. Modes take twice as long from 1,500 on, with one
- * channel or two; but they count degrees of freedom exactly, so that a few seconds are left to them.
+ * A line that is not level is solved in steps where that is quicker. Modes take a time like readings × panels × the fewer
+ * of the two, steps one like readings + panels; the two are equal where the quotient is this (measured from 2,000 stations
+ * on 2,000 panels to 4,000 stations on 1,800, choice of the multiplier and trade-off curve included). A matter of speed.
  */
-const LONG_STATIONS = 2000;
+const STEPS_PAY = 2e6;
 /** Above this share of the largest eigenvalue the least multiplier is what steps could not go below, not what readings ask for. */
 const STEPS_STOOD = 2e-7;
 /** Up to this many readings modes can be waited for then: some ten minutes. */
@@ -134,11 +135,14 @@ function levelOperated(
   };
 }
 
+const stepsPay = (readings: number, panels: number): boolean =>
+  readings * panels * Math.min(readings, panels) > STEPS_PAY * (readings + panels);
+
 /** A long line, however uneven and of however many channels; undefined for any other. */
 function longOperated(conditioned: ConditionedLine, panels: Panels, degree: number): Operated | undefined {
-  const {count} = conditioned.line.stations;
-  if (count < LONG_STATIONS) return undefined;
   const readings = readingsOfLine(conditioned);
+  if (!stepsPay(readings.count, panels.count)) return undefined;
+  const {count} = conditioned.line.stations;
   const values = valuesOfLine(conditioned);
   const regional = regionalBasis(readings, degree);
   const operator = multipoleOperator(readings, panels);

@@ -102,6 +102,22 @@ describe("a long level line", () => {
   });
 });
 
+test("a long uneven line has modes where its panels are few", () => {
+  const stations = 2200;
+  const chainage = Float64Array.from({length: stations}, (_, i) => 2 * i + 0.4 * Math.sin(7 * i));
+  const made = syntheticLine({
+    chainage,
+    clearance: HEIGHT,
+    values: new Float64Array(stations),
+    noise: NOISE,
+    id: "long",
+  });
+  const row = Float64Array.from({length: stations}, (_, i) => i + 1);
+  const conditioned = condition({...made, stations: {...made.stations, row}}, settings.model.boundary, undefined);
+  // 150 panels: a decomposition of so many columns takes less time than one step.
+  expect(operated(conditioned, panelsOn([{from: 0, to: 4400}], 30), 1).solver.modes).toBeGreaterThan(0);
+});
+
 test("rows of a long level grid share one multiplier, have no modes, and answer as with them", async () => {
   const rows = [1, 2, 3].map((seed) => line(seed));
   const survey: Survey = {
