@@ -4,7 +4,7 @@ import {readFileSync, writeFileSync} from "node:fs";
 import {type BenchCase, bytesText, type Figure, median, spreadText} from "./bench-case.ts";
 import {BENCH_FOLDER, type Measured, measuredProgram, measuredPython, PYTHON} from "./measured.ts";
 
-const RUNS = 3;
+const RUNS = 5;
 const SIZE = 2_000;
 const CLEARANCE = 60;
 const CONFIDENCE = 0.95;

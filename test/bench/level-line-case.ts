@@ -7,7 +7,7 @@ import type {LevelRun} from "./level-run.ts";
 import {measured, measuredPython} from "./measured.ts";
 
 const STATIONS = 2_000;
-const RUNS = 3;
+const RUNS = 5;
 /** Lines in one process: the first finds nothing compiled. */
 const LINES = 3;
 const TARGET_DENSE = 0.1;

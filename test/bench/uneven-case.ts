@@ -5,7 +5,7 @@ import {relativeDifference} from "./columns.ts";
 import {measured, measuredPython} from "./measured.ts";
 import {type UnevenAnswers, unevenInput} from "./uneven-input.ts";
 
-const RUNS = 3;
+const RUNS = 5;
 const TARGET = 0.5;
 /** A quarter of the least height, which is what panels are by default, and as many panels as stations; m. */
 const PANELS = [4.5, 2] as const;
