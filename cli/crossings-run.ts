@@ -194,11 +194,13 @@ function tell(
     else messages.note(doubtText(kind));
   host.out.write(crossingsText(result));
   if (out !== undefined) messages.note(`${files.length} files in ${out}: ${files.join(", ")}.`);
-  if (result.carried !== undefined)
+  // What is said of readings that were carried and compared is of no use where none were.
+  const carried = result.carried !== undefined && result.crossed.crossings.count > 0;
+  if (carried)
     messages.note(
       "Each reading is carried by its own line's source, taken to run on square to that line. Two lines that cross cannot both be right in that: a line along the strike sees too little change with height. Look at crossings where it was the lower one with care.",
     );
-  if (result.carried !== undefined && settings.model.regional >= 0)
+  if (carried && settings.model.regional >= 0)
     messages.note(
       "The regional does not change with height and takes some of the anomaly with it, so that a few per cent of the change stay behind. Give --regional none where the readings hold no regional.",
     );

@@ -3,7 +3,7 @@ import {type ErrorCode, InputError} from "../lib/errors.ts";
 
 type Meaning = (path: string) => readonly [ErrorCode, string];
 
-const NOTHING_KEPT = "choose another disk with --out; no file of this run was kept.";
+const NOTHING_KEPT = "choose another disk with --out; no result file was written.";
 
 const noPermission: Meaning = (path) => [
   "host/no-permission",

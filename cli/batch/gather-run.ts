@@ -32,7 +32,7 @@ export async function gatherRun(host: Host, paths: readonly string[], asked: Ask
   if (head === undefined)
     throw new InputError(
       "gather/nothing",
-      `There are no finished lines in "${out}". Compute them first: groundward continue … --shard i/n --out ${out}, or with --queue.`,
+      `There are no finished lines in "${out}"${await alreadyComplete(host, out)}. Compute them first: groundward continue … --shard i/n --out ${out}, or with --queue.`,
       {place: {file: out}},
     );
   const request =
@@ -71,6 +71,14 @@ export async function gatherRun(host: Host, paths: readonly string[], asked: Ask
   );
 }
 
+/** A second `gather` finds the lines gone, since the first made the files of them. */
+async function alreadyComplete(host: Host, out: string): Promise<string> {
+  const recorded = await host.openStore(out).read("record.json");
+  return recorded === undefined
+    ? ""
+    : " that wait for gather: a record.json there says that the files of a run are complete";
+}
+
 const movedTo = (request: StoredRequest, paths: readonly string[]): StoredRequest => ({
   ...request,
   asked: [...request.asked.filter(([name]) => name !== "survey"), ["survey", paths]],
@@ -81,7 +89,7 @@ function incomplete(out: string, {lines}: PartsHead, missing: readonly number[])
   const more = missing.length > NAMED ? ` and ${missing.length - NAMED} more` : "";
   return new InputError(
     "gather/incomplete",
-    `${missing.length} of ${lines} lines are not finished: by their place in the survey ${named.join(", ")}${more}. Of n shards, line k belongs to shard 1 + (k − 1) mod n. Run those shards again, or put the run into its queue again; what was finished is taken over.`,
+    `${missing.length} of ${lines} lines are not finished: by their place in the survey ${named.join(", ")}${more}. Where shards or workers are at work still, gather when they are done. Else give the command of the run, of its queue or of those shards again, which takes over what is finished; of n shards, line k belongs to shard 1 + (k − 1) mod n.`,
     {place: {file: out}},
   );
 }

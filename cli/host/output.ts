@@ -1,13 +1,14 @@
 /** Files of a run: all of them under their names at its end, or none. */
 import {createHash} from "node:crypto";
 import {rmSync} from "node:fs";
-import {type FileHandle, mkdir, open, readdir, readFile, rename, rm, rmdir} from "node:fs/promises";
+import {type FileHandle, open, readdir, readFile, rename, rm, rmdir} from "node:fs/promises";
 import {basename, dirname, join, resolve} from "node:path";
 import type {OutputFile, OutputFolder} from "../nouns.ts";
 import {PARTS, UNFINISHED} from "../own-names.ts";
 import {asking} from "../refusals.ts";
 import {writeAt} from "./bytes.ts";
 import {claim} from "./claim.ts";
+import {makeFolder} from "./folder.ts";
 import type {Interruption} from "./interruption.ts";
 
 const BUFFER_BYTES = 1 << 17;
@@ -48,7 +49,7 @@ async function createFile(path: string, shown: string, opened: Set<FileHandle>):
 }
 
 export async function openOutput(path: string, interruption: Interruption): Promise<OutputFolder> {
-  const firstMade = await asking(path, () => mkdir(path, {recursive: true}));
+  const firstMade = await asking(path, () => makeFolder(path));
   const opened = new Set<FileHandle>();
   const created: string[] = [];
   let workplace: string | undefined;

@@ -1,9 +1,10 @@
 /** A folder of small files that survive a crash: each is whole or absent, and records are on the disk when told. */
-import {type FileHandle, mkdir, open, readdir, readFile, rename, rm} from "node:fs/promises";
+import {type FileHandle, open, readdir, readFile, rename, rm} from "node:fs/promises";
 import {hostname} from "node:os";
 import {join} from "node:path";
 import type {Store} from "../nouns.ts";
 import {asking} from "../refusals.ts";
+import {makeFolder} from "./folder.ts";
 
 const codeOf = (error: unknown): unknown => (error as NodeJS.ErrnoException).code;
 
@@ -41,7 +42,7 @@ export function openStore(path: string): Store {
   let made: Promise<unknown> | undefined;
   const writing = (name: string, request: () => Promise<void>): Promise<void> =>
     asking(at(name), async () => {
-      made ??= mkdir(path, {recursive: true});
+      made ??= makeFolder(path);
       await made;
       await request();
     });

@@ -97,7 +97,7 @@ async function standstill(queue: LineQueue, waiting: number, active: number, ref
   if (workers === 0) return `${waiting + active} lines wait, and no worker is there. Start one: ${command}`;
   if (workers <= refusing)
     return `${waiting + active} lines wait, and every worker refused them. Start another: ${command}`;
-  return `${waiting} lines wait and ${active} are with workers, of which ${workers} are there; none was finished for a while.`;
+  return `None was finished for a while: lines that wait: ${waiting}; lines that are being computed: ${active}; workers that are there: ${workers}.`;
 }
 
 const lostLines = (left: number, reason: string | undefined): InputError =>

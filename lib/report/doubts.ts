@@ -68,7 +68,7 @@ function item({weight, message, lines, count}: Group, noun: string): string {
   const [first] = lines;
   let lead = "";
   if (first !== undefined && count === 1)
-    lead = `<b>${nameText(first.startsWith(noun) ? capital(first) : `${capital(noun)} ${first}`)}.</b> `;
+    lead = `<b>${nameText(first.startsWith(noun) ? first : `${capital(noun)} ${first}`)}.</b> `;
   else if (first !== undefined) {
     const rest = count - lines.length;
     const names = lines.map(nameText).join(", ") + (rest > 0 ? ` and ${countText(rest)} more` : "");

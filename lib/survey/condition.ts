@@ -31,7 +31,7 @@ export function condition(
       if (!(above > 0))
         throw new ModelError(
           "boundary/station-below",
-          `The station in row ${line.stations.row[i]} of line ${line.id} lies ${above.toPrecision(4)} m above the boundary (${placed.words}); every station must lie above it. Lower the boundary with --boundary, or correct the heights.`,
+          `The station in row ${line.stations.row[i]} of line ${line.id} lies ${below(above)} the boundary (${placed.words}); every station must lie above it. Lower the boundary with --boundary, or correct the heights.`,
           {place: {file: line.file, row: line.stations.row[i]}},
         );
     });
@@ -220,3 +220,7 @@ function boundaryUnder(chainage: Float64Array, heights: Float64Array): BoundaryL
   }
   return {x: Float64Array.from(x), y: Float64Array.from(y)};
 }
+
+/** How far above or below; a height that is not a number is told as it is. */
+const below = (above: number): string =>
+  above === 0 ? "on" : above < 0 ? `${(-above).toPrecision(4)} m below` : `${above} m above`;

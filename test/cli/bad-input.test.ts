@@ -123,7 +123,7 @@ const TABLES: readonly Bad[] = [
     content: rows("L1,0,30,1", "L1,10,30,1.5", "L1,20,-2,1", "L1,30,30,0.5"),
     status: 3,
     code: "boundary/station-below",
-    says: /row 4.*--boundary/,
+    says: /row 4 of line L1 lies 2\.000 m below the boundary.*--boundary/,
   },
   {
     name: "support disjoint from the line",

@@ -167,8 +167,10 @@ test.each([
 });
 
 test("lines that do not cross are said not to", async () => {
-  const {status, out} = await run(["crossings", lines(flownText(LINES.slice(0, 2), {noise: 0.3})), ...ASKED]);
+  const {status, out, err} = await run(["crossings", lines(flownText(LINES.slice(0, 2), {noise: 0.3})), ...ASKED]);
   expect({status, out}).toEqual({status: 0, out: "No two of 2 lines cross.\n"});
+  // Nothing was carried, so nothing is said of how it was.
+  expect(err).not.toContain("is carried by its own line's source");
 });
 
 test("a file of someone else in the folder is left alone", async () => {

@@ -33,6 +33,15 @@ describe("an input file", () => {
 });
 
 describe("an output folder", () => {
+  // There /proc refuses new folders as "not there", which a recursive request asks for again without end.
+  test.runIf(existsSync("/proc/self"))(
+    "that the system refuses as not there is told, not asked for again",
+    async () => {
+      for (const path of ["/proc/none", "/proc/none/below"])
+        await expect(host.openOutput(path)).rejects.toMatchObject({code: "host/not-found"});
+    },
+  );
+
   test("is made with its parents, and its files appear together at commit", async () => {
     const out = join(temporaryFolder(), "a", "b");
     const folder = await host.openOutput(out);

@@ -88,7 +88,7 @@ describe("when writing fails, status 2 and nothing is left", () => {
     const {status, stdout, stderr} = shell('ulimit -f 16; exec "$@"', "continue", survey, ...SETTINGS, "--out", out);
     expect({status, stdout}).toEqual({status: 2, stdout: ""});
     expect(stderr.replaceAll(/\s+/g, " ")).toMatch(
-      /outgrew the largest file allowed here.*--out; no file of this run was kept/,
+      /outgrew the largest file allowed here.*--out; no result file was written/,
     );
     expect(stderr).not.toMatch(/\n\s+at /);
     expect(contents(folder)).toEqual([]);

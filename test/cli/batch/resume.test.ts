@@ -171,6 +171,9 @@ describe("shards", () => {
     expect(status).toBe(5);
     expect(table).toMatch(/^line .*status/);
     expect(digests(out)).toEqual(undisturbed);
+    const again = (await gather(out)).err.replaceAll(/\s+/g, " ");
+    expect(again).toMatch(/the files of a run are complete.*\[gather\/nothing\]/);
+    expect(digests(out)).toEqual(undisturbed);
   });
 
   test("are gathered where the survey has moved, but not from another one", async () => {
@@ -200,7 +203,9 @@ describe("shards", () => {
   });
 
   test("nothing to gather, or a shard that is none, is refused", async () => {
-    expect((await gather(temporaryFolder())).err).toContain("[gather/nothing]");
+    const nothing = (await gather(temporaryFolder())).err;
+    expect(nothing).toContain("[gather/nothing]");
+    expect(nothing).not.toContain("complete");
     for (const which of ["0/3", "4/3", "1", "1/0", "1/x"])
       expect((await shard(join(temporaryFolder(), "out"), which)).err).toContain("[option/not-a-shard]");
   });
