@@ -24,7 +24,7 @@ import type {RegionalBasis} from "../operators/regional.ts";
 import type {SharedPart} from "./far-stations.ts";
 import {A_RANGE, halfWidthOf, shortest} from "./half-width.ts";
 import type {IntervalStore} from "./interval-store.ts";
-import {lineReaders} from "./line-readers.ts";
+import {type LineReaders, lineReaders} from "./line-readers.ts";
 import {estimatesAlike} from "./number-estimates.ts";
 import type {RegionalReader} from "./regional-reader.ts";
 import {remember} from "./remember.ts";
@@ -34,6 +34,8 @@ import {addOnModes, type Layout, windowsOf} from "./windows.ts";
 /** How well ln a is found: a width feels 1e-5 of the first, and 1e-3 of the second, where each trial is a solution over the whole line. */
 const PRECISION = 5e-3;
 const LONG_STEP = 0.2;
+/** Readers of longer lines, tens of megabytes, are not kept for the next. */
+const MOST_SHARED = 20_000;
 const NOTHING = new Float64Array();
 
 export interface Interval {
@@ -101,9 +103,19 @@ export function intervalSolver(
   {bound, confidence, loosest = 1, layout = "by size", store}: IntervalTerms,
 ): AffineIntervalSolver {
   const windows = windowsOf(continuum, basis, data, bound, loosest, layout, "line", store);
-  const {terms} = windows;
+  const {terms, number} = windows;
+  const madeReaders = (): LineReaders =>
+    lineReaders(continuum, basis, bound, windows.line, windows.even, windows.height);
   const readers =
-    terms === 0 ? undefined : lineReaders(continuum, basis, data, bound, windows.line, windows.even, windows.height);
+    terms === 0
+      ? undefined
+      : number === undefined || continuum.count > MOST_SHARED
+        ? madeReaders()
+        : windows.store.readers(`${number} ${terms} ${bound}`, madeReaders);
+  /** Wᵀd. */
+  const read = new Map<RegionalReader, Float64Array>();
+  const readBy = (reader: RegionalReader): Float64Array =>
+    remember(read, reader, () => matVecInto(new Float64Array(terms), reader.weights, data, terms, continuum.count));
 
   /** Readings that say nothing worth their noise are left alone: a = ∞. */
   const blind = (functional: Functional, most: number): Found => {
@@ -168,7 +180,7 @@ export function intervalSolver(
       let sum = 0;
       for (let k = 0; k < eta.length; ++k) sum += (eta[k] / (lambda[k] + a)) * window.data[k];
       const reader = readers?.of(readers.place(a));
-      if (reader !== undefined) for (let t = 0; t < terms; ++t) sum -= gamma[t] * reader.data[t];
+      if (reader !== undefined) for (let t = 0; t < terms; ++t) sum -= gamma[t] * readBy(reader)[t];
       return sum;
     };
     const weights = (): Float64Array => {
@@ -206,7 +218,7 @@ export function intervalSolver(
       deviation,
       bias,
       halfWidth,
-      value: () => at(step).gamma.reduce((sum, share, t) => sum - share * reader.data[t], value(step)),
+      value: () => at(step).gamma.reduce((sum, share, t) => sum - share * readBy(reader)[t], value(step)),
       weights() {
         const c = weights(step);
         freeOfRegionalInPlace(c, basis, reader);

@@ -38,7 +38,6 @@ export interface LineReaders {
 
 /**
  * @param basis regional at the stations in the order of `continuum`, blind to which intervals are to be
- * @param data Q d/σ in that order
  * @param bound M, SI·√m
  * @param height the median one of the stations
  * @param even of the line where it is level, even and of a flat boundary
@@ -46,7 +45,6 @@ export interface LineReaders {
 export function lineReaders(
   continuum: Continuum,
   basis: RegionalBasis,
-  data: Float64Array,
   bound: number,
   line: () => WholeLine,
   even: LevelLine | undefined,
@@ -74,8 +72,8 @@ export function lineReaders(
   return {
     place: (a) => Math.round(Math.log(a * bound * bound) / Math.log(READER_STEP)),
     of: (place) =>
-      remember(readers, place, () => regionalReader(line(), basis, data, READER_STEP ** place / (bound * bound))),
-    for: (a) => exactReaders(a, () => regionalReader(line(), basis, data, a)),
+      remember(readers, place, () => regionalReader(line(), basis, READER_STEP ** place / (bound * bound))),
+    for: (a) => exactReaders(a, () => regionalReader(line(), basis, a)),
     regionalOn: (window) => remember(regionals, window, () => onModes(window, basis.rows)),
     on(window, reader) {
       const seen = remember(seenReaders, window, () => new Map<RegionalReader, WindowReader>());

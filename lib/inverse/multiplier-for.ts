@@ -1,7 +1,7 @@
 /** The multiplier at which a norm or a misfit takes a value: monotone functions, safeguarded Newton in ln α. */
 import {ModelError, NumericalError} from "../errors.ts";
 import type {Solver} from "../solvers/solver.ts";
-import {searchStart} from "./search-start.ts";
+import {searchedMultiplier} from "./searched-multiplier.ts";
 
 const STEPS = 200;
 
@@ -22,11 +22,12 @@ export function multiplierForNorm(solver: Solver, bound: number): number {
       "bound/below-ties",
       `The values to be met exactly need a source of ${(least / bound).toPrecision(4)} times the bound. Loosen --bound, or give the ties a tolerance.`,
     );
-  const start = searchStart(solver, solver.norm, bound);
-  let low = start?.low ?? Math.log(solver.least) - 40;
-  let high = start?.high ?? Math.log(solver.largest);
-  while (start === undefined && solver.norm(Math.exp(high)) > bound) high += 5;
-  let t = start?.t ?? 0.5 * (low + high);
+  const searched = searchedMultiplier(solver, solver.norm, bound, 1e-12);
+  if (searched !== undefined) return searched;
+  let low = Math.log(solver.least) - 40;
+  let high = Math.log(solver.largest);
+  while (solver.norm(Math.exp(high)) > bound) high += 5;
+  let t = 0.5 * (low + high);
   for (let step = 0; step < STEPS; ++step) {
     const alpha = Math.exp(t);
     const norm = solver.norm(alpha);
@@ -54,11 +55,12 @@ export function multiplierForNorm(solver: Solver, bound: number): number {
 export function multiplierForMisfit(solver: Solver, target: number): number | undefined {
   if (solver.misfit(Infinity) <= target) return Infinity;
   if (solver.misfit(0) >= target) return undefined;
-  const start = searchStart(solver, solver.misfit, target);
-  let low = start?.low ?? Math.log(solver.least) - 40;
-  let high = start?.high ?? Math.log(solver.largest) + 1;
-  while (start === undefined && solver.misfit(Math.exp(high)) < target) high += 3;
-  let t = start?.t ?? 0.5 * (low + high);
+  const searched = searchedMultiplier(solver, solver.misfit, target, 1e-10);
+  if (searched !== undefined) return searched;
+  let low = Math.log(solver.least) - 40;
+  let high = Math.log(solver.largest) + 1;
+  while (solver.misfit(Math.exp(high)) < target) high += 3;
+  let t = 0.5 * (low + high);
   for (let step = 0; step < STEPS; ++step) {
     const alpha = Math.exp(t);
     const misfit = solver.misfit(alpha);

@@ -8,22 +8,21 @@
  */
 import {NumericalError} from "../errors.ts";
 import {choleskyInPlace, choleskySolveInto} from "../numeric/cholesky.ts";
-import {matVecInto, multiplyTransposedInto} from "../numeric/matmul.ts";
+import {multiplyTransposedInto} from "../numeric/matmul.ts";
 import type {RegionalBasis} from "../operators/regional.ts";
 import type {WholeLine} from "./whole-line.ts";
 
 /** W for one `a`, and what the measures of an interval need of it. */
 export interface RegionalReader {
-  /** W, terms × count, row-major; Wᵀ W, Wᵀ G W, Wᵀ d. */
+  /** W, terms × count, row-major; Wᵀ W, Wᵀ G W. */
   readonly weights: Float64Array;
   readonly products: Float64Array;
   readonly gram: Float64Array;
-  readonly data: Float64Array;
   /** G W, terms × count. */
   readonly gramWeights: Float64Array;
 }
 
-export function regionalReader(line: WholeLine, basis: RegionalBasis, data: Float64Array, a: number): RegionalReader {
+export function regionalReader(line: WholeLine, basis: RegionalBasis, a: number): RegionalReader {
   const {terms, count, rows} = basis;
   const solved = new Float64Array(terms * count);
   for (let t = 0; t < terms; ++t) solved.set(line.solve(a, rows.subarray(t * count, (t + 1) * count)), t * count);
@@ -54,7 +53,6 @@ export function regionalReader(line: WholeLine, basis: RegionalBasis, data: Floa
     gramWeights,
     products: square(weights),
     gram: square(gramWeights),
-    data: matVecInto(new Float64Array(terms), weights, data, terms, count),
   };
 }
 

@@ -17,6 +17,7 @@ import {levelWholeLine} from "./level-whole-line.ts";
 import {remember} from "./remember.ts";
 import {type Block, type Patch, type WholeLine, wholeLine} from "./whole-line.ts";
 import {BLOCKS_BEYOND, heightOf, windowLayout} from "./window-layout.ts";
+import {windowModes} from "./window-modes.ts";
 
 /** Lines with no more stations than this, or no more nodes than the next, are one window. Heuristics, for speed alone. */
 const WHOLE_STATIONS = 480;
@@ -73,6 +74,8 @@ export interface Windows {
   kernelWeights(point: Functional, multiplier: number): Float64Array;
   /** Spacing and height of a line that is level and even over a flat boundary. */
   readonly even: LevelLine | undefined;
+  /** Of the geometry of such a line in the store. */
+  readonly number: number | undefined;
   /** The median height of the stations above the boundary, m. */
   readonly height: number;
   /** Terms of the regional that a window must be freed of: none where they were projected out before. */
@@ -116,6 +119,9 @@ export function windowsOf(
     even === undefined || whole || regionalOf !== "line" ? undefined : centredWindows(continuum, even, floor, store);
   const congruent =
     even === undefined || whole || regionalOf !== "line" ? undefined : congruentWindows(continuum, even, floor);
+  const number = even === undefined ? undefined : store.number(figuresOf(continuum));
+  const ownModes =
+    centred === undefined || even === undefined ? undefined : windowModes(continuum, even, floor, store, number!);
   const terms = whole || regionalOf === "window" ? 0 : basis.terms;
 
   const modesOn = (first: number, last: number, over: Continuum, projected: RegionalBasis | undefined): DataModes => {
@@ -135,8 +141,10 @@ export function windowsOf(
     const like = congruent?.like(first, last);
     const modes =
       like === undefined
-        ? modesOn(first, last, continuum, projected)
-        : store.modes(like.key, () => modesOn(like.first, like.first + rows, congruent!.extended, undefined));
+        ? (ownModes?.(first, last) ?? modesOn(first, last, continuum, projected))
+        : store.modes(`${number} ${like.key}`, () =>
+            modesOn(like.first, like.first + rows, congruent!.extended, undefined),
+          );
     const seen = matVecInto(new Float64Array(modes.count), modes.left, data.subarray(first, last), modes.count, rows);
     return {first, last, modes, data: seen, projected};
   };
@@ -226,6 +234,7 @@ export function windowsOf(
     piece: core(height),
     line,
     even,
+    number,
     height,
     terms,
     for: windowFor,
@@ -247,6 +256,16 @@ export function windowsOf(
       return weights;
     },
   };
+}
+
+/** All that a level line of one kind and white noise is made of, but its readings. */
+function figuresOf({x, z, aRe, aIm, order, noise, support}: Continuum): Float64Array {
+  const ends = support.flatMap(({from, to}) => [from, to]);
+  const figures = new Float64Array(4 + ends.length + x.length + z.length);
+  figures.set([aRe[0], aIm[0], order[0], noise[0], ...ends]);
+  figures.set(x, 4 + ends.length);
+  figures.set(z, 4 + ends.length + x.length);
+  return figures;
 }
 
 /** Adds Σ η_k/(λ_k + a) u_k to weights over the whole line. */
