@@ -202,7 +202,7 @@ function tell(
     );
   if (carried && settings.model.regional >= 0)
     messages.note(
-      "The regional does not change with height and takes some of the anomaly with it, so that a few per cent of the change stay behind. Give --regional none where the readings hold no regional.",
+      "The regional does not change with height and takes some of the anomaly with it, so that part of the change stays behind, more of it the longer the sources are beside the line. Give --regional none where the readings hold no regional.",
     );
   messages.note("A levelling aid, not a levelling: no reading was changed.");
 }

@@ -1,7 +1,7 @@
 /** The rows (or columns) of a grid in a few figures, gathered as they come. */
 import type {RowStudy} from "../study/outcome.ts";
 import type {Delivery} from "./delivery.ts";
-import {nameText} from "./html.ts";
+import {messageText, nameText} from "./html.ts";
 import {figureText, fixedText, metreText} from "./number-text.ts";
 
 interface Range {
@@ -47,7 +47,7 @@ export function gridLedger(): GridLedger {
       extend(ranges.resolution, study.resolution);
       extend(ranges.degrees, study.degreesOfFreedom);
       for (const half of study.source.halfWidth) extend(ranges.halfWidth, half);
-      if (chosen === "") chosen = `${nameText(study.choice.rule)}: ${nameText(study.choice.reason)}`;
+      if (chosen === "") chosen = `${nameText(study.choice.rule)}: ${messageText(study.choice.reason)}`;
     },
     pairs(delivery) {
       if (ranges.readings.count === 0) return [];

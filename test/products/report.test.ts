@@ -295,3 +295,23 @@ describe("a run over a grid", () => {
     expect(await gridReport()).toBe(await gridReport());
   });
 });
+
+test("the reason for a grid's multiplier is told whole, however long", async () => {
+  const sink = keptText();
+  const product = gridReportHtml(sink, about);
+  await product.begin(
+    frameFixture({
+      survey: surveyFixture({
+        kind: "grid",
+        lineCount: 1,
+        grid: {width: 40, height: 1, orientation: "rows", step: 25, spacing: 25},
+      }),
+    }),
+  );
+  const row = rowOutcome(0, 40);
+  if (!("study" in row)) throw new Error("the fixture is an answered row");
+  const reason = `by ${"rows spread over the grid, ".repeat(20)}and that is the end`;
+  await product.row({...row, study: {...row.study, choice: {...row.study.choice, reason}}});
+  await product.end();
+  expect(sink.text()).toContain(reason);
+});
