@@ -82,7 +82,9 @@ export function shortestFree(
     }
     return best;
   };
-  let best = overSteps(at(0, own));
+  const begun = at(0, own);
+  if (begun.halfWidth <= NEAR_ENOUGH * least) return begun;
+  let best = overSteps(begun);
   for (const way of [1, -1]) {
     const start = best;
     for (let place = own + way; Math.abs(place - own) <= MOST_PLACES; place += way) {

@@ -9,7 +9,7 @@ import {measured, measuredPython} from "./measured.ts";
 const STATIONS = 2_000;
 const RUNS = 5;
 /** Lines in one process: the first finds nothing compiled. */
-const LINES = 3;
+const LINES = 8;
 const TARGET_DENSE = 0.1;
 const TARGET_FAST = 1.5;
 
