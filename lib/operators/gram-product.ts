@@ -13,8 +13,8 @@ import {pick} from "./readings.ts";
 /** c ↦ G c; a new list. What it needs is made once, when it is first asked for. */
 export type GramProduct = (vector: Float64Array) => Float64Array;
 
-/** Entries of readings × nodes up to which the matrix itself is kept and quicker, 16 MB. A heuristic. */
-const KEPT = 2e6;
+/** Entries of readings × nodes up to which the matrix itself is kept and quicker, 32 MB. A heuristic. */
+const KEPT = 4e6;
 
 /** @param kept entries of readings × nodes that may be kept */
 export function gramProduct(continuum: Continuum, kept = KEPT): GramProduct {
