@@ -26,24 +26,7 @@ export function regionalReader(line: WholeLine, basis: RegionalBasis, a: number)
   const {terms, count, rows} = basis;
   const solved = new Float64Array(terms * count);
   for (let t = 0; t < terms; ++t) solved.set(line.solve(a, rows.subarray(t * count, (t + 1) * count)), t * count);
-  const size = steadyFactor(solved, basis);
-  const weights = new Float64Array(terms * count);
-  const one = new Float64Array(terms);
-  for (let i = 0; i < count; ++i) {
-    for (let t = 0; t < terms; ++t) one[t] = solved[t * count + i];
-    choleskySolveInto(one, size, one, terms);
-    for (let t = 0; t < terms; ++t) weights[t * count + i] = one[t];
-  }
-  // What rounding left of RᵀW = 1 is taken out once more: W ← W (2 − RᵀW), for the regional may be large.
-  const unit = multiplyTransposedInto(new Float64Array(terms * terms), rows, weights, terms, count, terms);
-  for (let i = 0; i < count; ++i) {
-    for (let t = 0; t < terms; ++t) one[t] = weights[t * count + i];
-    for (let t = 0; t < terms; ++t) {
-      let sum = 2 * one[t];
-      for (let u = 0; u < terms; ++u) sum -= one[u] * unit[u * terms + t];
-      weights[t * count + i] = sum;
-    }
-  }
+  const weights = steadyWeights(solved, basis);
   const gramWeights = new Float64Array(terms * count);
   for (let t = 0; t < terms; ++t) gramWeights.set(line.gram(weights.subarray(t * count, (t + 1) * count)), t * count);
   const square = (vectors: Float64Array): Float64Array =>
@@ -56,28 +39,72 @@ export function regionalReader(line: WholeLine, basis: RegionalBasis, a: number)
   };
 }
 
-/** What is added to (G + a)⁻¹, over its largest value on the regional, until rounding leaves RᵀK⁻¹R positive. */
-const LIFTS = [0, 1e-14, 1e-12, 1e-10, 1e-8, 1e-6] as const;
+/**
+ * What is added to (G + a)⁻¹, over its largest value on the regional, until rounding leaves RᵀK⁻¹R positive. The largest
+ * are for solutions that steps did not reach, and cost length.
+ */
+const LIFTS = [0, 1e-14, 1e-12, 1e-10, 1e-8, 1e-6, 1e-4, 1e-2, 1, 100] as const;
+/** How far RᵀW may be from 1 to be brought there; and how near is enough, which one correction mostly reaches. */
+const IN_REACH = 0.1;
+const NEAR = 1e-12;
 
 /**
- * The factor of Rᵀ(K⁻¹ + μ)R, K⁻¹R in `solved`, to which μR is added. Two channels with a level each, of which sources
- * can mimic the sum and not the difference, make it all but singular. Any μ makes a valid W, and one at rounding costs nothing.
+ * W = K⁻¹R (RᵀK⁻¹R)⁻¹, K⁻¹R in `solved` (overwritten), with K⁻¹ + μ in place of K⁻¹. Two channels with a level each, of
+ * which sources can mimic the sum and not the difference, make RᵀK⁻¹R all but singular. Any μ makes a valid W, and one at
+ * rounding costs nothing.
  */
-function steadyFactor(solved: Float64Array, {terms, count, rows}: RegionalBasis): Float64Array {
+function steadyWeights(solved: Float64Array, basis: RegionalBasis): Float64Array {
+  const {terms, count, rows} = basis;
   const plain = multiplyTransposedInto(new Float64Array(terms * terms), solved, rows, terms, count, terms);
-  let largest = 0;
-  for (let t = 0; t < terms; ++t) largest = Math.max(largest, plain[t * terms + t]);
+  const largest = plain.reduce((most, value) => Math.max(most, Math.abs(value)), 0);
+  let lifted = 0;
   for (const lift of LIFTS) {
     const size = Float64Array.from(plain);
     for (let t = 0; t < terms; ++t) size[t * terms + t] += lift * largest;
     try {
       choleskyInPlace(size, terms);
     } catch (error) {
-      if (error instanceof NumericalError && lift !== LIFTS[LIFTS.length - 1]) continue;
+      if (error instanceof NumericalError) continue;
       throw error;
     }
-    for (let e = 0; e < solved.length; ++e) solved[e] += lift * largest * rows[e];
-    return size;
+    for (let e = 0; e < solved.length; ++e) solved[e] += (lift - lifted) * largest * rows[e];
+    lifted = lift;
+    const weights = divided(solved, size, terms, count);
+    // What rounding left of RᵀW = 1 is taken out once more: W ← W (2 − RᵀW), for the regional may be large.
+    const off = correctInPlace(weights, basis);
+    if (!(off < IN_REACH)) continue;
+    for (let left = off * off; left > NEAR; left *= left) correctInPlace(weights, basis);
+    return weights;
   }
-  return plain;
+  throw new NumericalError(
+    "numeric/no-convergence",
+    "The regional could not be read off the line: its solutions are not numbers.",
+  );
+}
+
+/** Each column of `solved`, a station's, by the factor of the matrix of terms. */
+function divided(solved: Float64Array, factor: Float64Array, terms: number, count: number): Float64Array {
+  const weights = new Float64Array(terms * count);
+  const one = new Float64Array(terms);
+  for (let i = 0; i < count; ++i) {
+    for (let t = 0; t < terms; ++t) one[t] = solved[t * count + i];
+    choleskySolveInto(one, factor, one, terms);
+    for (let t = 0; t < terms; ++t) weights[t * count + i] = one[t];
+  }
+  return weights;
+}
+
+/** W ← W (2 − RᵀW). @returns how far RᵀW was from 1 */
+function correctInPlace(weights: Float64Array, {terms, count, rows}: RegionalBasis): number {
+  const unit = multiplyTransposedInto(new Float64Array(terms * terms), rows, weights, terms, count, terms);
+  const one = new Float64Array(terms);
+  for (let i = 0; i < count; ++i) {
+    for (let t = 0; t < terms; ++t) one[t] = weights[t * count + i];
+    for (let t = 0; t < terms; ++t) {
+      let sum = 2 * one[t];
+      for (let u = 0; u < terms; ++u) sum -= one[u] * unit[u * terms + t];
+      weights[t * count + i] = sum;
+    }
+  }
+  return Math.sqrt(unit.reduce((sum, value, e) => sum + (value - (e % (terms + 1) === 0 ? 1 : 0)) ** 2, 0));
 }

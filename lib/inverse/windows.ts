@@ -14,6 +14,7 @@ import {type Alike, centredWindows} from "./centred-windows.ts";
 import {congruentWindows} from "./congruent.ts";
 import {type IntervalStore, intervalStore} from "./interval-store.ts";
 import {levelWholeLine} from "./level-whole-line.ts";
+import {modalWholeLine} from "./modal-whole-line.ts";
 import {remember} from "./remember.ts";
 import {type Block, type Patch, type WholeLine, wholeLine} from "./whole-line.ts";
 import {BLOCKS_BEYOND, heightOf, windowLayout} from "./window-layout.ts";
@@ -178,7 +179,11 @@ export function windowsOf(
   };
   const lines = new Map<"line", WholeLine>();
   const line = (): WholeLine =>
-    remember(lines, "line", () => levelWholeLine(continuum) ?? wholeLine(continuum, cover()));
+    remember(
+      lines,
+      "line",
+      () => levelWholeLine(continuum) ?? modalWholeLine(continuum, floor) ?? wholeLine(continuum, cover()),
+    );
   const scaleOf = ({spread}: Functional): number => (spread > height ? WIDEST_WINDOW * height : height);
   const windowFor = (functional: Functional): Window => {
     if (whole) return remembered(0, continuum.count);

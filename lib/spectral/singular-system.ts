@@ -171,8 +171,16 @@ export function dataModes(matrix: Float64Array, rows: number, columns: number, f
  * @param gram rows × rows; overwritten
  */
 export function dataModesOfGramInPlace(gram: Float64Array, rows: number, floor: number): DataModes {
-  const {count, eigenvalues, vectors} = thinHalf(gram, rows, floor) ?? halfOf(gram, rows, floor);
+  const thin = thinDataModesInPlace(gram, rows, floor);
+  if (thin !== undefined) return thin;
+  const {count, eigenvalues, vectors} = halfOf(gram, rows, floor);
   return {rows, count, eigenvalues, left: vectors};
+}
+
+/** The same where BBᵀ is of low rank; undefined, and the matrix untouched, where it is not. */
+export function thinDataModesInPlace(gram: Float64Array, rows: number, floor: number): DataModes | undefined {
+  const half = thinHalf(gram, rows, floor);
+  return half && {rows, count: half.count, eigenvalues: half.eigenvalues, left: half.vectors};
 }
 
 /** u_kᵀ d for every mode. */
