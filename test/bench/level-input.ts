@@ -82,5 +82,5 @@ export function levelTable(stations: number, lines: number): string {
 export const levelOptions = (stations: number, out: string): readonly string[] => [
   ...["--column", "value=value", "--observable", "field-vertical", "--noise", `${NOISE / NT}`],
   ...["--bound", `rms:${RMS}`, "--support", `0:${levelLength(stations)}`, "--boundary", "0", "--panel", `${SPACING}`],
-  ...["--out", out, "--replace", "--quiet", "--workers", "1"],
+  ...["--out", out, "--replace", "--quiet"],
 ];
