@@ -45,7 +45,10 @@ try {
   for (const bench of chosen) {
     console.error(`${bench.title} …`);
     mkdirSync(`${folder}/${bench.name}`);
-    told.push({bench, result: await bench.run(`${folder}/${bench.name}`)});
+    const done = {bench, result: await bench.run(`${folder}/${bench.name}`)};
+    told.push(done);
+    // A full run takes a quarter of an hour: what is known is told.
+    console.error(`${tableOf([done])}\n`);
   }
   const date = new Date();
   console.log(machineLines(date).join("\n"));
