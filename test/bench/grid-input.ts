@@ -11,9 +11,10 @@ const CLEARANCE = 60;
 const NODATA = -32_768;
 const HEADER = 8;
 
+/** Threads are asked for, or the taller grid alone would have them. */
 export const gridOptions = (out: string): readonly string[] => [
   ...["--observable", "field-vertical", "--clearance", `${CLEARANCE}`, "--noise", "1", "--bound", "discrepancy"],
-  ...["--out", out, "--replace", "--quiet"],
+  ...["--out", out, "--replace", "--quiet", "--workers", "2"],
 ];
 
 /** Without a value: a margin on every row, a lake on some, and the last rows. */

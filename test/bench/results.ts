@@ -48,7 +48,7 @@ export function machineLines(date: Date): readonly string[] {
 export const resultsText = (told: readonly Told[], date: Date): string => `# Results of the benchmark
 
 Written by \`npm run bench\`; medians with the range in brackets. The program runs its mathematics in one thread, the
-baseline's algebra too. Answers are compared before times: where they disagree the benchmark stops.
+baseline's algebra too, but where a row says otherwise. Answers are compared before times: where they disagree the benchmark stops.
 
 ${machineLines(date)
   .map((line) => `- ${line}`)
