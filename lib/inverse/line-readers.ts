@@ -5,12 +5,13 @@ import type {Continuum} from "../operators/continuum.ts";
 import type {Functional} from "../operators/functional.ts";
 import type {LevelLine} from "../operators/level-cells.ts";
 import type {RegionalBasis} from "../operators/regional.ts";
+import type {Block} from "../solvers/patches.ts";
 import {farField} from "./far-field.ts";
 import {farStations, type SharedPart} from "./far-stations.ts";
 import {regionalMeans} from "./regional-means.ts";
 import {type RegionalReader, regionalReader} from "./regional-reader.ts";
 import {remember} from "./remember.ts";
-import type {Block, WholeLine} from "./whole-line.ts";
+import type {WholeLine} from "./whole-line.ts";
 
 /** Readers of the regional are made for values of a this far apart, as a factor; the nearest one serves. A heuristic. */
 const READER_STEP = 12;

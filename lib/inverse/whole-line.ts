@@ -8,8 +8,6 @@ import {gramProduct} from "../operators/gram-product.ts";
 import {dot, minimalResidual} from "../solvers/minimal-residual.ts";
 import {type Patch, patchedInverse} from "../solvers/patches.ts";
 
-export type {Block, Patch} from "../solvers/patches.ts";
-
 export interface WholeLine {
   /** G v. */
   gram(vector: Float64Array): Float64Array;

@@ -9,6 +9,7 @@ import type {Functional} from "../operators/functional.ts";
 import {gramMatrix} from "../operators/gram-matrix.ts";
 import {type LevelLine, levelLine} from "../operators/level-cells.ts";
 import {basisWithin, projectOutInPlace, projectOutOfColumnsInPlace, type RegionalBasis} from "../operators/regional.ts";
+import type {Block, Patch} from "../solvers/patches.ts";
 import {type DataModes, dataModes, dataModesOfGramInPlace} from "../spectral/singular-system.ts";
 import {type Alike, centredWindows} from "./centred-windows.ts";
 import {congruentWindows} from "./congruent.ts";
@@ -16,7 +17,7 @@ import {type IntervalStore, intervalStore} from "./interval-store.ts";
 import {levelWholeLine} from "./level-whole-line.ts";
 import {modalWholeLine} from "./modal-whole-line.ts";
 import {remember} from "./remember.ts";
-import {type Block, type Patch, type WholeLine, wholeLine} from "./whole-line.ts";
+import {type WholeLine, wholeLine} from "./whole-line.ts";
 import {BLOCKS_BEYOND, heightOf, windowLayout} from "./window-layout.ts";
 import {windowModes} from "./window-modes.ts";
 
