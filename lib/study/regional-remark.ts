@@ -51,7 +51,7 @@ export function remarksOfRegional(
   return [
     remark(
       "regional/widens",
-      `The regional (--regional ${degree}) makes intervals wide: at the height of the sensor half of one is ${text(found)} (median of ${asked.length} stations), where without a regional it is ${text(alone)} at most, by the reading alone. On a line so short for its sources what is regional and what is not can hardly be told apart.${where} If the readings are free of a regional, give --regional none; or else a longer line, or a narrower --support.`,
+      `The regional (--regional ${degree}) makes intervals wide: at the height of the sensor half of one is ${text(found)} (median of ${asked.length} stations), where without a regional it is ${text(alone)} at most, by the reading alone. A regional may be as large as it likes, and broad sources can hardly be told apart from it.${where} If the readings are free of a regional, give --regional none; or else a longer line, or a narrower --support.`,
     ),
   ];
 }
